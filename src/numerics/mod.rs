@@ -1,0 +1,8 @@
+//! General numerical methods, with no physics in them.
+//!
+//! Everything here works on plain numbers and slices; units are the caller's business.
+
+pub mod dispatch;
+pub mod lanes;
+pub mod sum;
+pub mod tridiagonal;
