@@ -1,5 +1,9 @@
 #![doc = include_str!("../README.md")]
 
+pub mod forcing;
+pub mod grid;
 pub mod numerics;
+pub mod orbit;
+pub mod physics;
 pub mod series;
 pub mod units;

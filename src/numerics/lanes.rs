@@ -199,7 +199,10 @@ mod tests {
         for i in -7000..=7000_i32 {
             let x = f64::from(i) * 0.0999;
             let got = Lanes::splat(x).exp().0[2];
-            assert!((got / x.exp() - 1.0).abs() < 4e-16 * x.abs().max(2.0), "{x}");
+            assert!(
+                (got / x.exp() - 1.0).abs() < 4e-16 * x.abs().max(2.0),
+                "{x}"
+            );
         }
     }
 

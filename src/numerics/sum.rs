@@ -13,7 +13,10 @@ pub struct CompensatedSum {
 impl CompensatedSum {
     /// A sum that starts from `value`.
     pub fn new(value: f64) -> Self {
-        Self { sum: value, compensation: 0.0 }
+        Self {
+            sum: value,
+            compensation: 0.0,
+        }
     }
 
     /// Adds one term.
@@ -39,7 +42,10 @@ impl CompensatedSum {
 
     /// Rebuilds a sum from [`CompensatedSum::parts`].
     pub fn from_parts(parts: [f64; 2]) -> Self {
-        Self { sum: parts[0], compensation: parts[1] }
+        Self {
+            sum: parts[0],
+            compensation: parts[1],
+        }
     }
 }
 

@@ -43,7 +43,10 @@ impl Factored {
     /// When the lengths differ.
     pub fn new(lower: &[f64], diagonal: &[f64], upper: &[f64]) -> Self {
         let n = diagonal.len();
-        assert!(lower.len() == n && upper.len() == n, "diagonals of one length");
+        assert!(
+            lower.len() == n && upper.len() == n,
+            "diagonals of one length"
+        );
         let (mut inverse_pivot, mut ratio) = (vec![0.0; n], vec![0.0; n]);
         let mut above = 0.0;
         for i in 0..n {
@@ -53,7 +56,11 @@ impl Factored {
         }
         let mut lower = lower.to_vec();
         lower.iter_mut().take(1).for_each(|first| *first = 0.0);
-        Self { lower, inverse_pivot, ratio }
+        Self {
+            lower,
+            inverse_pivot,
+            ratio,
+        }
     }
 
     /// Replaces `rhs` by the solution.
@@ -99,7 +106,13 @@ mod tests {
     fn analytic_both_solvers_return_the_known_solution() {
         let (lower, diagonal, upper, x, rhs) = example();
         let mut once = rhs.clone();
-        solve(&lower, &diagonal, &upper, &mut once, &mut vec![0.0; x.len()]);
+        solve(
+            &lower,
+            &diagonal,
+            &upper,
+            &mut once,
+            &mut vec![0.0; x.len()],
+        );
         let mut factored = rhs;
         Factored::new(&lower, &diagonal, &upper).solve(&mut factored);
         for i in 0..x.len() {

@@ -1,0 +1,4 @@
+//! Where things are: latitude bands, levels of the ocean column, the calendar.
+
+pub mod column;
+pub mod latitude;

@@ -1,0 +1,4 @@
+//! stub until the branch lands
+/// stub
+#[derive(Clone, Copy, Debug)]
+pub struct Elements;

@@ -1,0 +1,2 @@
+//! stub until the branch lands
+pub mod elements;

@@ -1,0 +1,162 @@
+//! The parts of the climate: each a [`Component`] that knows its own equations and nothing of
+//! the others.
+//!
+//! Components meet only in [`exchange::Exchange`], in annual means, and book what they conserve
+//! in [`budget::Ledger`].
+
+pub mod budget;
+pub mod exchange;
+pub mod saturation;
+
+use crate::forcing::YearForcing;
+use crate::series::Variable;
+use budget::{Account, Quantity};
+use exchange::Exchange;
+
+/// A parameter outside the range in which the equations hold.
+#[derive(Clone, Debug, PartialEq, thiserror::Error)]
+#[error("{key} = {value} is out of range: {limit}")]
+pub struct RangeError {
+    /// Key path below the component's table, such as `sea_ice.conductivity_w_m_k`.
+    pub key: String,
+    /// The value found.
+    pub value: f64,
+    /// What is allowed, in words.
+    pub limit: &'static str,
+}
+
+/// Something went wrong while the model ran.
+#[derive(Clone, Debug, PartialEq, thiserror::Error)]
+pub enum PhysicsError {
+    /// A state left the range of finite numbers.
+    #[error("{component}: {variable} is not finite at {place}")]
+    NotFinite {
+        /// Component that noticed.
+        component: &'static str,
+        /// Variable that broke.
+        variable: &'static str,
+        /// Band or level.
+        place: String,
+    },
+    /// A restart state does not fit this component.
+    #[error(
+        "{component}: the restart state has {found} numbers, this configuration needs {needed}"
+    )]
+    RestartLength {
+        /// Component concerned.
+        component: &'static str,
+        /// Numbers found.
+        found: usize,
+        /// Numbers needed.
+        needed: usize,
+    },
+}
+
+/// One part of the climate, advanced one seasonal year at a time.
+pub trait Component: Send {
+    /// Name, as in the configuration and in the files.
+    fn name(&self) -> &'static str;
+
+    /// Advances one seasonal year. Reads what the others left in `exchange`, writes its own
+    /// fields there.
+    ///
+    /// # Errors
+    /// When the state is no longer finite; the state is then not to be used.
+    fn advance(
+        &mut self,
+        forcing: &YearForcing<'_>,
+        exchange: &mut Exchange,
+    ) -> Result<(), PhysicsError>;
+
+    /// What this component conserves; one [`Account`] is expected for each.
+    fn conserves(&self) -> &'static [Quantity];
+
+    /// The accounts of the year just advanced, one for each quantity in [`Component::conserves`].
+    fn accounts(&self) -> Vec<Account>;
+
+    /// Variables this component contributes to a record.
+    fn variables(&self) -> Vec<Variable>;
+
+    /// Appends this year's values of those variables, in the same order, row-major in their axes.
+    fn record(&self, values: &mut Vec<f64>);
+
+    /// Everything needed to go on bit for bit.
+    fn save(&self) -> Vec<f64>;
+
+    /// Restores what [`Component::save`] gave.
+    ///
+    /// # Errors
+    /// When the length does not fit.
+    fn restore(&mut self, state: &[f64]) -> Result<(), PhysicsError>;
+}
+
+/// Collects range violations so that all are reported at once.
+#[derive(Debug, Default)]
+pub struct Ranges {
+    violations: Vec<RangeError>,
+}
+
+impl Ranges {
+    /// Notes a violation unless `allowed` holds. NaN never holds.
+    pub fn require(&mut self, key: &str, value: f64, allowed: bool, limit: &'static str) {
+        if !allowed {
+            self.violations.push(RangeError {
+                key: key.to_owned(),
+                value,
+                limit,
+            });
+        }
+    }
+
+    /// Requires a positive finite number.
+    pub fn positive(&mut self, key: &str, value: f64) {
+        self.require(
+            key,
+            value,
+            value > 0.0 && value.is_finite(),
+            "must be positive",
+        );
+    }
+
+    /// Requires zero or a positive finite number.
+    pub fn not_negative(&mut self, key: &str, value: f64) {
+        self.require(
+            key,
+            value,
+            value >= 0.0 && value.is_finite(),
+            "must not be negative",
+        );
+    }
+
+    /// Requires a number from 0 to 1.
+    pub fn fraction(&mut self, key: &str, value: f64) {
+        self.require(
+            key,
+            value,
+            (0.0..=1.0).contains(&value),
+            "must lie between 0 and 1",
+        );
+    }
+
+    /// Requires a finite number.
+    pub fn finite(&mut self, key: &str, value: f64) {
+        self.require(key, value, value.is_finite(), "must be finite");
+    }
+
+    /// All violations, or none.
+    ///
+    /// # Errors
+    /// When at least one requirement did not hold.
+    pub fn finish(self) -> Result<(), Vec<RangeError>> {
+        if self.violations.is_empty() {
+            Ok(())
+        } else {
+            Err(self.violations)
+        }
+    }
+}
+
+/// Smooth step from 0 to 1 around `centre`: (1 + tanh((y - centre) / width)) / 2.
+pub fn smooth_step(y: f64, centre: f64, width: f64) -> f64 {
+    0.5 * (1.0 + ((y - centre) / width).tanh())
+}
