@@ -24,3 +24,6 @@ pub const SEA_ICE_LATENT_HEAT_J_M3: f64 = 334_000.0 * 917.0;
 /// Freezing temperature of sea water of salinity 35, degC (TEOS-10: -1.92 at the surface;
 /// -1.8 degC is the customary rounded value of the field, common practice).
 pub const SEA_WATER_FREEZING_C: f64 = -1.8;
+/// Latent heat of evaporation over the specific heat of air, K: 2.501e6 J kg-1 / 1004.6 J kg-1 K-1
+/// (handbook values at 0 degC, dry air).
+pub const LATENT_OVER_SPECIFIC_HEAT_K: f64 = 2.501e6 / 1004.6;

@@ -1,4 +1,5 @@
 //! Where things are: latitude bands, levels of the ocean column, the calendar.
 
+pub mod calendar;
 pub mod column;
 pub mod latitude;

@@ -162,6 +162,74 @@ impl Lanes {
     }
 }
 
+/// A field over latitude bands, held in rows of four for [`Lanes`] and readable as a plain slice.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Rows(Vec<[f64; WIDTH]>);
+
+impl Rows {
+    /// A field of `len` equal values; `len` is rounded down to a multiple of four.
+    pub fn new(len: usize, value: f64) -> Self {
+        Self(vec![[value; WIDTH]; len / WIDTH])
+    }
+
+    /// A field holding `values`, whose number is rounded down to a multiple of four.
+    pub fn from_slice(values: &[f64]) -> Self {
+        let mut rows = Self::new(values.len(), 0.0);
+        rows.flat_mut().iter_mut().zip(values).for_each(|(to, from)| *to = *from);
+        rows
+    }
+
+    /// Number of rows.
+    #[inline(always)]
+    pub fn rows(&self) -> usize {
+        self.0.len()
+    }
+
+    /// Row `r`.
+    ///
+    /// # Panics
+    /// When there is no such row.
+    #[inline(always)]
+    pub fn at(&self, r: usize) -> Lanes {
+        Lanes(self.0[r])
+    }
+
+    /// Replaces row `r`.
+    ///
+    /// # Panics
+    /// When there is no such row.
+    #[inline(always)]
+    pub fn set(&mut self, r: usize, value: Lanes) {
+        self.0[r] = value.0;
+    }
+
+    /// Adds to row `r`.
+    ///
+    /// # Panics
+    /// When there is no such row.
+    #[inline(always)]
+    pub fn add(&mut self, r: usize, value: Lanes) {
+        self.set(r, self.at(r) + value);
+    }
+
+    /// All values in order.
+    #[inline(always)]
+    pub fn flat(&self) -> &[f64] {
+        self.0.as_flattened()
+    }
+
+    /// All values in order, to be changed.
+    #[inline(always)]
+    pub fn flat_mut(&mut self) -> &mut [f64] {
+        self.0.as_flattened_mut()
+    }
+
+    /// Sets every value.
+    pub fn fill(&mut self, value: f64) {
+        self.flat_mut().fill(value);
+    }
+}
+
 /// 1/k! for k = 0..=13.
 const EXP_TAYLOR: [f64; 14] = [
     1.0,

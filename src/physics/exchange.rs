@@ -94,4 +94,50 @@ impl Exchange {
             column_temperature_c: Vec::new(),
         }
     }
+
+    /// All fields one after another, for restart files.
+    pub fn save(&self) -> Vec<f64> {
+        let mut all = self.clone();
+        let mut values = Vec::new();
+        all.fields(&mut |field| values.extend_from_slice(field));
+        values
+    }
+
+    /// Restores what [`Exchange::save`] gave into an exchange of the same shape; `None` when the
+    /// number of values does not fit.
+    pub fn restore(&mut self, mut values: &[f64]) -> Option<()> {
+        let mut needed = 0;
+        self.fields(&mut |field| needed += field.len());
+        if needed != values.len() {
+            return None;
+        }
+        self.fields(&mut |field| {
+            let (mine, rest) = values.split_at(field.len());
+            field.copy_from_slice(mine);
+            values = rest;
+        });
+        Some(())
+    }
+
+    fn fields(&mut self, visit: &mut dyn FnMut(&mut [f64])) {
+        let Self {
+            mixed_layer_temperature_c, sinking_volume_m3, sinking_heat_m3_c,
+            deep_sinking_temperature_c, gross_sinking_loss_w, net_sinking_loss_w,
+            atmosphere_transport_w, atmosphere_energy_input_w_m2, land_air_2m_c, ocean_air_2m_c,
+            column_heat_w, upwelling_m3_s, deep_sinking_m3_s, subtropical_sinking_m3_s,
+            column_area_share, column_depth_m, column_temperature_c,
+        } = self;
+        for field in [
+            mixed_layer_temperature_c, sinking_volume_m3, sinking_heat_m3_c,
+            atmosphere_transport_w, atmosphere_energy_input_w_m2, land_air_2m_c, ocean_air_2m_c,
+            column_heat_w, upwelling_m3_s, column_area_share, column_depth_m, column_temperature_c,
+        ] {
+            visit(field);
+        }
+        visit(gross_sinking_loss_w);
+        visit(net_sinking_loss_w);
+        for number in [deep_sinking_temperature_c, deep_sinking_m3_s, subtropical_sinking_m3_s] {
+            visit(std::slice::from_mut(number));
+        }
+    }
 }

@@ -5,6 +5,7 @@
 //! in [`budget::Ledger`].
 
 pub mod budget;
+pub mod energy_balance;
 pub mod exchange;
 pub mod saturation;
 
@@ -12,6 +13,8 @@ use crate::forcing::YearForcing;
 use crate::series::Variable;
 use budget::{Account, Quantity};
 use exchange::Exchange;
+use serde::de::DeserializeOwned;
+use serde::{Deserialize, Serialize};
 
 /// A parameter outside the range in which the equations hold.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
@@ -50,6 +53,68 @@ pub enum PhysicsError {
         /// Numbers needed.
         needed: usize,
     },
+}
+
+/// What every component is built on.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Setting {
+    /// The planet's surface in bands.
+    pub surface: exchange::Surface,
+    /// Seasonal steps in a year.
+    pub steps_per_year: usize,
+}
+
+/// A component that can be built from its table in the configuration.
+pub trait Build: Component + Sized + 'static {
+    /// The table.
+    type Params: Clone + PartialEq + std::fmt::Debug + Serialize + DeserializeOwned;
+
+    /// Builds the component and writes into `exchange` what the others need in the first year.
+    ///
+    /// # Errors
+    /// Every parameter out of range, with keys below the component's own table.
+    fn build(params: &Self::Params, setting: &Setting, exchange: &mut Exchange) -> Result<Self, Vec<RangeError>>;
+}
+
+/// Declares the components: their table in the configuration, and the order in which they are
+/// advanced within a year.
+macro_rules! components {
+    ($($(#[$doc:meta])* $name:ident: $type:ty),* $(,)?) => {
+        /// The tables below `physics` in a configuration; a component without one is left out.
+        #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+        #[serde(deny_unknown_fields)]
+        pub struct PhysicsSpec {
+            $($(#[$doc])* pub $name: Option<<$type as Build>::Params>),*
+        }
+
+        impl PhysicsSpec {
+            /// Builds all components that have a table, in the order of the list.
+            ///
+            /// # Errors
+            /// Every parameter out of range in any of them, keys starting at `physics`.
+            pub fn build(
+                &self, setting: &Setting, exchange: &mut Exchange,
+            ) -> Result<Vec<Box<dyn Component>>, Vec<RangeError>> {
+                let mut built: Vec<Box<dyn Component>> = Vec::new();
+                let mut violations = Vec::new();
+                $(if let Some(params) = &self.$name {
+                    match <$type>::build(params, setting, exchange) {
+                        Ok(component) => built.push(Box::new(component)),
+                        Err(found) => violations.extend(found.into_iter().map(|mut v| {
+                            v.key = format!("physics.{}.{}", stringify!($name), v.key);
+                            v
+                        })),
+                    }
+                })*
+                if violations.is_empty() { Ok(built) } else { Err(violations) }
+            }
+        }
+    };
+}
+
+components! {
+    /// Air, land, ocean mixed layer and sea ice over the seasons.
+    energy_balance: energy_balance::EnergyBalance,
 }
 
 /// One part of the climate, advanced one seasonal year at a time.

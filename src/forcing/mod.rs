@@ -2,6 +2,9 @@
 //!
 //! A value, computed once and passed by reference; no component keeps it.
 
+pub mod carbon_dioxide;
+pub mod drive;
+
 use crate::orbit::elements::Elements;
 
 /// Forcing of one seasonal year.

@@ -1,0 +1,145 @@
+//! Forcing for any year of a run: orbit, insolation table, carbon dioxide.
+//!
+//! The insolation table is renewed every few years with the orbit of the middle of that interval
+//! (at eccentricity 0.05 ten years move the insolation by less than 0.1 W m-2 either way).
+//! Intervals are counted from the start of the run, so a run that goes on from a saved state
+//! meets the same tables.
+
+use super::YearForcing;
+use super::carbon_dioxide::{CarbonDioxide, CarbonDioxideError};
+use crate::grid::calendar::Calendar;
+use crate::orbit::elements::Elements;
+use crate::orbit::insolation::InsolationTable;
+use crate::orbit::solution::{Orbit, OrbitError};
+
+/// What is needed to force the model.
+#[derive(Clone, Debug)]
+pub struct Drive {
+    orbit: Orbit,
+    carbon_dioxide: CarbonDioxide,
+    solar_constant_w_m2: f64,
+    co2_reference_ppm: f64,
+    co2_forcing_w_m2: f64,
+    refresh_yr: f64,
+    table: InsolationTable,
+    table_interval: Option<i64>,
+    table_orbit: Option<Elements>,
+}
+
+/// Numbers of a [`Drive`] besides orbit and carbon dioxide.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct DriveNumbers {
+    /// Solar constant, W m-2.
+    pub solar_constant_w_m2: f64,
+    /// Years between renewals of the insolation table.
+    pub refresh_yr: f64,
+    /// Carbon dioxide at which the longwave offset A holds, ppm.
+    pub co2_reference_ppm: f64,
+    /// k in k ln(C/C_ref), W m-2.
+    pub co2_forcing_w_m2: f64,
+}
+
+/// Why there is no forcing for an age.
+#[derive(Clone, Debug, PartialEq, thiserror::Error)]
+pub enum DriveError {
+    /// The orbit does not reach there.
+    #[error(transparent)]
+    Orbit(#[from] OrbitError),
+    /// Carbon dioxide does not reach there.
+    #[error(transparent)]
+    CarbonDioxide(#[from] CarbonDioxideError),
+}
+
+impl Drive {
+    /// Forcing on the bands with these edges (sines), at `steps` steps a year.
+    pub fn new(
+        orbit: Orbit, carbon_dioxide: CarbonDioxide, numbers: DriveNumbers, edge_sine: &[f64], steps: usize,
+    ) -> Self {
+        Self {
+            orbit,
+            carbon_dioxide,
+            solar_constant_w_m2: numbers.solar_constant_w_m2,
+            co2_reference_ppm: numbers.co2_reference_ppm,
+            co2_forcing_w_m2: numbers.co2_forcing_w_m2,
+            refresh_yr: numbers.refresh_yr,
+            table: InsolationTable::new(edge_sine, steps),
+            table_interval: None,
+            table_orbit: None,
+        }
+    }
+
+    /// Orbit at an age (kyr before 1950).
+    ///
+    /// # Errors
+    /// When the orbital solution does not reach there.
+    pub fn orbit_at(&self, age_kyr: f64) -> Result<Elements, OrbitError> {
+        self.orbit.at(age_kyr)
+    }
+
+    /// Carbon dioxide at an age, ppm.
+    ///
+    /// # Errors
+    /// When it was not given there.
+    pub fn co2_at(&self, age_kyr: f64) -> Result<f64, CarbonDioxideError> {
+        self.carbon_dioxide.at(age_kyr)
+    }
+
+    /// Radiative forcing of a concentration against the reference, W m-2.
+    pub fn greenhouse_w_m2(&self, co2_ppm: f64) -> f64 {
+        self.co2_forcing_w_m2 * (co2_ppm / self.co2_reference_ppm).ln()
+    }
+
+    /// Forcing of the seasonal year in the middle of which `years` have passed since
+    /// `start_kyr`; slow components advance `slow_years` in it.
+    ///
+    /// # Errors
+    /// When orbit or carbon dioxide do not reach there.
+    pub fn year(&mut self, start_kyr: f64, years: f64, slow_years: f64) -> Result<YearForcing<'_>, DriveError> {
+        let age_kyr = start_kyr - years / 1000.0;
+        let co2_ppm = self.carbon_dioxide.at(age_kyr)?;
+        #[expect(clippy::cast_possible_truncation, reason = "runs are far shorter than 2^63 intervals")]
+        let interval = (years / self.refresh_yr).floor() as i64;
+        let orbit = match self.table_orbit {
+            Some(orbit) if self.table_interval == Some(interval) => orbit,
+            _ => {
+                let middle_yr = (interval as f64 + 0.5) * self.refresh_yr;
+                let orbit = self.orbit.at(start_kyr - middle_yr / 1000.0)?;
+                self.renew(orbit);
+                self.table_interval = Some(interval);
+                orbit
+            }
+        };
+        Ok(self.forcing(age_kyr, orbit, co2_ppm, slow_years))
+    }
+
+    /// Forcing held at one age, for spin-up and steady states.
+    ///
+    /// # Errors
+    /// When orbit or carbon dioxide do not reach there.
+    pub fn held(&mut self, age_kyr: f64, slow_years: f64) -> Result<YearForcing<'_>, DriveError> {
+        let co2_ppm = self.carbon_dioxide.at(age_kyr)?;
+        let orbit = self.orbit.at(age_kyr)?;
+        if self.table_orbit != Some(orbit) {
+            self.renew(orbit);
+        }
+        self.table_interval = None;
+        Ok(self.forcing(age_kyr, orbit, co2_ppm, slow_years))
+    }
+
+    fn renew(&mut self, orbit: Elements) {
+        self.table.update(&orbit, self.solar_constant_w_m2, Calendar::equinox_fraction());
+        self.table_orbit = Some(orbit);
+    }
+
+    fn forcing(&self, age_kyr: f64, orbit: Elements, co2_ppm: f64, slow_years: f64) -> YearForcing<'_> {
+        YearForcing {
+            age_kyr,
+            orbit,
+            co2_ppm,
+            greenhouse_w_m2: self.greenhouse_w_m2(co2_ppm),
+            insolation_w_m2: self.table.daily_mean_w_m2(),
+            zenith_cosine: self.table.zenith_cosine(),
+            slow_years,
+        }
+    }
+}

@@ -1,0 +1,82 @@
+//! Means over the years of a record.
+//!
+//! Orbit and carbon dioxide are those of the middle of the record; the ledger's numbers are those
+//! at its end; everything else is the mean over its years.
+
+use super::clock::Plan;
+use crate::forcing::drive::{Drive, DriveError};
+use crate::physics::Component;
+use crate::physics::budget::Ledger;
+use crate::series::{Record, Scale, Variable};
+
+/// Variables that the model itself adds in front of those of the components.
+pub fn model_variables() -> Vec<Variable> {
+    let scalar = |name, units, long_name, standard_name| Variable {
+        name, axes: &[], units, long_name, standard_name, scale: Scale::Plain,
+    };
+    vec![
+        scalar("eccentricity", "1", "eccentricity of the orbit, middle of the record", None),
+        scalar("obliquity", "degree", "obliquity of the ecliptic, middle of the record", None),
+        scalar("perihelion_longitude", "degree", "heliocentric longitude of perihelion from the moving March equinox (102.9 today; the sun is then seen 180 degrees further), middle of the record", None),
+        scalar("climatic_precession", "1", "eccentricity times the sine of the heliocentric longitude of perihelion, middle of the record", None),
+        scalar("co2", "1e-6", "mole fraction of carbon dioxide in dry air, middle of the record", Some("mole_fraction_of_carbon_dioxide_in_air")),
+        scalar("co2_forcing", "W m-2", "radiative forcing of carbon dioxide against its reference, middle of the record", None),
+        scalar("heat_residual", "J", "heat on the planet beyond what it held at the start and received since, end of the record", None),
+        scalar("heat_residual_over_throughput", "1", "the same over all sunlight absorbed since the start, end of the record", None),
+        scalar("heat_change", "J", "change of the heat on the planet since the start, end of the record", None),
+    ]
+}
+
+/// Running sums.
+pub(super) struct Records {
+    sums: Vec<f64>,
+    year: Vec<f64>,
+    count: u64,
+}
+
+impl Records {
+    pub(super) fn new(components: &[Box<dyn Component>]) -> Self {
+        let mut year = Vec::new();
+        components.iter().for_each(|c| c.record(&mut year));
+        Self { sums: vec![0.0; year.len()], year, count: 0 }
+    }
+
+    /// Adds the year just run.
+    pub(super) fn add(&mut self, components: &[Box<dyn Component>]) {
+        self.year.clear();
+        components.iter().for_each(|c| c.record(&mut self.year));
+        if self.sums.len() != self.year.len() {
+            self.sums.resize(self.year.len(), 0.0);
+        }
+        for (sum, value) in self.sums.iter_mut().zip(&self.year) {
+            *sum += value;
+        }
+        self.count += 1;
+    }
+
+    /// Closes the record that ends with seasonal year `year`.
+    pub(super) fn close(
+        &mut self, plan: &Plan, year: u64, drive: &Drive, ledger: &Ledger,
+    ) -> Result<Record, DriveError> {
+        let age_bounds_kyr = plan.record_bounds_kyr(year);
+        let age_kyr = 0.5 * (age_bounds_kyr[0] + age_bounds_kyr[1]);
+        let orbit = drive.orbit_at(age_kyr)?;
+        let co2_ppm = drive.co2_at(age_kyr)?;
+        let mut values = vec![
+            orbit.eccentricity,
+            orbit.obliquity_deg,
+            orbit.perihelion.heliocentric_deg(),
+            orbit.climatic_precession(),
+            co2_ppm,
+            drive.greenhouse_w_m2(co2_ppm),
+            ledger.residual(),
+            ledger.relative_residual(),
+            ledger.net_change(),
+        ];
+        let share = 1.0 / self.count as f64;
+        values.extend(self.sums.iter().map(|sum| sum * share));
+        self.sums.fill(0.0);
+        self.count = 0;
+        Ok(Record { age_kyr, age_bounds_kyr, values })
+    }
+}

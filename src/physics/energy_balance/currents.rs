@@ -1,0 +1,139 @@
+//! Heat carried by ocean currents in the mixed layer.
+//!
+//! Three exchanges, all pairwise, so that no heat is made or lost:
+//! - gyres: diffusion 2 pi R^2 D_o min(f_o) (1 - x^2) dT_o/dx;
+//! - overturning: upwelling u_i and sinking q_i per band give the northward flow psi at the
+//!   edges, psi_{j+1} = psi_j + u_j - q_j, which carries the temperature of the band it comes
+//!   from (upwind); sinking water takes rho c q_i T_o,i down into the column;
+//! - the column gives each band the heat it was told at the end of last year.
+//!
+//! Sinking follows each hemisphere's winter by itself: the deep rate is spread with weights
+//! A f_o window (1 - ice cover) L exp(-(T_o - T_f)/T_c), the shallow subtropical rate with
+//! A f_o window L, L = (loss + sqrt(loss^2 + loss_0^2))/2 being the smooth positive part of the
+//! ocean's heat loss. After a Walin (1982) view of water transformed by heat loss; the window and
+//! the exponential are choices of this model.
+//!
+//! Numerics: all evaluated at the extrapolated state; gyre diffusion is corrected implicitly with
+//! a constant matrix, (C A/gamma - L) delta = open-water residual, which keeps the order because
+//! delta is of the size of the extrapolation error.
+
+use super::coefficients::Coefficients;
+use super::surfaces::Work;
+use crate::numerics::lanes::Lanes;
+use crate::units::{SEA_WATER_FREEZING_C, SEA_WATER_HEAT_CAPACITY_J_M3_K};
+
+/// What the column told for this year.
+#[derive(Clone, Copy)]
+pub(super) struct ColumnSide<'a> {
+    /// Heat given to each band, W.
+    pub heat_w: &'a [f64],
+    /// Upwelling into each band, m3 s-1.
+    pub upwelling_m3_s: &'a [f64],
+    pub deep_sinking_m3_s: f64,
+    pub subtropical_sinking_m3_s: f64,
+}
+
+/// Smallest open-water share in the sinking weights: an ocean frozen from pole to pole still
+/// sinks what it was told to, through its leads.
+const LEAST_OPEN: f64 = 1.0e-9;
+
+/// Adds the heat brought by currents to the ocean's residual and leaves the total flux through
+/// the edges in `edge_flux_w` (W, northward, `bands + 1` values). Returns the temperature sum of
+/// the deep sinking, m3 s-1 degC.
+#[inline(always)]
+pub(super) fn transport(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>, edge_flux_w: &mut [f64]) -> f64 {
+    let deep_heat = sinking_rates(c, w, column);
+    advect(c, w, column, edge_flux_w);
+    for r in 0..w.ocean_transport.rows() {
+        let brought = w.ocean_transport.at(r) * c.per_ocean_area.at(r);
+        w.ocean_transport.set(r, brought);
+        w.ocean_residual.add(r, brought);
+    }
+    correct_gyres(c, w, edge_flux_w);
+    deep_heat
+}
+
+#[inline(always)]
+fn sinking_rates(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>) -> f64 {
+    let (mut deep_sum, mut shallow_sum) = (Lanes::splat(0.0), Lanes::splat(0.0));
+    for r in 0..w.air.rows() {
+        let loss = w.ocean_flux.at(r) + w.ocean_emission.at(r) - w.ocean_absorbed.at(r);
+        let positive = (loss + (loss * loss + c.loss_smoothing_squared).sqrt()) * 0.5;
+        let above_freezing = w.water_temperature.at(r) - SEA_WATER_FREEZING_C;
+        let cold = (above_freezing * -c.per_convection_temperature).exp();
+        let open = (Lanes::splat(1.0) - w.ice_cover.at(r)).max(Lanes::splat(LEAST_OPEN));
+        let deep = c.deep_window.at(r) * open * positive * cold;
+        let shallow = c.subtropical_window.at(r) * positive;
+        deep_sum += deep;
+        shallow_sum += shallow;
+        w.deep_sinking.set(r, deep);
+        w.sinking.set(r, shallow);
+    }
+    let deep_scale = per(column.deep_sinking_m3_s, deep_sum.sum());
+    let shallow_scale = per(column.subtropical_sinking_m3_s, shallow_sum.sum());
+    let mut deep_heat = Lanes::splat(0.0);
+    for r in 0..w.air.rows() {
+        let deep = w.deep_sinking.at(r) * deep_scale;
+        let shallow = w.sinking.at(r) * shallow_scale;
+        deep_heat += deep * w.water_temperature.at(r);
+        w.deep_sinking.set(r, deep);
+        w.sinking.set(r, deep + shallow);
+    }
+    deep_heat.sum()
+}
+
+#[inline(always)]
+fn per(rate: f64, weight: f64) -> f64 {
+    if weight > 0.0 { rate / weight } else { 0.0 }
+}
+
+/// Gyre and overturning fluxes through the edges, W, and their convergence with sinking and the
+/// column's heat, W per band.
+#[inline(always)]
+fn advect(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>, edge_flux_w: &mut [f64]) {
+    let n = c.bands;
+    let temperature = &w.water_temperature.flat()[..n];
+    let sinking = &w.sinking.flat()[..n];
+    let (upwelling, heat) = (&column.upwelling_m3_s[..n], &column.heat_w[..n]);
+    let conductance = &c.gyre_conductance[..=n];
+    let into = &mut w.ocean_transport.flat_mut()[..n];
+    let edge = &mut edge_flux_w[..=n];
+    let mut flow = 0.0;
+    edge[0] = 0.0;
+    edge[n] = 0.0;
+    for j in 1..n {
+        flow += upwelling[j - 1] - sinking[j - 1];
+        let carried = if flow > 0.0 { temperature[j - 1] } else { temperature[j] };
+        edge[j] = SEA_WATER_HEAT_CAPACITY_J_M3_K * (flow * carried)
+            - conductance[j] * (temperature[j] - temperature[j - 1]);
+    }
+    for i in 0..n {
+        into[i] = edge[i] - edge[i + 1] + heat[i]
+            - SEA_WATER_HEAT_CAPACITY_J_M3_K * (sinking[i] * temperature[i]);
+    }
+}
+
+#[inline(always)]
+fn correct_gyres(c: &Coefficients, w: &mut Work, edge_flux_w: &mut [f64]) {
+    for r in 0..w.air.rows() {
+        let open = w.open_water.at(r) * c.ocean_area_m2.at(r);
+        w.correction.set(r, open * w.ocean_residual.at(r));
+    }
+    c.gyre_factors.solve(w.correction.flat_mut());
+    let n = c.bands;
+    let delta = &w.correction.flat()[..n];
+    let conductance = &c.gyre_conductance[..=n];
+    let area = &c.per_ocean_area.flat()[..n];
+    let edge = &mut edge_flux_w[..=n];
+    let residual = &mut w.ocean_residual.flat_mut()[..n];
+    let brought = &mut w.ocean_transport.flat_mut()[..n];
+    let mut below = 0.0;
+    for i in 0..n {
+        let above = if i + 1 < n { -conductance[i + 1] * (delta[i + 1] - delta[i]) } else { 0.0 };
+        let gained = (below - above) * area[i];
+        residual[i] += gained;
+        brought[i] += gained;
+        edge[i + 1] += above;
+        below = above;
+    }
+}

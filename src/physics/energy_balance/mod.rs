@@ -1,0 +1,241 @@
+//! Seasonal energy balance of the air, the land and the ocean's mixed layer with sea ice, in
+//! latitude bands.
+//!
+//! What: per band three reservoirs, air `T_a`, land `T_l`, ocean enthalpy E, and a layer under
+//! the mixed layer that stores heat over the season:
+//!   C_a dT_a/dt = chi S_abs - (A + B T_a - G) + f F_l + (1 - f) F_o + convergence of transport,
+//!   C_l dT_l/dt = (1 - chi) S (1 - albedo) - F_l,
+//!   dE/dt = (1 - chi) S (1 - albedo) - F_o - lambda (T_o - T_sub) + currents,
+//! (North & Coakley 1979 for two surfaces; Flannery 1984, Hwang & Frierson 2010 for the transport
+//! of moist static energy; Wagner & Eisenman 2015 for the enthalpy method.) With parts switched
+//! off or exchanged the same code is the one-surface model of North 1975, a two-surface linear
+//! model, or Budyko's relaxation to the mean; the closed forms of those test this kernel.
+//!
+//! Units: SI, temperatures in degC, northward fluxes in W.
+//!
+//! Numerics: backward differences of third order, one Newton step from the extrapolated state,
+//! one tridiagonal solve a step ([`surfaces`], [`currents`], [`air`], [`update`] in this order);
+//! insolation is exact at the end of each step. Heat closes to round-off ([`state`]).
+//! Nothing here knows of other components: the ocean column is met in
+//! [`crate::physics::exchange`] only.
+
+mod air;
+mod coefficients;
+mod currents;
+mod ice_line;
+mod means;
+pub mod params;
+mod report;
+mod state;
+mod surfaces;
+mod update;
+
+use super::budget::{Account, Quantity};
+use super::exchange::{Exchange, Surface};
+use super::{Build, Component, PhysicsError, RangeError, Setting};
+use crate::forcing::YearForcing;
+use crate::numerics::dispatch::{self, Kernel};
+use crate::series::Variable;
+use air::Transport;
+use coefficients::Coefficients;
+use currents::ColumnSide;
+use ice_line::IceLine;
+use means::{EdgeFluxes, FIELDS, Means};
+use params::Params;
+use report::Report;
+use state::State;
+use surfaces::{Sunlight, Work};
+
+/// The component; see the module.
+#[derive(Clone, Debug)]
+pub struct EnergyBalance {
+    surface: Surface,
+    coefficients: Coefficients,
+    transport: Transport,
+    ice_line: Option<IceLine>,
+    state: State,
+    work: Work,
+    edges: EdgeFluxes,
+    means: Means,
+    report: Report,
+}
+
+impl EnergyBalance {
+    /// Builds the component with a smooth start state.
+    ///
+    /// # Errors
+    /// All parameters out of range.
+    pub fn new(p: &Params, setting: &Setting) -> Result<Self, Vec<RangeError>> {
+        p.check()?;
+        let (surface, steps) = (&setting.surface, setting.steps_per_year);
+        let n = surface.bands.len();
+        let coefficients = Coefficients::new(p, surface, steps);
+        let state = State::new(&coefficients, &surface.bands.mean_sine());
+        let mut means = Means::new(n);
+        means.node.air.flat_mut().copy_from_slice(state.air.now.flat());
+        means.node.land.flat_mut().copy_from_slice(state.land.now.flat());
+        means.node.water.flat_mut().copy_from_slice(state.sub.now.flat());
+        means.node.ocean_surface.flat_mut().copy_from_slice(state.sub.now.flat());
+        Ok(Self {
+            transport: Transport::new(&p.transport, &surface.bands),
+            ice_line: IceLine::new(&p.albedo, &surface.bands),
+            work: Work::new(n),
+            edges: EdgeFluxes::new(n),
+            report: Report::new(p, n),
+            surface: surface.clone(),
+            coefficients,
+            state,
+            means,
+        })
+    }
+
+    /// Air temperature at sea level at the end of the last step, degC, `[band]`.
+    pub fn air_temperature_c(&self) -> &[f64] {
+        self.state.air.now.flat()
+    }
+
+    /// Land surface temperature at the end of the last step, degC, `[band]`.
+    pub fn land_temperature_c(&self) -> &[f64] {
+        self.state.land.now.flat()
+    }
+
+    /// Enthalpy of mixed layer and sea ice, J per m2 of ocean, `[band]`.
+    pub fn ocean_enthalpy_j_m2(&self) -> &[f64] {
+        self.state.enthalpy.now.flat()
+    }
+
+    /// Replaces the air temperature (degC, `[band]`) by a state at rest, for experiments on
+    /// stability.
+    pub fn set_air_temperature_c(&mut self, air_c: &[f64]) {
+        self.state.air.now.flat_mut().copy_from_slice(air_c);
+        self.state.air.last.fill(0.0);
+        self.state.air.before.fill(0.0);
+    }
+
+    /// sin(latitude) of the ice edge in the southern and northern hemisphere, for an ice-line
+    /// albedo; `None` otherwise.
+    pub fn ice_edge_sine(&self) -> Option<[f64; 2]> {
+        self.ice_line.as_ref().map(|line| line.edges(self.state.air.now.flat()))
+    }
+
+    /// Heat held by air, land and ocean layers, J, in the combination the formula conserves.
+    pub fn heat_j(&self) -> f64 {
+        self.state.heat_j(&self.coefficients)
+    }
+}
+
+impl Build for EnergyBalance {
+    type Params = Params;
+
+    fn build(params: &Params, setting: &Setting, _: &mut Exchange) -> Result<Self, Vec<RangeError>> {
+        Self::new(params, setting)
+    }
+}
+
+/// One seasonal year, run with the widest vectors the processor has.
+struct Year<'a> {
+    model: &'a mut EnergyBalance,
+    insolation: &'a [f64],
+    zenith: &'a [f64],
+    greenhouse: f64,
+    column: ColumnSide<'a>,
+}
+
+impl Kernel for Year<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run(self) {
+        let EnergyBalance { coefficients: c, transport, ice_line, state, work, edges, means, .. } =
+            self.model;
+        let n = c.bands;
+        means.begin_year(c);
+        for k in 0..c.steps {
+            let sun = Sunlight {
+                insolation: &self.insolation[k * n..(k + 1) * n],
+                zenith: &self.zenith[k * n..(k + 1) * n],
+            };
+            if let Some(line) = ice_line {
+                let ahead: Vec<[f64; 4]> =
+                    (0..n / 4).map(|r| state.air.extrapolated(r).0).collect();
+                line.renew(ahead.as_flattened(), c);
+            }
+            surfaces::evaluate(c, state, work, sun, self.greenhouse);
+            edges.deep_heat = currents::transport(c, work, self.column, &mut edges.ocean_w);
+            air::assemble(c, work, self.greenhouse);
+            transport.solve(c, work, &mut edges.air_w);
+            update::advance(c, state, work, means, self.greenhouse);
+            means.node.insolation.flat_mut().copy_from_slice(sun.insolation);
+            means.count_step(c, work, k, edges);
+            means.count_node(c, k + 1);
+        }
+    }
+}
+
+impl Component for EnergyBalance {
+    fn name(&self) -> &'static str {
+        "energy_balance"
+    }
+
+    fn advance(&mut self, forcing: &YearForcing<'_>, exchange: &mut Exchange) -> Result<(), PhysicsError> {
+        let column = ColumnSide {
+            heat_w: &exchange.column_heat_w,
+            upwelling_m3_s: &exchange.upwelling_m3_s,
+            deep_sinking_m3_s: exchange.deep_sinking_m3_s,
+            subtropical_sinking_m3_s: exchange.subtropical_sinking_m3_s,
+        };
+        dispatch::widest(Year {
+            model: self,
+            insolation: forcing.insolation_w_m2,
+            zenith: forcing.zenith_cosine,
+            greenhouse: forcing.greenhouse_w_m2,
+            column,
+        });
+        if let Some((variable, band)) = self.state.broken() {
+            let latitude = self.surface.bands.centre_deg()[band];
+            let place = format!("the band at {latitude} degrees north");
+            return Err(PhysicsError::NotFinite { component: self.name(), variable, place });
+        }
+        self.report.close_year(&self.coefficients, &self.surface, &self.means, &self.state, exchange);
+        Ok(())
+    }
+
+    fn conserves(&self) -> &'static [Quantity] {
+        &[Quantity::Energy]
+    }
+
+    fn accounts(&self) -> Vec<Account> {
+        vec![self.report.account.clone()]
+    }
+
+    fn variables(&self) -> Vec<Variable> {
+        report::variables()
+    }
+
+    fn record(&self, values: &mut Vec<f64>) {
+        self.report.record(values);
+    }
+
+    fn save(&self) -> Vec<f64> {
+        let n = self.coefficients.bands;
+        let mut values = Vec::with_capacity(State::len(n) + FIELDS * n);
+        self.state.save(&mut values);
+        self.means.node.fields().into_iter().for_each(|rows| values.extend_from_slice(rows.flat()));
+        values
+    }
+
+    fn restore(&mut self, state: &[f64]) -> Result<(), PhysicsError> {
+        let n = self.coefficients.bands;
+        let needed = State::len(n) + FIELDS * n;
+        if state.len() != needed {
+            let found = state.len();
+            return Err(PhysicsError::RestartLength { component: self.name(), found, needed });
+        }
+        self.state.restore(state);
+        let nodes = &state[State::len(n)..];
+        for (rows, values) in self.means.node.fields_mut().into_iter().zip(nodes.chunks(n)) {
+            rows.flat_mut().copy_from_slice(values);
+        }
+        Ok(())
+    }
+}

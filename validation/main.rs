@@ -1,0 +1,2 @@
+//! v
+mod energy_balance { pub mod set_up; mod case; }
