@@ -1,0 +1,3 @@
+//! The divisions of space and time that a run is made on.
+
+pub mod calendar;
