@@ -2,6 +2,7 @@
 
 pub mod forcing;
 pub mod grid;
+pub mod model;
 pub mod numerics;
 pub mod orbit;
 pub mod physics;

@@ -1,4 +1,4 @@
-//! Where things are: latitude bands, levels of the ocean column, the calendar.
+//! The divisions of space and time that a run is made on.
 
 pub mod calendar;
 pub mod column;

@@ -1,0 +1,165 @@
+//! Tests of the insolation table against quadrature, identities and its own base-target build.
+
+use super::*;
+use crate::orbit::elements::PerihelionLongitude;
+
+/// Time of the March equinox, fraction of the year.
+const EQUINOX: f64 = 79.5 / 365.0;
+
+fn orbit(eccentricity: f64, obliquity_deg: f64, sun_longitude_deg: f64) -> Elements {
+    Elements {
+        eccentricity,
+        obliquity_deg,
+        perihelion: PerihelionLongitude::from_sun_longitude_deg(sun_longitude_deg),
+    }
+}
+
+/// Bands of equal width in latitude.
+fn edges(bands: usize) -> Vec<f64> {
+    let latitude = |i: usize| -90.0 + 180.0 * i as f64 / bands as f64;
+    (0..=bands)
+        .map(|i| latitude(i).to_radians().sin())
+        .collect()
+}
+
+fn table(bands: usize, steps: usize, elements: &Elements) -> InsolationTable {
+    let mut table = InsolationTable::new(&edges(bands), steps).unwrap();
+    table.update(elements, 1361.0, EQUINOX);
+    table
+}
+
+/// Integrals of cos z and cos^2 z over half a day at a point.
+fn half_day_integrals(x: f64, season: Season) -> [f64; 2] {
+    let p = x * season.sine;
+    let q = (1.0 - x * x).sqrt() * season.cosine;
+    let h = (-p / q).clamp(-1.0, 1.0).acos();
+    let squares =
+        (p * p + 0.5 * q * q) * h + 2.0 * p * q * h.sin() + 0.25 * q * q * (2.0 * h).sin();
+    [p * h + q * h.sin(), squares]
+}
+
+#[test]
+fn analytic_band_means_agree_with_quadrature_in_latitude() {
+    let elements = orbit(0.04, 23.9, 250.0);
+    let table = table(18, 24, &elements);
+    let edges = edges(18);
+    let points = 20_000;
+    for (step, season) in table.seasons.iter().enumerate() {
+        for band in 0..18 {
+            let width = (edges[band + 1] - edges[band]) / f64::from(points);
+            let mut sums = [0.0; 2];
+            for i in 0..points {
+                let x = edges[band] + (f64::from(i) + 0.5) * width;
+                let at_point = half_day_integrals(x, *season);
+                sums[0] += at_point[0];
+                sums[1] += at_point[1];
+            }
+            let at = step * 18 + band;
+            let mean = season.flux_w_m2 * sums[0] / f64::from(points);
+            let error = table.daily_mean_w_m2[at] - mean;
+            assert!(error.abs() < 2e-4, "step {step} band {band}: {error:e}");
+            // In a band that the Sun only grazes the midpoint rule itself is poor.
+            if mean > 0.05 {
+                let error = table.zenith_cosine[at] - sums[1] / sums[0];
+                assert!(error.abs() < 2e-6, "step {step} band {band}: {error:e}");
+            } else {
+                assert!((0.0..0.06).contains(&table.zenith_cosine[at]));
+            }
+        }
+    }
+}
+
+#[test]
+fn conserves_the_flux_on_the_disc_at_every_step_and_over_the_year() {
+    for elements in [
+        orbit(0.0, 23.4, 0.0),
+        orbit(0.0167, 23.44, 282.9),
+        orbit(0.06, 24.5, 100.0),
+    ] {
+        let table = table(36, 72, &elements);
+        let edges = edges(36);
+        let area = |band: usize| 0.5 * (edges[band + 1] - edges[band]);
+        for (row, season) in table.daily_mean_w_m2.chunks(36).zip(&table.seasons) {
+            let mean: f64 = row.iter().enumerate().map(|(b, q)| area(b) * q).sum();
+            let disc = season.flux_w_m2 * PI / 4.0;
+            assert!((mean / disc - 1.0).abs() < 2e-14);
+        }
+        let annual = table.annual_mean_w_m2();
+        let mean: f64 = annual.iter().enumerate().map(|(b, q)| area(b) * q).sum();
+        let e = elements.eccentricity;
+        let expected = 1361.0 / 4.0 / (1.0 - e * e).sqrt();
+        assert!((mean / expected - 1.0).abs() < 1e-13, "{mean} {expected}");
+    }
+}
+
+#[test]
+fn analytic_polar_night_is_exactly_dark_and_polar_day_follows_the_declination() {
+    // Obliquity 23.4, June solstice: the northernmost band has polar day, the southernmost night.
+    let mut table = InsolationTable::new(&edges(36), 4).unwrap();
+    table.update(&orbit(0.0, 23.4, 0.0), 1361.0, 0.0);
+    let sine = 23.4_f64.to_radians().sin();
+    let north = 1361.0 * sine * 0.5 * (1.0 + 85.0_f64.to_radians().sin());
+    assert!((table.daily_mean_w_m2[35] - north).abs() < 1e-9);
+    assert!(table.daily_mean_w_m2[0].abs() < f64::MIN_POSITIVE);
+    assert!(table.zenith_cosine[0].abs() < f64::MIN_POSITIVE);
+}
+
+#[test]
+fn analytic_mirrored_orbit_swaps_the_hemispheres_at_the_other_equinox() {
+    // Q(x, longitude, perihelion) = Q(-x, longitude + 180, perihelion + 180).
+    let (here, there) = (orbit(0.05, 23.0, 40.0), orbit(0.05, 23.0, 220.0));
+    let mut at_spring = InsolationTable::new(&edges(36), 1).unwrap();
+    at_spring.update(&here, 1361.0, 1.0);
+    let mut at_autumn = InsolationTable::new(&edges(36), 1).unwrap();
+    let half_year = crate::orbit::kepler::years_since_equinox(&there, 180.0);
+    at_autumn.update(&there, 1361.0, 1.0 - half_year);
+    for band in 0..36 {
+        let q = at_spring.daily_mean_w_m2[band] - at_autumn.daily_mean_w_m2[35 - band];
+        let z = at_spring.zenith_cosine[band] - at_autumn.zenith_cosine[35 - band];
+        assert!(q.abs() < 1e-9 && z.abs() < 1e-9, "{band}: {q:e} {z:e}");
+    }
+}
+
+#[test]
+fn analytic_extreme_orbits_and_uneven_bands_stay_finite() {
+    let x = [-1.0, -0.999_999_999_999, -0.3, 0.0, 1e-9, 0.917_754_6, 1.0];
+    for obliquity in [0.0, 1e-9, 23.45, 66.6, 90.0] {
+        for e in [0.0, 0.3, 0.95] {
+            let mut table = InsolationTable::new(&x, 36).unwrap();
+            table.update(&orbit(e, obliquity, 90.0), 1361.0, 0.0);
+            for (q, z) in table.daily_mean_w_m2.iter().zip(&table.zenith_cosine) {
+                assert!(
+                    q.is_finite() && *q >= 0.0 && (0.0..=1.0).contains(z),
+                    "{q} {z}"
+                );
+            }
+        }
+    }
+}
+
+#[test]
+fn regress_wide_and_base_instructions_give_the_same_bits() {
+    let elements = orbit(0.045, 24.1, 310.0);
+    let wide = table(37, 73, &elements);
+    let mut base = InsolationTable::new(&edges(37), 73).unwrap();
+    base.place_sun(&elements, 1361.0, EQUINOX);
+    Fill { table: &mut base }.run();
+    let bits = |values: &[f64]| values.iter().map(|v| v.to_bits()).collect::<Vec<_>>();
+    assert_eq!(bits(&wide.daily_mean_w_m2), bits(&base.daily_mean_w_m2));
+    assert_eq!(bits(&wide.zenith_cosine), bits(&base.zenith_cosine));
+}
+
+#[test]
+fn regress_layouts_without_meaning_are_refused() {
+    let refused = |edges: &[f64], steps| InsolationTable::new(edges, steps).unwrap_err();
+    assert_eq!(refused(&[0.0], 4), TableError::TooFewEdges { count: 1 });
+    assert!(matches!(
+        refused(&[0.0, f64::NAN], 4),
+        TableError::BadEdge { index: 1, .. }
+    ));
+    assert!(matches!(
+        refused(&[0.0, 0.0], 4),
+        TableError::BadEdge { index: 1, .. }
+    ));
+    assert_eq!(refused(&[-1.0, 1.0], 0), TableError::NoSteps);
+}
