@@ -7,4 +7,5 @@ pub mod numerics;
 pub mod orbit;
 pub mod physics;
 pub mod series;
+pub mod tables;
 pub mod units;

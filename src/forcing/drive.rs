@@ -9,7 +9,7 @@ use super::YearForcing;
 use super::carbon_dioxide::{CarbonDioxide, CarbonDioxideError};
 use crate::grid::calendar::Calendar;
 use crate::orbit::elements::Elements;
-use crate::orbit::insolation::InsolationTable;
+use crate::orbit::insolation::{InsolationTable, TableError};
 use crate::orbit::solution::{Orbit, OrbitError};
 
 /// What is needed to force the model.
@@ -52,20 +52,23 @@ pub enum DriveError {
 
 impl Drive {
     /// Forcing on the bands with these edges (sines), at `steps` steps a year.
+    ///
+    /// # Errors
+    /// When the edges or the steps make no table.
     pub fn new(
         orbit: Orbit, carbon_dioxide: CarbonDioxide, numbers: DriveNumbers, edge_sine: &[f64], steps: usize,
-    ) -> Self {
-        Self {
+    ) -> Result<Self, TableError> {
+        Ok(Self {
             orbit,
             carbon_dioxide,
             solar_constant_w_m2: numbers.solar_constant_w_m2,
             co2_reference_ppm: numbers.co2_reference_ppm,
             co2_forcing_w_m2: numbers.co2_forcing_w_m2,
             refresh_yr: numbers.refresh_yr,
-            table: InsolationTable::new(edge_sine, steps),
+            table: InsolationTable::new(edge_sine, steps)?,
             table_interval: None,
             table_orbit: None,
-        }
+        })
     }
 
     /// Orbit at an age (kyr before 1950).
@@ -127,7 +130,7 @@ impl Drive {
     }
 
     fn renew(&mut self, orbit: Elements) {
-        self.table.update(&orbit, self.solar_constant_w_m2, Calendar::equinox_fraction());
+        self.table.update(&orbit, self.solar_constant_w_m2, Calendar.equinox_fraction());
         self.table_orbit = Some(orbit);
     }
 
@@ -137,8 +140,8 @@ impl Drive {
             orbit,
             co2_ppm,
             greenhouse_w_m2: self.greenhouse_w_m2(co2_ppm),
-            insolation_w_m2: self.table.daily_mean_w_m2(),
-            zenith_cosine: self.table.zenith_cosine(),
+            insolation_w_m2: &self.table.daily_mean_w_m2,
+            zenith_cosine: &self.table.zenith_cosine,
             slow_years,
         }
     }

@@ -50,6 +50,12 @@ impl Calendar {
         std::array::from_fn(|m| (bounds[m + 1] - bounds[m]) * YEAR_DAYS / CALENDAR_DAYS)
     }
 
+    /// Length of each month as a fraction of the year; the twelve sum to one.
+    pub fn month_shares(self) -> [f64; MONTHS] {
+        let bounds = self.month_bounds_fraction();
+        std::array::from_fn(|m| bounds[m + 1] - bounds[m])
+    }
+
     /// Time of the March equinox, as a fraction of the year.
     pub fn equinox_fraction(self) -> f64 {
         EQUINOX_DAY / CALENDAR_DAYS

@@ -8,8 +8,10 @@ pub mod budget;
 pub mod energy_balance;
 pub mod exchange;
 pub mod saturation;
+pub mod surface;
 
 use crate::forcing::YearForcing;
+use crate::grid::calendar::MonthWeights;
 use crate::series::Variable;
 use budget::{Account, Quantity};
 use exchange::Exchange;
@@ -60,8 +62,15 @@ pub enum PhysicsError {
 pub struct Setting {
     /// The planet's surface in bands.
     pub surface: exchange::Surface,
+    /// Weights of the seasonal steps in the months.
+    pub months: MonthWeights,
+}
+
+impl Setting {
     /// Seasonal steps in a year.
-    pub steps_per_year: usize,
+    pub fn steps_per_year(&self) -> usize {
+        self.months.steps()
+    }
 }
 
 /// A component that can be built from its table in the configuration.

@@ -1,6 +1,7 @@
 //! Linear set-ups of the energy balance, driven by sunlight given as Legendre modes.
 
 use orbicline::forcing::YearForcing;
+use orbicline::grid::calendar::MonthWeights;
 use orbicline::grid::latitude::{LatitudeBands, Spacing};
 use orbicline::orbit::elements::{Elements, PerihelionLongitude};
 use orbicline::physics::energy_balance::EnergyBalance;
@@ -24,7 +25,7 @@ pub fn planet(bands: usize, spacing: Spacing, steps_per_year: usize, land: f64) 
         ocean_area_m2: bands.area_m2().iter().map(|a| a * (1.0 - land)).collect(),
         bands,
     };
-    Setting { surface, steps_per_year }
+    Setting { surface, months: MonthWeights::new(steps_per_year).unwrap() }
 }
 
 /// Mean over a band of the n-th Legendre polynomial, from (2n+1) P_n = P'_{n+1} - P'_{n-1}.
@@ -52,7 +53,7 @@ pub fn legendre(n: usize, x: f64) -> f64 {
 /// coefficient at time t (fraction of the year), W m-2.
 pub fn sunlight(setting: &Setting, modes: &[usize], share: impl Fn(usize, f64) -> f64) -> Vec<f64> {
     let edges = setting.surface.bands.edge_sine();
-    let steps = setting.steps_per_year;
+    let steps = setting.steps_per_year();
     (1..=steps)
         .flat_map(|k| {
             let t = k as f64 / steps as f64;

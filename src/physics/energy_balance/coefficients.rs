@@ -8,7 +8,7 @@ use crate::grid::calendar::MonthWeights;
 use crate::numerics::lanes::Rows;
 use crate::numerics::tridiagonal::Factored;
 use crate::physics::exchange::Surface;
-use crate::physics::{saturation::saturation_humidity, smooth_step};
+use crate::physics::{Setting, saturation::saturation_humidity, smooth_step};
 use crate::units::{
     CELSIUS_ZERO_K, EARTH_RADIUS_M, SEA_WATER_FREEZING_C,
     SEA_WATER_HEAT_CAPACITY_J_M3_K, YEAR_SECONDS,
@@ -98,7 +98,8 @@ pub(super) const LEAST_LAND_SLOPE: f64 = 0.25;
 pub(super) const LEAST_ICE_M: f64 = 1.0e-6;
 
 impl Coefficients {
-    pub(super) fn new(p: &Params, surface: &Surface, steps: usize) -> Self {
+    pub(super) fn new(p: &Params, setting: &Setting) -> Self {
+        let (surface, steps) = (&setting.surface, setting.steps_per_year());
         let bands = &surface.bands;
         let n = bands.len();
         let step_s = YEAR_SECONDS / steps as f64;
@@ -136,7 +137,7 @@ impl Coefficients {
             steps,
             step_s,
             gamma_s,
-            months: MonthWeights::new(steps),
+            months: setting.months.clone(),
             area_m2: Rows::from_slice(bands.area_m2()),
             land: Rows::from_slice(&surface.land_fraction),
             ocean: Rows::from_slice(&ocean),

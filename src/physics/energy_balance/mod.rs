@@ -67,9 +67,9 @@ impl EnergyBalance {
     /// All parameters out of range.
     pub fn new(p: &Params, setting: &Setting) -> Result<Self, Vec<RangeError>> {
         p.check()?;
-        let (surface, steps) = (&setting.surface, setting.steps_per_year);
+        let surface = &setting.surface;
         let n = surface.bands.len();
-        let coefficients = Coefficients::new(p, surface, steps);
+        let coefficients = Coefficients::new(p, setting);
         let state = State::new(&coefficients, &surface.bands.mean_sine());
         let mut means = Means::new(n);
         means.node.air.flat_mut().copy_from_slice(state.air.now.flat());

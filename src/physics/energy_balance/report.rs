@@ -229,7 +229,7 @@ impl Report {
     fn global(&mut self, surface: &Surface, m: &Means, absorbed: &[f64], emitted: &[f64]) {
         let n = surface.bands.len();
         let two_metre = &self.values[4 * 12 * n..5 * 12 * n];
-        let lengths = Calendar::month_shares();
+        let lengths = Calendar.month_shares();
         let monthly: f64 = two_metre
             .chunks(n)
             .zip(lengths)
@@ -244,7 +244,7 @@ impl Report {
 
 /// Annual mean of a monthly quantity.
 fn annual(m: &Means, value: impl Fn(&Node) -> f64) -> f64 {
-    m.monthly.iter().zip(Calendar::month_shares()).map(|(node, share)| share * value(node)).sum()
+    m.monthly.iter().zip(Calendar.month_shares()).map(|(node, share)| share * value(node)).sum()
 }
 
 /// Share of band `i`'s area poleward of `latitude_deg` in its hemisphere.
