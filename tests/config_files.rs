@@ -34,6 +34,13 @@ struct Physics {
 enum Albedo {
     Step { open: f64, ice: f64 },
     Smooth { contrast: f64 },
+    Snowy { snow: Snow },
+}
+
+#[derive(Debug, Deserialize, PartialEq)]
+#[serde(deny_unknown_fields)]
+struct Snow {
+    steepness: f64,
 }
 
 #[derive(Debug, Deserialize, PartialEq)]

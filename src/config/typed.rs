@@ -35,10 +35,16 @@ fn explain(table: &Table, origins: &Origins, path: &str, message: &str) -> Confi
     }
     if let Some(name) = quoted_after(&message, "unknown field ") {
         let above = match parent(path) {
-            Some(above) if path == join(above, name) && !is_table(table, path, name) => above,
+            Some(above) if path == join(above, name) && !has_key(table, path, name) => above,
             _ => path,
         };
-        return unknown(origins, "key", name, above, &join(above, name), &message);
+        let named = |found: &str, _: &Value| found.rsplit('.').next() == Some(name);
+        let key = match join(above, name) {
+            key if at(table, &key).is_some() => key,
+            key => only_below(table, above, &named).unwrap_or(key),
+        };
+        let above = parent(&key).unwrap_or(above);
+        return unknown(origins, "key", name, above, &key, &message);
     }
     if let Some(name) = quoted_after(&message, "unknown variant ") {
         let at = if has_kind(table, path, name) {
@@ -48,11 +54,59 @@ fn explain(table: &Table, origins: &Origins, path: &str, message: &str) -> Confi
         };
         return unknown(origins, "choice", name, &at, &at, &message);
     }
+    let path = culprit(table, path, &message).unwrap_or_else(|| path.to_owned());
     ConfigError::Value {
-        place: place(origins, path),
-        key: path.to_owned(),
+        place: place(origins, &path),
+        key: path,
         message,
     }
+}
+
+/// The value that a message about a whole table means. For a table with a `kind` the reader names
+/// only the table; the offending value is known when just one below it looks like the one quoted.
+fn culprit(table: &Table, path: &str, message: &str) -> Option<String> {
+    at(table, path)?.as_table()?;
+    let found = message.strip_prefix("invalid type: ")?;
+    only_below(table, path, &|_, value| {
+        found
+            .strip_prefix(seen_as(value).as_str())
+            .is_some_and(|rest| rest.starts_with(", expected"))
+    })
+}
+
+/// How serde quotes a value of the wrong type.
+fn seen_as(value: &Value) -> String {
+    match value {
+        Value::String(text) => format!("string {text:?}"),
+        Value::Integer(number) => format!("integer `{number}`"),
+        Value::Float(number) => format!("floating point `{number}`"),
+        Value::Boolean(flag) => format!("boolean `{flag}`"),
+        Value::Datetime(_) | Value::Table(_) => "map".to_owned(),
+        Value::Array(_) => "sequence".to_owned(),
+    }
+}
+
+/// The path of the only key below `path` that `is_it`; `None` if there is none or more.
+fn only_below(table: &Table, path: &str, is_it: &dyn Fn(&str, &Value) -> bool) -> Option<String> {
+    let top = match path {
+        "" => table,
+        _ => at(table, path)?.as_table()?,
+    };
+    let mut found = Vec::new();
+    let mut open = vec![(path.to_owned(), top)];
+    while let Some((path, inner)) = open.pop() {
+        for (key, value) in inner {
+            let path = join(&path, key);
+            if is_it(&path, value) {
+                found.push(path.clone());
+            }
+            if let Value::Table(inner) = value {
+                open.push((path, inner));
+            }
+        }
+    }
+    let first = found.pop()?;
+    found.is_empty().then_some(first)
 }
 
 /// The error for a key or choice that is not known.
@@ -109,7 +163,7 @@ fn at<'a>(table: &'a Table, path: &str) -> Option<&'a Value> {
 
 /// Whether the table at `path` has itself a key `name`: then that is the one meant, not its
 /// namesake one step higher.
-fn is_table(table: &Table, path: &str, name: &str) -> bool {
+fn has_key(table: &Table, path: &str, name: &str) -> bool {
     at(table, path)
         .and_then(Value::as_table)
         .is_some_and(|inner| inner.contains_key(name))
