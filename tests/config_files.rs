@@ -57,7 +57,7 @@ fn folder(kind: &str) -> PathBuf {
 }
 
 fn good(name: &str) -> Tree {
-    Tree::load(&folder("good").join(name)).unwrap()
+    Tree::load(&folder("good").join(name)).expect("a good file")
 }
 
 fn read(file: &Path, edits: &[&str]) -> Result<Experiment, ConfigError> {

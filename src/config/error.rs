@@ -93,21 +93,8 @@ pub enum ConfigError {
         nearest: Option<String>,
     },
     /// A key or a choice that the program does not know.
-    #[error("{place}: unknown {what} `{name}` in {}{}; {allowed}", table_name(table), suggestion(nearest.as_deref()))]
-    Unknown {
-        /// Where.
-        place: Place,
-        /// `key` or `choice`.
-        what: &'static str,
-        /// The key or choice found.
-        name: String,
-        /// Key path of the table it stands in; empty at the top.
-        table: String,
-        /// The nearest one known.
-        nearest: Option<String>,
-        /// All that are known, in words.
-        allowed: String,
-    },
+    #[error("{0}")]
+    Unknown(Box<Unknown>),
     /// A key is missing.
     #[error(
         "{place}: missing key `{key}` in {}; add it, or `extends` a file that has it",
@@ -137,6 +124,28 @@ pub enum ConfigError {
         /// What the writer said.
         message: String,
     },
+}
+
+/// A key or a choice that the program does not know.
+#[derive(Debug, thiserror::Error)]
+#[error(
+    "{place}: unknown {what} `{name}` in {}{}; {allowed}",
+    table_name(table),
+    suggestion(nearest.as_deref())
+)]
+pub struct Unknown {
+    /// Where.
+    pub place: Place,
+    /// `key` or `choice`.
+    pub what: &'static str,
+    /// The key or choice found.
+    pub name: String,
+    /// Key path of the table it stands in; empty at the top.
+    pub table: String,
+    /// The nearest one known.
+    pub nearest: Option<String>,
+    /// All that are known, in words.
+    pub allowed: String,
 }
 
 fn wanted_at(place: Option<&Place>) -> String {

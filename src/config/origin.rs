@@ -38,8 +38,8 @@ fn is_within(path: &str, above: &str) -> bool {
 
 /// The line, counted from one, of a byte of `text`.
 pub(super) fn line_of(text: &str, byte: usize) -> usize {
-    let before = &text.as_bytes()[..byte.min(text.len())];
-    1 + before.iter().filter(|&&b| b == b'\n').count()
+    let before = text.get(..byte).unwrap_or(text);
+    1 + before.matches('\n').count()
 }
 
 impl Origins {

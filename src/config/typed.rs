@@ -4,7 +4,7 @@
 //! from the origins. The wording of serde is read here ("unknown field `x`, expected ..."); tests
 //! hold it fast.
 
-use super::error::{ConfigError, Place, nearest};
+use super::error::{ConfigError, Place, Unknown, nearest};
 use super::origin::{Origins, join, one_line, parent};
 use serde::de::DeserializeOwned;
 use toml::{Table, Value};
@@ -122,14 +122,14 @@ fn unknown(
         .split_once(", ")
         .map_or("none is known here", |(_, rest)| rest);
     let known = allowed.split('`').skip(1).step_by(2);
-    ConfigError::Unknown {
+    ConfigError::Unknown(Box::new(Unknown {
         place: place(origins, at),
         what,
         name: name.to_owned(),
         table: table.to_owned(),
         nearest: nearest(name, known),
         allowed: allowed.to_owned(),
-    }
+    }))
 }
 
 fn place(origins: &Origins, path: &str) -> Place {

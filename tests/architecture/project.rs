@@ -21,8 +21,12 @@ fn walk(root: &Path, folder: &Path, found: &mut Vec<(String, Vec<u8>)>) {
         return;
     };
     for entry in entries {
-        let path = entry.unwrap().path();
-        let name = path.file_name().unwrap().to_string_lossy().into_owned();
+        let path = entry.expect("a readable folder").path();
+        let name = path
+            .file_name()
+            .unwrap_or_default()
+            .to_string_lossy()
+            .into_owned();
         // The tag marks build folders, whatever they are called.
         if MADE.contains(&name.as_str()) || path.join("CACHEDIR.TAG").exists() {
             continue;
@@ -30,7 +34,7 @@ fn walk(root: &Path, folder: &Path, found: &mut Vec<(String, Vec<u8>)>) {
         if path.is_dir() {
             walk(root, &path, found);
         } else if let Ok(bytes) = std::fs::read(&path) {
-            let below = path.strip_prefix(root).unwrap();
+            let below = path.strip_prefix(root).expect("a path below the root");
             found.push((below.to_string_lossy().into_owned(), bytes));
         }
     }
@@ -40,14 +44,14 @@ fn walk(root: &Path, folder: &Path, found: &mut Vec<(String, Vec<u8>)>) {
 pub(crate) fn sources(folder: &str) -> Vec<(String, String)> {
     files(folder)
         .into_iter()
-        .filter(|(path, _)| path.ends_with(".rs"))
-        .map(|(path, bytes)| (path, String::from_utf8(bytes).unwrap()))
+        .filter(|(path, _)| Path::new(path).extension().is_some_and(|end| end == "rs"))
+        .map(|(path, bytes)| (path, String::from_utf8(bytes).expect("UTF-8 source")))
         .collect()
 }
 
 /// Crates that the manifest asks for and no source names.
 pub(crate) fn unused(manifest: &str, sources: &[(String, String)]) -> Vec<String> {
-    let manifest: toml::Table = manifest.parse().unwrap();
+    let manifest: toml::Table = manifest.parse().expect("a manifest in TOML");
     let used: BTreeSet<String> = sources
         .iter()
         .flat_map(|(_, text)| names::words(text))
