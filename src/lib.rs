@@ -1,5 +1,6 @@
 #![doc = include_str!("../README.md")]
 
+pub mod config;
 pub mod forcing;
 pub mod grid;
 pub mod model;

@@ -1,0 +1,177 @@
+//! Turns a TOML tree into types, and the reader's complaints into messages with a place.
+//!
+//! The tree is merged from several files, so the reader knows key paths but no lines; those come
+//! from the origins. The wording of serde is read here ("unknown field `x`, expected ..."); tests
+//! hold it fast.
+
+use super::error::{ConfigError, Place, Unknown, nearest};
+use super::origin::{Origins, join, one_line, parent};
+use serde::de::DeserializeOwned;
+use toml::{Table, Value};
+
+/// Reads the whole tree as `T`.
+pub(super) fn read<T: DeserializeOwned>(
+    table: &Table,
+    origins: &Origins,
+) -> Result<T, ConfigError> {
+    serde_path_to_error::deserialize(Value::Table(table.clone())).map_err(|e| {
+        let path = match e.path().to_string() {
+            top if top == "." => String::new(),
+            path => path,
+        };
+        explain(table, origins, &path, e.inner().message())
+    })
+}
+
+/// What the reader meant.
+fn explain(table: &Table, origins: &Origins, path: &str, message: &str) -> ConfigError {
+    let message = one_line(message);
+    if let Some(key) = quoted_after(&message, "missing field ") {
+        return ConfigError::Missing {
+            place: place(origins, path),
+            key: key.to_owned(),
+            table: path.to_owned(),
+        };
+    }
+    if let Some(name) = quoted_after(&message, "unknown field ") {
+        let above = match parent(path) {
+            Some(above) if path == join(above, name) && !has_key(table, path, name) => above,
+            _ => path,
+        };
+        let named = |found: &str, _: &Value| found.rsplit('.').next() == Some(name);
+        let key = match join(above, name) {
+            key if at(table, &key).is_some() => key,
+            key => only_below(table, above, &named).unwrap_or(key),
+        };
+        let above = parent(&key).unwrap_or(above);
+        return unknown(origins, "key", name, above, &key, &message);
+    }
+    if let Some(name) = quoted_after(&message, "unknown variant ") {
+        let at = if has_kind(table, path, name) {
+            join(path, "kind")
+        } else {
+            path.to_owned()
+        };
+        return unknown(origins, "choice", name, &at, &at, &message);
+    }
+    let path = culprit(table, path, &message).unwrap_or_else(|| path.to_owned());
+    ConfigError::Value {
+        place: place(origins, &path),
+        key: path,
+        message,
+    }
+}
+
+/// The value that a message about a whole table means. For a table with a `kind` the reader names
+/// only the table; the offending value is known when just one below it looks like the one quoted.
+fn culprit(table: &Table, path: &str, message: &str) -> Option<String> {
+    at(table, path)?.as_table()?;
+    let found = message.strip_prefix("invalid type: ")?;
+    only_below(table, path, &|_, value| {
+        found
+            .strip_prefix(seen_as(value).as_str())
+            .is_some_and(|rest| rest.starts_with(", expected"))
+    })
+}
+
+/// How serde quotes a value of the wrong type.
+fn seen_as(value: &Value) -> String {
+    match value {
+        Value::String(text) => format!("string {text:?}"),
+        Value::Integer(number) => format!("integer `{number}`"),
+        Value::Float(number) => format!("floating point `{number}`"),
+        Value::Boolean(flag) => format!("boolean `{flag}`"),
+        Value::Datetime(_) | Value::Table(_) => "map".to_owned(),
+        Value::Array(_) => "sequence".to_owned(),
+    }
+}
+
+/// The path of the only key below `path` that `is_it`; `None` if there is none or more.
+fn only_below(table: &Table, path: &str, is_it: &dyn Fn(&str, &Value) -> bool) -> Option<String> {
+    let top = match path {
+        "" => table,
+        _ => at(table, path)?.as_table()?,
+    };
+    let mut found = Vec::new();
+    let mut open = vec![(path.to_owned(), top)];
+    while let Some((path, inner)) = open.pop() {
+        for (key, value) in inner {
+            let path = join(&path, key);
+            if is_it(&path, value) {
+                found.push(path.clone());
+            }
+            if let Value::Table(inner) = value {
+                open.push((path, inner));
+            }
+        }
+    }
+    let first = found.pop()?;
+    found.is_empty().then_some(first)
+}
+
+/// The error for a key or choice that is not known.
+fn unknown(
+    origins: &Origins,
+    what: &'static str,
+    name: &str,
+    table: &str,
+    at: &str,
+    message: &str,
+) -> ConfigError {
+    let allowed = message
+        .split_once(", ")
+        .map_or("none is known here", |(_, rest)| rest);
+    let known = allowed.split('`').skip(1).step_by(2);
+    ConfigError::Unknown(Box::new(Unknown {
+        place: place(origins, at),
+        what,
+        name: name.to_owned(),
+        table: table.to_owned(),
+        nearest: nearest(name, known),
+        allowed: allowed.to_owned(),
+    }))
+}
+
+fn place(origins: &Origins, path: &str) -> Place {
+    origins.nearest(path).cloned().unwrap_or(Place::File {
+        file: "experiment".into(),
+        line: 1,
+    })
+}
+
+/// The word in backquotes that follows `start` at the beginning of the message.
+fn quoted_after<'a>(message: &'a str, start: &str) -> Option<&'a str> {
+    message
+        .strip_prefix(start)?
+        .strip_prefix('`')?
+        .split('`')
+        .next()
+}
+
+fn at<'a>(table: &'a Table, path: &str) -> Option<&'a Value> {
+    let mut steps = path.split(['.', '[']).map(|s| s.trim_end_matches(']'));
+    let mut value = table.get(steps.next()?)?;
+    for step in steps {
+        value = match value {
+            Value::Table(inner) => inner.get(step)?,
+            Value::Array(items) => items.get(step.parse::<usize>().ok()?)?,
+            _ => return None,
+        };
+    }
+    Some(value)
+}
+
+/// Whether the table at `path` has itself a key `name`: then that is the one meant, not its
+/// namesake one step higher.
+fn has_key(table: &Table, path: &str, name: &str) -> bool {
+    at(table, path)
+        .and_then(Value::as_table)
+        .is_some_and(|inner| inner.contains_key(name))
+}
+
+fn has_kind(table: &Table, path: &str, name: &str) -> bool {
+    at(table, path)
+        .and_then(|value| value.get("kind"))
+        .and_then(Value::as_str)
+        == Some(name)
+}
