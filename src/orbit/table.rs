@@ -149,7 +149,9 @@ impl InsolationTable {
             }
         }
         let share = 1.0 / self.steps() as f64;
-        mean.iter_mut().for_each(|sum| *sum *= share);
+        for sum in &mut mean {
+            *sum *= share;
+        }
         mean
     }
 
