@@ -1,6 +1,6 @@
 //! The energy-balance kernel against closed forms; see the README of this folder.
 
-use super::set_up::{legendre, mean_legendre, one_surface, planet, run, sunlight};
+use crate::energy_balance_set_up::{legendre, mean_legendre, one_surface, planet, run, sunlight};
 use orbicline::grid::latitude::Spacing;
 use orbicline::physics::Setting;
 use orbicline::physics::energy_balance::EnergyBalance;
