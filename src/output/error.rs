@@ -138,12 +138,16 @@ pub enum OutputError {
 pub type Result<T> = std::result::Result<T, OutputError>;
 
 /// Turns an HDF5 error into one that names file and action.
-pub(crate) fn hdf5_at<'a>(
-    path: &'a Path,
+pub(crate) fn hdf5_at(
+    path: &Path,
     action: impl Into<String>,
-) -> impl FnOnce(hdf5::Error) -> OutputError + 'a {
+) -> impl FnOnce(hdf5::Error) -> OutputError + '_ {
     let action = action.into();
-    move |source| OutputError::Hdf5 { action, path: path.to_owned(), source }
+    move |source| OutputError::Hdf5 {
+        action,
+        path: path.to_owned(),
+        source,
+    }
 }
 
 /// Turns an error of the operating system into one that names file and action.
@@ -151,5 +155,9 @@ pub(crate) fn io_at<'a>(
     path: &'a Path,
     action: &'static str,
 ) -> impl FnOnce(std::io::Error) -> OutputError + 'a {
-    move |source| OutputError::Io { action, path: path.to_owned(), source }
+    move |source| OutputError::Io {
+        action,
+        path: path.to_owned(),
+        source,
+    }
 }

@@ -1,10 +1,10 @@
 //! Writes HDF5 that the NetCDF-4 readers take for their own.
 //!
 //! Format facts (HDF5 Dimension Scale specification; NetCDF-4 format specification):
-//! * a dimension is a dataset with the attributes CLASS = "DIMENSION_SCALE" (fixed length 16,
+//! * a dimension is a dataset with the attributes `CLASS = "DIMENSION_SCALE"` (fixed length 16,
 //!   NUL included, NULLTERM) and NAME (NUL included). A dimension without coordinate variable is
 //!   an empty-valued dataset whose NAME says so, with its length right-aligned in ten columns;
-//! * a variable points at its dimensions by DIMENSION_LIST (one list of object references per
+//! * a variable points at its dimensions by `DIMENSION_LIST` (one list of object references per
 //!   axis); the dimension points back by `REFERENCE_LIST`;
 //! * `_Netcdf4Dimid` numbers the dimensions, `_NCProperties` names the writer;
 //! * links and attributes must be tracked and indexed in creation order, or the library of
@@ -23,6 +23,8 @@ use hdf5::{Dataset, Datatype, Extents, File, Location, SimpleExtents};
 use super::error::{OutputError, Result, hdf5_at};
 use storage::{characters, slab};
 
+pub(crate) use text::read_text;
+
 pub use definition::{Definition, Kind, Length, Missing, Values, VariableId};
 
 mod definition;
@@ -30,6 +32,7 @@ mod scales;
 mod storage;
 #[cfg(test)]
 mod tests;
+mod text;
 
 /// Longest text attribute, bytes: what [`super::reader`] reads back.
 pub const MAX_TEXT: usize = 1 << 20;
@@ -77,7 +80,12 @@ impl NetCdfFile {
         );
         text_attribute(&file, "_NCProperties", properties.as_bytes())
             .map_err(hdf5_at(path, "write attribute `_NCProperties`"))?;
-        Ok(Self { path: path.to_owned(), file, dimensions: Vec::new(), stored: Vec::new() })
+        Ok(Self {
+            path: path.to_owned(),
+            file,
+            dimensions: Vec::new(),
+            stored: Vec::new(),
+        })
     }
 
     /// Declares a dimension. Follow with [`Self::define`] of the same name for its coordinate
@@ -127,12 +135,21 @@ impl NetCdfFile {
     /// # Errors
     /// If a dimension is unknown or not stored yet, the name is taken, or HDF5 refuses.
     pub fn define(&mut self, definition: &Definition<'_>) -> Result<VariableId> {
-        let Definition { name, kind, dimensions, records_per_chunk, missing } = *definition;
-        let numbers: Vec<usize> =
-            dimensions.iter().map(|d| self.number(d)).collect::<Result<_>>()?;
+        let Definition {
+            name,
+            kind,
+            dimensions,
+            records_per_chunk,
+            missing,
+        } = *definition;
+        let numbers: Vec<usize> = dimensions
+            .iter()
+            .map(|d| self.number(d))
+            .collect::<Result<_>>()?;
         let coordinate = numbers.len() == 1 && dimensions[0] == name;
-        if let Some(&n) =
-            numbers.iter().find(|&&n| self.dimensions[n].scale.is_none() && !coordinate)
+        if let Some(&n) = numbers
+            .iter()
+            .find(|&&n| self.dimensions[n].scale.is_none() && !coordinate)
         {
             let d = &self.dimensions[n].name;
             return Err(self.misuse(name, &format!("its dimension `{d}` is not stored yet")));
@@ -149,7 +166,11 @@ impl NetCdfFile {
             self.attach(name, &dataset, &numbers)?;
         }
         let id = VariableId(self.stored.len());
-        let stored = Stored { name: name.to_owned(), dataset, kind };
+        let stored = Stored {
+            name: name.to_owned(),
+            dataset,
+            kind,
+        };
         self.stored.push(stored);
         match (missing, kind) {
             (Missing::Nan, Kind::F64) => self.number_attribute(id, "_FillValue", f64::NAN)?,
@@ -243,9 +264,12 @@ impl NetCdfFile {
         for dimension in &self.dimensions {
             self.reference_list(dimension)?;
         }
-        let Self { path, file, stored, .. } = self;
+        let Self {
+            path, file, stored, ..
+        } = self;
         // Closing a dataset cannot report an error, so all data go to disk first.
-        file.flush().map_err(hdf5_at(&path, "write the data to disk"))?;
+        file.flush()
+            .map_err(hdf5_at(&path, "write the data to disk"))?;
         drop(stored);
         file.close().map_err(hdf5_at(&path, "close the file"))
     }
@@ -291,7 +315,10 @@ impl NetCdfFile {
 }
 
 /// Rounds to 32 bits.
-#[expect(clippy::cast_possible_truncation, reason = "rounding is what is asked for")]
+#[expect(
+    clippy::cast_possible_truncation,
+    reason = "rounding is what is asked for"
+)]
 pub(crate) fn narrow(value: f64) -> f32 {
     value as f32
 }
@@ -301,7 +328,10 @@ pub(crate) fn narrow(value: f64) -> f32 {
 /// The safe string types of the HDF5 crate are padded with NUL (NULLPAD), and readers then do
 /// not recognise a dimension scale. Text that is not ASCII is marked as UTF-8. Empty text has
 /// no data at all.
-#[expect(unsafe_code, reason = "the safe interface has no NULLTERM strings of run-time length")]
+#[expect(
+    unsafe_code,
+    reason = "the safe interface has no NULLTERM strings of run-time length"
+)]
 fn text_attribute(target: &Location, name: &str, text: &[u8]) -> hdf5::Result<()> {
     let size = text.len().max(1);
     let descriptor = if text.is_ascii() {
@@ -316,7 +346,11 @@ fn text_attribute(target: &Location, name: &str, text: &[u8]) -> hdf5::Result<()
             hdf5_sys::h5t::H5Tset_strpad(datatype.id(), hdf5_sys::h5t::H5T_STR_NULLTERM)
         })
     })?;
-    let extents = if text.is_empty() { Extents::Null } else { Extents::Scalar };
+    let extents = if text.is_empty() {
+        Extents::Null
+    } else {
+        Extents::Scalar
+    };
     let builder = target.new_attr_builder().empty_as(&datatype);
     let attribute = builder.shape(extents).create(name)?;
     if text.is_empty() {

@@ -19,7 +19,12 @@ struct ListEntry {
 }
 
 impl NetCdfFile {
-    pub(super) fn make_scale(&mut self, number: usize, dataset: &Dataset, name: &str) -> Result<()> {
+    pub(super) fn make_scale(
+        &mut self,
+        number: usize,
+        dataset: &Dataset,
+        name: &str,
+    ) -> Result<()> {
         if self.dimensions[number].scale.is_some() {
             return Err(self.misuse(name.trim_end_matches('\0'), "is stored already"));
         }
@@ -28,14 +33,22 @@ impl NetCdfFile {
         let write = || -> hdf5::Result<()> {
             text_attribute(dataset, "CLASS", b"DIMENSION_SCALE\0")?;
             text_attribute(dataset, "NAME", name.as_bytes())?;
-            dataset.new_attr::<i32>().create("_Netcdf4Dimid")?.write_scalar(&id)
+            dataset
+                .new_attr::<i32>()
+                .create("_Netcdf4Dimid")?
+                .write_scalar(&id)
         };
         write().map_err(hdf5_at(&self.path, format!("make dimension `{name}`")))?;
         self.dimensions[number].scale = Some(self.stored.len());
         Ok(())
     }
 
-    pub(super) fn attach(&mut self, name: &str, dataset: &Dataset, numbers: &[usize]) -> Result<()> {
+    pub(super) fn attach(
+        &mut self,
+        name: &str,
+        dataset: &Dataset,
+        numbers: &[usize],
+    ) -> Result<()> {
         if numbers.is_empty() {
             return Ok(());
         }
@@ -45,9 +58,16 @@ impl NetCdfFile {
                 let reference = self.file.reference(&self.dimensions[n].name)?;
                 list.push(VarLenArray::<ObjectReference1>::from_slice(&[reference]));
             }
-            dataset.new_attr_builder().with_data(&list).create("DIMENSION_LIST").map(drop)
+            dataset
+                .new_attr_builder()
+                .with_data(&list)
+                .create("DIMENSION_LIST")
+                .map(drop)
         };
-        write().map_err(hdf5_at(&self.path, format!("attach dimensions to `{name}`")))?;
+        write().map_err(hdf5_at(
+            &self.path,
+            format!("attach dimensions to `{name}`"),
+        ))?;
         let variable = self.stored.len();
         for (axis, &n) in numbers.iter().enumerate() {
             self.dimensions[n].users.push((variable, axis));
@@ -73,6 +93,9 @@ impl NetCdfFile {
             let builder = self.stored[scale].dataset.new_attr_builder().packed(true);
             builder.with_data(&list).create("REFERENCE_LIST").map(drop)
         };
-        write().map_err(hdf5_at(&self.path, format!("list the users of `{}`", dimension.name)))
+        write().map_err(hdf5_at(
+            &self.path,
+            format!("list the users of `{}`", dimension.name),
+        ))
     }
 }

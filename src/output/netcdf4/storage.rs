@@ -28,7 +28,9 @@ impl NetCdfFile {
             Length::Fixed(length) => Extent::fixed(length),
             Length::Unlimited => Extent::resizable(0),
         };
-        Extents::Simple(SimpleExtents::from_vec(numbers.iter().map(extent).collect()))
+        Extents::Simple(SimpleExtents::from_vec(
+            numbers.iter().map(extent).collect(),
+        ))
     }
 
     pub(super) fn chunk(
@@ -68,9 +70,14 @@ impl NetCdfFile {
             Kind::I32 => <i32 as hdf5::H5Type>::type_descriptor(),
             Kind::Char => TypeDescriptor::FixedAscii(1),
         };
-        let fill = if missing == Missing::Nan { f64::NAN } else { NC_FILL };
+        let fill = if missing == Missing::Nan {
+            f64::NAN
+        } else {
+            NC_FILL
+        };
         let mut builder = self.file.new_dataset_builder().with_dcpl(|p| {
-            p.obj_track_times(false).attr_creation_order(AttrCreationOrder::Indexed);
+            p.obj_track_times(false)
+                .attr_creation_order(AttrCreationOrder::Indexed);
             match kind {
                 Kind::F64 => p.fill_value(fill),
                 Kind::F32 => p.fill_value(narrow(fill)),

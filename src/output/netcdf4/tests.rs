@@ -15,12 +15,17 @@ fn small(path: &Path) {
         records_per_chunk: None,
         missing: Missing::Never,
     };
-    let age = Definition { records_per_chunk: Some(4), ..fixed("age", Kind::F64, &["age"]) };
+    let age = Definition {
+        records_per_chunk: Some(4),
+        ..fixed("age", Kind::F64, &["age"])
+    };
     let age = file.define(&age).unwrap();
     let lat = file.define(&fixed("lat", Kind::F64, &["lat"])).unwrap();
     file.without_coordinate("bnds").unwrap();
     file.without_coordinate("name_length").unwrap();
-    let place = file.define(&fixed("place", Kind::Char, &["lat", "name_length"])).unwrap();
+    let place = file
+        .define(&fixed("place", Kind::Char, &["lat", "name_length"]))
+        .unwrap();
     let count = file.define(&fixed("count", Kind::I32, &[])).unwrap();
     let field = Definition {
         name: "field",
@@ -30,15 +35,20 @@ fn small(path: &Path) {
         missing: Missing::Nan,
     };
     let field = file.define(&field).unwrap();
-    file.text(None, "title", "invented data, Milanković").unwrap();
+    file.text(None, "title", "invented data, Milanković")
+        .unwrap();
     file.text(Some(field), "empty", "").unwrap();
-    file.text(Some(field), "long", &"x".repeat(100_000)).unwrap();
+    file.text(Some(field), "long", &"x".repeat(100_000))
+        .unwrap();
     file.write(lat, Values::F64(&[-45.0, 45.0])).unwrap();
     file.write(place, Values::Char(b"S  N  ")).unwrap();
     file.write(count, Values::I32(&[7])).unwrap();
-    file.write_records(age, 0, Values::F64(&[3.0, 2.0, 1.0])).unwrap();
-    file.write_records(field, 0, Values::F32(&[1.0, 2.0])).unwrap();
-    file.write_records(field, 1, Values::F32(&[3.0, f32::NAN, 5.0, 6.0])).unwrap();
+    file.write_records(age, 0, Values::F64(&[3.0, 2.0, 1.0]))
+        .unwrap();
+    file.write_records(field, 0, Values::F32(&[1.0, 2.0]))
+        .unwrap();
+    file.write_records(field, 1, Values::F32(&[3.0, f32::NAN, 5.0, 6.0]))
+        .unwrap();
     file.close().unwrap();
 }
 
@@ -63,12 +73,21 @@ fn values_types_and_scales_are_in_the_file() {
     let values = field.read_raw::<f32>().unwrap();
     assert_eq!((values[2], values[5]), (3.0, 6.0));
     assert!(values[3].is_nan());
-    let fill = field.create_plist().unwrap().get_fill_value_as::<f32>().unwrap();
+    let fill = field
+        .create_plist()
+        .unwrap()
+        .get_fill_value_as::<f32>()
+        .unwrap();
     assert!(fill.unwrap().is_nan());
     assert_eq!(field.attr("_FillValue").unwrap().shape(), [1]);
-    assert_eq!(file.dataset("count").unwrap().read_scalar::<i32>().unwrap(), 7);
-    for (scale, name) in [("age", "age"), ("bnds", "This is a netCDF dimension but not a netCDF")]
-    {
+    assert_eq!(
+        file.dataset("count").unwrap().read_scalar::<i32>().unwrap(),
+        7
+    );
+    for (scale, name) in [
+        ("age", "age"),
+        ("bnds", "This is a netCDF dimension but not a netCDF"),
+    ] {
         let scale = file.dataset(scale).unwrap();
         let class = scale.attr("CLASS").unwrap();
         assert_eq!(class.dtype().unwrap().size(), 16);
@@ -93,13 +112,25 @@ fn misuse_is_an_error_that_names_file_and_item() {
         missing: Missing::Never,
     };
     let message = file.define(&lat).unwrap_err().to_string();
-    assert!(message.contains("a.nc") && message.contains("`latitude`"), "{message}");
+    assert!(
+        message.contains("a.nc") && message.contains("`latitude`"),
+        "{message}"
+    );
     lat.dimensions = &["lat"];
     let lat = file.define(&lat).unwrap();
-    let message = file.write(lat, Values::F64(&[1.0])).unwrap_err().to_string();
-    assert!(message.contains("1 values") && message.contains("2 of type"), "{message}");
+    let message = file
+        .write(lat, Values::F64(&[1.0]))
+        .unwrap_err()
+        .to_string();
+    assert!(
+        message.contains("1 values") && message.contains("2 of type"),
+        "{message}"
+    );
     assert!(file.write(lat, Values::I32(&[1, 2])).is_err());
     assert!(file.dimension("none", Length::Fixed(0)).is_err());
-    let message = file.text(None, "a", &"x".repeat(MAX_TEXT + 1)).unwrap_err().to_string();
+    let message = file
+        .text(None, "a", &"x".repeat(MAX_TEXT + 1))
+        .unwrap_err()
+        .to_string();
     assert!(message.contains("1048577 bytes"), "{message}");
 }
