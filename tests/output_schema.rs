@@ -3,6 +3,7 @@
 //! All numbers are invented. With `ORBICLINE_EXAMPLE_FILE` set, the file of the round trip is
 //! also written there, for `tests/readers/check_readers.py`.
 #![cfg(feature = "netcdf")]
+#![expect(clippy::unwrap_used, reason = "a failing helper fails its test")]
 
 use std::path::Path;
 
@@ -277,6 +278,9 @@ fn folders_that_cannot_hold_the_file_are_errors() {
     assert_eq!(result.is_ok(), above_rights);
 }
 
+/// Spoils a record.
+type Change<'a> = &'a dyn Fn(&mut Record);
+
 #[test]
 fn records_that_do_not_fit_are_errors() {
     let folder = tempfile::tempdir().unwrap();
@@ -284,12 +288,12 @@ fn records_that_do_not_fit_are_errors() {
     let size = schema().record_size();
     let mut writer = RunWriter::create(&path, schema(), Overwrite::Refuse).unwrap();
     writer.push(&record(1, size), &[]).unwrap();
-    let mut complaint = |change: &dyn Fn(&mut Record)| {
+    let mut complaint = |change: Change| {
         let mut bad = record(2, size);
         change(&mut bad);
         writer.push(&bad, &[]).unwrap_err().to_string()
     };
-    let cases: [(&dyn Fn(&mut Record), &str); 5] = [
+    let cases: [(Change, &str); 5] = [
         (&|r| r.values.truncate(5), "the variables need"),
         (&|r| r.age_kyr = f64::NAN, "NaN kyr is not between"),
         (&|r| *r = record(1, 85), "must fall"),

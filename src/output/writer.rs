@@ -39,7 +39,10 @@ pub struct RunWriter {
     schema: Schema,
     overwrite: Overwrite,
     record_size: usize,
+    /// Records since the last segment; those of a full segment stay until the next record.
     buffer: Vec<Record>,
+    /// Whether the buffer holds records that are in no segment yet.
+    unsaved: bool,
     restart: Restart,
     segments: usize,
 }
@@ -70,6 +73,7 @@ impl RunWriter {
             overwrite,
             record_size,
             buffer: Vec::with_capacity(CHUNK),
+            unsaved: false,
             restart: Restart::new(),
             segments: 0,
         })
@@ -79,10 +83,11 @@ impl RunWriter {
     /// makes a segment.
     ///
     /// # Errors
-    /// If record or state do not fit the file, or a segment cannot be written.
+    /// If record or state do not fit the file (the record is then not taken), or a segment cannot
+    /// be written (the next call tries again; nothing is lost).
     pub fn push(&mut self, record: &Record, restart: &[(String, Vec<f64>)]) -> Result<()> {
         if let Err(problem) = self.check_record(record) {
-            let number = self.segments * CHUNK + self.buffer.len();
+            let number = self.taken();
             return Err(OutputError::Record {
                 path: self.path.clone(),
                 record: number,
@@ -90,13 +95,15 @@ impl RunWriter {
             });
         }
         self.check_restart(restart)?;
-        self.restart = restart.to_vec();
         if self.buffer.len() == CHUNK {
+            self.write_unsaved()?; // Only after an earlier attempt failed.
             self.buffer.clear();
         }
+        self.restart = restart.to_vec();
         self.buffer.push(record.clone());
+        self.unsaved = true;
         if self.buffer.len() == CHUNK {
-            self.write_segment()
+            self.write_unsaved()
         } else {
             Ok(())
         }
@@ -108,9 +115,7 @@ impl RunWriter {
     /// If there is no record, the output has come into being meanwhile and may not be
     /// overwritten, or anything cannot be written. Segments then stay.
     pub fn finish(mut self) -> Result<PathBuf> {
-        if !self.buffer.is_empty() && self.buffer.len() < CHUNK {
-            self.write_segment()?;
-        }
+        self.write_unsaved()?;
         if self.segments == 0 {
             return Err(OutputError::Empty { path: self.path });
         }
@@ -125,14 +130,23 @@ impl RunWriter {
         Ok(self.path)
     }
 
-    fn write_segment(&mut self) -> Result<()> {
+    fn write_unsaved(&mut self) -> Result<()> {
+        if !self.unsaved {
+            return Ok(());
+        }
         let temporary = segments::temporary(&self.path, self.segments);
         let layout = Layout::create(&temporary, &self.schema)?;
         layout.write(0, &Block::gather(&self.schema, &self.buffer))?;
         layout.finish(&self.restart)?;
         segments::seal(&temporary, &segments::path(&self.path, self.segments))?;
         self.segments += 1;
+        self.unsaved = false;
         Ok(())
+    }
+
+    /// Number of records taken so far.
+    fn taken(&self) -> usize {
+        self.segments * CHUNK + if self.unsaved { self.buffer.len() } else { 0 }
     }
 
     fn merge(&self, temporary: &Path) -> Result<()> {

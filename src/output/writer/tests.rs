@@ -75,3 +75,38 @@ fn a_missing_segment_stops_the_merge_and_keeps_the_others() {
     assert!(message.contains("seg0000"), "{message}");
     assert!(!path.exists() && segments::path(&path, 1).exists());
 }
+
+#[test]
+fn a_failed_segment_is_reported_and_written_later() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("run.nc");
+    let (schema, records) = invented();
+    let mut writer = RunWriter::create(&path, schema, Overwrite::Refuse).unwrap();
+    let obstacle = segments::temporary(&path, 0);
+    std::fs::create_dir(&obstacle).unwrap();
+    for (number, record) in records.iter().enumerate() {
+        let state = vec![("ice".to_owned(), vec![record.age_kyr])];
+        let result = writer.push(record, &state);
+        match number {
+            63 => assert!(result.unwrap_err().to_string().contains("seg0000.tmp")),
+            64 => {
+                assert!(result.is_err());
+                std::fs::remove_dir(&obstacle).unwrap();
+                writer.push(record, &state).unwrap();
+                let first = RunFile::open(&segments::path(&path, 0)).unwrap();
+                assert_eq!(first.restart().unwrap()[0].1, [-63.0]);
+            }
+            _ => result.unwrap(),
+        }
+    }
+    let ages = RunFile::open(&writer.finish().unwrap())
+        .unwrap()
+        .array("age")
+        .unwrap();
+    assert!(
+        ages.iter()
+            .zip(&records)
+            .all(|(age, r)| age.to_bits() == r.age_kyr.to_bits())
+    );
+    assert_eq!(ages.len(), 150);
+}
