@@ -5,7 +5,8 @@
 //! whether they are on the scale or a difference (3.1.2, `units_metadata`). Age is counted in
 //! kyr before 1950 CE on a dimension `age` without standard name and without axis: calendars of
 //! readers end some 292 kyr from the epoch, and units with the word "since" would send them
-//! there. Readers turn units such as "days" into time differences, so the singular is asked for.
+//! there. Some readers turn units such as "days" into time differences, so the
+//! singular is asked for.
 //!
 //! Sources: CF Conventions 1.11; UDUNITS-2 data base ("a", "ka", "Ma" are areas there).
 

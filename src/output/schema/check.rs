@@ -12,7 +12,7 @@ use super::{
 };
 use crate::series::{Scale, Variable};
 
-/// Units a reader silently turns into time differences.
+/// Units that some readers silently turn into time differences.
 const TIME_DIFFERENCES: [&str; 7] = [
     "days",
     "hours",
@@ -152,7 +152,7 @@ fn units(item: &str, variable: &Variable) -> Result<()> {
     } else if units.to_ascii_lowercase().contains("since") {
         "readers take the word \"since\" for a calendar and fail; use plain units"
     } else if TIME_DIFFERENCES.contains(&units) {
-        "readers turn these into time differences; use the singular or the symbol"
+        "some readers turn these into time differences; use the singular or the symbol"
     } else if units.split_whitespace().any(|part| AREAS.contains(&part)) {
         "UDUNITS reads this as an area; write \"year\" or \"kyr\""
     } else {
