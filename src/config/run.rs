@@ -188,7 +188,10 @@ impl Experiment {
             Fault::Table(_) => "co2.path",
         };
         let key = key.split([' ', '[']).next().unwrap_or(key);
-        PlacedFault { place: self.tree.nearest_origin(key), fault }
+        PlacedFault {
+            place: self.tree.nearest_origin(key),
+            fault,
+        }
     }
 }
 
@@ -200,8 +203,14 @@ impl Faults {
         result.map_err(|e| self.0.push(fault(e))).ok()
     }
 
-    fn take_all<T, E>(&mut self, result: Result<T, Vec<E>>, fault: impl Fn(E) -> Fault) -> Option<T> {
-        result.map_err(|all| self.0.extend(all.into_iter().map(fault))).ok()
+    fn take_all<T, E>(
+        &mut self,
+        result: Result<T, Vec<E>>,
+        fault: impl Fn(E) -> Fault,
+    ) -> Option<T> {
+        result
+            .map_err(|all| self.0.extend(all.into_iter().map(fault)))
+            .ok()
     }
 }
 
@@ -233,39 +242,72 @@ impl RunSpec {
         let edges = setting.surface.bands.edge_sine();
         let drive = Drive::new(orbit, co2, numbers, edges, setting.steps_per_year());
         match faults.take(drive, |e| Fault::Grid(e.to_string())) {
-            Some(drive) if faults.0.is_empty() => {
-                Ok(Built { model: Model::new(components, exchange, drive), plan, setting })
-            }
+            Some(drive) if faults.0.is_empty() => Ok(Built {
+                model: Model::new(components, exchange, drive),
+                plan,
+                setting,
+            }),
             _ => Err(faults.0),
         }
     }
 
     fn check_numbers(&self) -> Result<(), Vec<RangeError>> {
         let mut r = Ranges::default();
-        r.positive("insolation.solar_constant_w_m2", self.insolation.solar_constant_w_m2);
+        r.positive(
+            "insolation.solar_constant_w_m2",
+            self.insolation.solar_constant_w_m2,
+        );
         let refresh = self.insolation.refresh_every_yr;
         let limit = "must lie between 1 and 1000 years";
-        r.require("insolation.refresh_every_yr", refresh, (1.0..=1000.0).contains(&refresh), limit);
-        r.positive("co2_forcing.co2_reference_ppm", self.co2_forcing.co2_reference_ppm);
-        r.not_negative("co2_forcing.co2_forcing_w_m2", self.co2_forcing.co2_forcing_w_m2);
+        r.require(
+            "insolation.refresh_every_yr",
+            refresh,
+            (1.0..=1000.0).contains(&refresh),
+            limit,
+        );
+        r.positive(
+            "co2_forcing.co2_reference_ppm",
+            self.co2_forcing.co2_reference_ppm,
+        );
+        r.not_negative(
+            "co2_forcing.co2_forcing_w_m2",
+            self.co2_forcing.co2_forcing_w_m2,
+        );
         let steps = self.grid.steps_per_year;
         let usable = (STEPS_LIMIT.0..=STEPS_LIMIT.1).contains(&steps);
-        r.require("grid.steps_per_year", steps as f64, usable, "must lie between 24 and 5000");
-        let needed = "the energy balance must be there: add its table or `extends` a file that has it";
-        r.require("physics.energy_balance", f64::NAN, self.physics.energy_balance.is_some(), needed);
+        r.require(
+            "grid.steps_per_year",
+            steps as f64,
+            usable,
+            "must lie between 24 and 5000",
+        );
+        let needed =
+            "the energy balance must be there: add its table or `extends` a file that has it";
+        r.require(
+            "physics.energy_balance",
+            f64::NAN,
+            self.physics.energy_balance.is_some(),
+            needed,
+        );
         r.finish()
     }
 
     fn carbon_dioxide(&self, folder: &Path, faults: &mut Faults) -> Option<CarbonDioxide> {
         let built = match &self.co2 {
             CarbonDioxideSpec::Constant { co2_ppm } => CarbonDioxide::constant(*co2_ppm),
-            CarbonDioxideSpec::Linear { from_kyr, from_ppm, to_kyr, to_ppm } => {
-                CarbonDioxide::table(vec![*to_kyr, *from_kyr], vec![*to_ppm, *from_ppm])
-            }
+            CarbonDioxideSpec::Linear {
+                from_kyr,
+                from_ppm,
+                to_kyr,
+                to_ppm,
+            } => CarbonDioxide::table(vec![*to_kyr, *from_kyr], vec![*to_ppm, *from_ppm]),
             CarbonDioxideSpec::Table { path } => {
                 let read = tables::read_columns(&folder.join(path), &["age_kyr", "co2_ppm"]);
                 let mut columns = faults.take(read, Fault::Table)?.into_iter();
-                let (age, ppm) = (columns.next().unwrap_or_default(), columns.next().unwrap_or_default());
+                let (age, ppm) = (
+                    columns.next().unwrap_or_default(),
+                    columns.next().unwrap_or_default(),
+                );
                 CarbonDioxide::table(age, ppm)
             }
         };
@@ -290,6 +332,9 @@ impl RunSpec {
         let surface = faults.take_all(self.surface.build(&bands), Fault::Range);
         let months = MonthWeights::new(self.grid.steps_per_year);
         let months = faults.take(months, |e| Fault::Grid(e.to_string()));
-        Some(Setting { surface: surface?, months: months? })
+        Some(Setting {
+            surface: surface?,
+            months: months?,
+        })
     }
 }
