@@ -10,6 +10,7 @@ pub mod observer;
 pub mod records;
 
 use crate::forcing::drive::{Drive, DriveError};
+use crate::numerics::sum::CompensatedSum;
 use crate::physics::budget::{Ledger, Quantity};
 use crate::physics::exchange::Exchange;
 use crate::physics::{Component, PhysicsError};
@@ -229,7 +230,11 @@ fn advance(
     }
     let accounts: Vec<_> = components.iter().flat_map(|c| c.accounts()).collect();
     // Heat the column was debited this year and the mixed layer receives next year.
-    let in_transit = crate::numerics::sum::compensated(exchange.column_heat_w.iter().copied());
-    ledger.post(&accounts, in_transit * YEAR_SECONDS);
+    let mut in_transit = CompensatedSum::default();
+    exchange
+        .column_heat_w
+        .iter()
+        .for_each(|w| in_transit.add_product(*w, YEAR_SECONDS));
+    ledger.post(&accounts, in_transit);
     Ok(())
 }

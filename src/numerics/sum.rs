@@ -30,6 +30,28 @@ impl CompensatedSum {
         self.sum = total;
     }
 
+    /// Adds a product without rounding it first.
+    pub fn add_product(&mut self, a: f64, b: f64) {
+        let product = a * b;
+        self.add(product);
+        self.add(a.mul_add(b, -product));
+    }
+
+    /// Adds another sum.
+    pub fn add_sum(&mut self, other: Self) {
+        self.add(other.sum);
+        self.add(other.compensation);
+    }
+
+    /// The same sum with the opposite sign.
+    #[must_use]
+    pub fn negated(self) -> Self {
+        Self {
+            sum: -self.sum,
+            compensation: -self.compensation,
+        }
+    }
+
     /// The sum so far.
     pub fn value(&self) -> f64 {
         self.sum + self.compensation

@@ -10,7 +10,7 @@
 //! Sums over the years are compensated, so that the residual shows the model's rounding and not
 //! the ledger's.
 
-use crate::numerics::sum::{CompensatedSum, compensated};
+use crate::numerics::sum::CompensatedSum;
 
 /// A conserved quantity.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -29,8 +29,9 @@ pub enum Quantity {
 pub struct Flow {
     /// What flows, in words.
     pub name: &'static str,
-    /// How much in the year.
-    pub amount: f64,
+    /// How much in the year, without rounding: in a steady climate every year rounds alike, and
+    /// a thousand equal roundings would show as a leak.
+    pub amount: CompensatedSum,
 }
 
 /// One component's account of one quantity for one seasonal year.
@@ -42,7 +43,7 @@ pub struct Account {
     pub quantity: Quantity,
     /// Stored at the end of the year. A component that runs M years in one seasonal year counts
     /// its store divided by M: that is the quantity conserved then.
-    pub stored: f64,
+    pub stored: CompensatedSum,
     /// Flows from outside the planet (space).
     pub from_outside: Vec<Flow>,
     /// Flows from other components, on the same footing as `stored`.
@@ -56,7 +57,7 @@ pub struct Ledger {
     start: Option<CompensatedSum>,
     outside: CompensatedSum,
     throughput: CompensatedSum,
-    held: f64,
+    held: CompensatedSum,
 }
 
 impl Ledger {
@@ -67,40 +68,39 @@ impl Ledger {
             start: None,
             outside: CompensatedSum::default(),
             throughput: CompensatedSum::default(),
-            held: 0.0,
+            held: CompensatedSum::default(),
         }
     }
 
     /// Books one year: the accounts of all components and what is in transit between them.
-    pub fn post(&mut self, accounts: &[Account], in_transit: f64) {
+    pub fn post(&mut self, accounts: &[Account], in_transit: CompensatedSum) {
         let mine = || accounts.iter().filter(|a| a.quantity == self.quantity);
-        let held = compensated(mine().map(|a| a.stored).chain([in_transit]));
+        let mut held = in_transit;
+        mine().for_each(|account| held.add_sum(account.stored));
         if self.start.is_none() {
-            self.start = Some(CompensatedSum::new(held));
+            self.start = Some(held);
         } else {
-            let flows: Vec<f64> = mine()
+            let flows: Vec<CompensatedSum> = mine()
                 .flat_map(|a| a.from_outside.iter().map(|f| f.amount))
                 .collect();
-            self.outside.extend(flows.iter().copied());
+            flows.iter().for_each(|flow| self.outside.add_sum(*flow));
             self.throughput
-                .add(flows.iter().filter(|f| **f > 0.0).sum());
+                .add(flows.iter().map(|f| f.value().max(0.0)).sum());
         }
         self.held = held;
     }
 
     /// What the planet holds beyond what it held at the start and received since.
     pub fn residual(&self) -> f64 {
-        let mut sum = CompensatedSum::new(self.held);
-        if let Some(start) = self.start {
-            sum.extend(start.parts().map(|p| -p));
-        }
-        sum.extend(self.outside.parts().map(|p| -p));
+        let mut sum = self.held;
+        sum.add_sum(self.start.unwrap_or(self.held).negated());
+        sum.add_sum(self.outside.negated());
         sum.value()
     }
 
     /// Change of what the planet holds since the start.
     pub fn net_change(&self) -> f64 {
-        self.held - self.start.map_or(self.held, |s| s.value())
+        self.held.value() - self.start.unwrap_or(self.held).value()
     }
 
     /// Everything that came in since the start.
@@ -123,12 +123,13 @@ impl Ledger {
         let start = self.start.map_or([f64::NAN; 2], |s| s.parts());
         let [a, b] = self.outside.parts();
         let [c, d] = self.throughput.parts();
-        vec![start[0], start[1], a, b, c, d, self.held]
+        let [e, f] = self.held.parts();
+        vec![start[0], start[1], a, b, c, d, e, f]
     }
 
     /// Rebuilds a ledger from [`Ledger::save`]; `None` when the length does not fit.
     pub fn restored(quantity: Quantity, state: &[f64]) -> Option<Self> {
-        let &[s0, s1, a, b, c, d, held] = state else {
+        let &[s0, s1, a, b, c, d, e, f] = state else {
             return None;
         };
         Some(Self {
@@ -136,7 +137,7 @@ impl Ledger {
             start: (!s0.is_nan()).then(|| CompensatedSum::from_parts([s0, s1])),
             outside: CompensatedSum::from_parts([a, b]),
             throughput: CompensatedSum::from_parts([c, d]),
-            held,
+            held: CompensatedSum::from_parts([e, f]),
         })
     }
 }

@@ -91,7 +91,7 @@ pub(super) fn assemble(c: &Coefficients, w: &mut Work, greenhouse: f64) {
         let (slope, slope_air) = (w.land_flux_slope.at(r), w.land_flux_air.at(r));
         let (by_enthalpy, by_air) = (w.ocean_flux_enthalpy.at(r), w.ocean_flux_air.at(r));
         let emission = c.air_emission_offset.at(r) + air * c.air_emission_slope - greenhouse;
-        let local = w.air_absorbed.at(r) - emission - (air - w.air_base.at(r)) * storage;
+        let local = w.air_absorbed.at(r) - emission - w.air_lead.at(r) * storage;
         w.air_increment.set(
             r,
             local

@@ -5,7 +5,8 @@
 
 use super::coefficients::Coefficients;
 use super::surfaces::Work;
-use crate::numerics::lanes::Rows;
+use crate::numerics::lanes::{Lanes, Rows};
+use crate::numerics::sum::CompensatedSum;
 
 macro_rules! node_fields {
     ($($(#[$doc:meta])* $field:ident),* $(,)?) => {
@@ -44,6 +45,53 @@ node_fields! {
     insolation,
 }
 
+/// Sums over the steps, one per band, with the rounding error of each carried along.
+#[derive(Clone, Debug)]
+pub(super) struct RowSums {
+    sum: Rows,
+    lost: Rows,
+}
+
+impl RowSums {
+    fn new(bands: usize) -> Self {
+        Self {
+            sum: Rows::new(bands, 0.0),
+            lost: Rows::new(bands, 0.0),
+        }
+    }
+
+    fn clear(&mut self) {
+        self.sum.fill(0.0);
+        self.lost.fill(0.0);
+    }
+
+    #[inline(always)]
+    pub(super) fn add(&mut self, r: usize, value: Lanes) {
+        let before = self.sum.at(r);
+        let after = before + value;
+        let added = after - before;
+        self.lost
+            .add(r, (before - (after - added)) + (value - added));
+        self.sum.set(r, after);
+    }
+
+    /// The sum of band `i`.
+    pub(super) fn band(&self, i: usize) -> f64 {
+        self.sum.flat()[i] + self.lost.flat()[i]
+    }
+
+    /// Sum over all bands, each with its weight, times `factor`.
+    pub(super) fn weighted(&self, weight: &[f64], factor: f64) -> CompensatedSum {
+        let mut total = CompensatedSum::default();
+        for ((sum, lost), weight) in self.sum.flat().iter().zip(self.lost.flat()).zip(weight) {
+            let scaled = factor * weight;
+            total.add_product(scaled, *sum);
+            total.add_product(scaled, *lost);
+        }
+        total
+    }
+}
+
 /// Sums of one year.
 #[derive(Clone, Debug)]
 pub(super) struct Means {
@@ -52,10 +100,10 @@ pub(super) struct Means {
     /// Monthly means.
     pub monthly: Vec<Node>,
     /// Sums over the steps, W m-2 of band (ocean: of ocean).
-    pub absorbed_air: Rows,
-    pub absorbed_land: Rows,
-    pub absorbed_ocean: Rows,
-    pub emitted: Rows,
+    pub absorbed_air: RowSums,
+    pub absorbed_land: RowSums,
+    pub absorbed_ocean: RowSums,
+    pub emitted: RowSums,
     pub air_input: Rows,
     pub ocean_gain: Rows,
     pub gross_loss: Rows,
@@ -76,10 +124,10 @@ impl Means {
         Self {
             node: Node::new(bands),
             monthly: vec![Node::new(bands); 12],
-            absorbed_air: zero.clone(),
-            absorbed_land: zero.clone(),
-            absorbed_ocean: zero.clone(),
-            emitted: zero.clone(),
+            absorbed_air: RowSums::new(bands),
+            absorbed_land: RowSums::new(bands),
+            absorbed_ocean: RowSums::new(bands),
+            emitted: RowSums::new(bands),
             air_input: zero.clone(),
             ocean_gain: zero.clone(),
             gross_loss: zero.clone(),
@@ -98,11 +146,15 @@ impl Means {
                 .into_iter()
                 .for_each(|rows| rows.fill(0.0));
         }
-        for rows in [
+        for sums in [
             &mut self.absorbed_air,
             &mut self.absorbed_land,
             &mut self.absorbed_ocean,
             &mut self.emitted,
+        ] {
+            sums.clear();
+        }
+        for rows in [
             &mut self.air_input,
             &mut self.ocean_gain,
             &mut self.gross_loss,

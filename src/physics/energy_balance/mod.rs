@@ -123,9 +123,7 @@ impl EnergyBalance {
     /// Replaces the air temperature (degC, `[band]`) by a state at rest, for experiments on
     /// stability.
     pub fn set_air_temperature_c(&mut self, air_c: &[f64]) {
-        self.state.air.now.flat_mut().copy_from_slice(air_c);
-        self.state.air.last.fill(0.0);
-        self.state.air.before.fill(0.0);
+        self.state.air.reset(air_c);
     }
 
     /// sin(latitude) of the ice edge in the southern and northern hemisphere, for an ice-line
@@ -138,7 +136,7 @@ impl EnergyBalance {
 
     /// Heat held by air, land and ocean layers, J, in the combination the formula conserves.
     pub fn heat_j(&self) -> f64 {
-        self.state.heat_j(&self.coefficients)
+        self.state.heat_j(&self.coefficients).value()
     }
 }
 

@@ -16,7 +16,7 @@ use super::params::Params;
 use super::state::State;
 use crate::grid::calendar::Calendar;
 use crate::numerics::lanes::Rows;
-use crate::numerics::sum::compensated;
+use crate::numerics::sum::{CompensatedSum, compensated};
 use crate::physics::budget::{Account, Flow, Quantity};
 use crate::physics::exchange::{Exchange, Surface};
 use crate::series::{Axis, Scale, Variable};
@@ -274,7 +274,7 @@ impl Report {
         let account = Account {
             component: "energy_balance",
             quantity: Quantity::Energy,
-            stored: 0.0,
+            stored: CompensatedSum::default(),
             from_outside: Vec::new(),
             from_components: Vec::new(),
         };
@@ -308,29 +308,39 @@ impl Report {
     }
 
     fn account(&mut self, c: &Coefficients, m: &Means, s: &State, exchange: &Exchange) {
-        let over_area = |rows: &Rows| {
-            c.step_s * compensated(rows.flat().iter().zip(c.area_m2.flat()).map(|(v, a)| v * a))
-        };
+        let area = c.area_m2.flat();
         let flow = |name, amount| Flow { name, amount };
         self.account.stored = s.heat_j(c);
         self.account.from_outside = vec![
-            flow("sunlight absorbed by the air", over_area(&m.absorbed_air)),
-            flow("sunlight absorbed by land", over_area(&m.absorbed_land)),
+            flow(
+                "sunlight absorbed by the air",
+                m.absorbed_air.weighted(area, c.step_s),
+            ),
+            flow(
+                "sunlight absorbed by land",
+                m.absorbed_land.weighted(area, c.step_s),
+            ),
             flow(
                 "sunlight absorbed by the ocean",
-                over_area(&m.absorbed_ocean),
+                m.absorbed_ocean.weighted(area, c.step_s),
             ),
-            flow("radiation emitted to space", -over_area(&m.emitted)),
+            flow(
+                "radiation emitted to space",
+                m.emitted.weighted(area, c.step_s).negated(),
+            ),
         ];
-        let given = compensated(exchange.column_heat_w.iter().copied()) * YEAR_SECONDS;
-        let sunk = compensated(
-            m.sunk_heat
-                .iter()
-                .flat_map(|rows| rows.flat().iter().copied()),
-        );
+        let mut given = CompensatedSum::default();
+        exchange
+            .column_heat_w
+            .iter()
+            .for_each(|w| given.add_product(*w, YEAR_SECONDS));
+        let mut sunk = CompensatedSum::default();
+        for heat in m.sunk_heat.iter().flat_map(|rows| rows.flat()) {
+            sunk.add_product(*heat, -SEA_WATER_HEAT_CAPACITY_J_M3_K);
+        }
         self.account.from_components = vec![
             flow("heat from the column", given),
-            flow("sinking water", -SEA_WATER_HEAT_CAPACITY_J_M3_K * sunk),
+            flow("sinking water", sunk),
         ];
     }
 
@@ -401,10 +411,10 @@ impl Report {
         let absorbed: Vec<f64> = (0..c.bands)
             .map(|i| {
                 let parts = [&m.absorbed_air, &m.absorbed_land, &m.absorbed_ocean];
-                parts.iter().map(|rows| rows.flat()[i]).sum::<f64>() * per_step
+                parts.iter().map(|sums| sums.band(i)).sum::<f64>() * per_step
             })
             .collect();
-        let emitted: Vec<f64> = m.emitted.flat().iter().map(|v| v * per_step).collect();
+        let emitted: Vec<f64> = (0..c.bands).map(|i| m.emitted.band(i) * per_step).collect();
         self.values.extend_from_slice(&absorbed);
         self.values.extend_from_slice(&emitted);
         self.sums(c, surface, m, &gain, exchange);

@@ -1,20 +1,25 @@
 //! The prognostic fields with the levels that the third-order formula needs.
 //!
 //! Each field keeps its newest value and the last two increments d0 = `y_n` - `y_{n-1}`,
-//! d1 = `y_{n-1}` - `y_{n-2}`: written in differences the coefficients of the formula sum to zero
-//! exactly, which is what lets the heat budget close to round-off.
+//! d1 = `y_{n-1}` - `y_{n-2}`, so that the new increment is
+//!   d = (7 d0 - 2 d1)/11 + (gamma/C) F,  gamma = 6 h/11,
+//! in small numbers only; what adding d to y loses to rounding is carried to the next step. In
+//! these terms the quantity y + 5/6 d0 - 1/3 d1 changes by (h/C) F, and the heat budget closes
+//! far below the rounding of y itself.
 
 use super::coefficients::Coefficients;
 use crate::numerics::lanes::{Lanes, Rows};
-use crate::numerics::sum::compensated;
+use crate::numerics::sum::CompensatedSum;
 use crate::units::SEA_WATER_FREEZING_C;
 
 /// One field in three time levels.
 #[derive(Clone, Debug, PartialEq)]
 pub(super) struct Levels {
     pub now: Rows,
-    pub last: Rows,
-    pub before: Rows,
+    /// What `now` lacks of the exact sum of all increments.
+    lost: Rows,
+    last: Rows,
+    before: Rows,
 }
 
 impl Levels {
@@ -22,44 +27,74 @@ impl Levels {
         let still = Rows::new(values.len(), 0.0);
         Self {
             now: Rows::from_slice(values),
+            lost: still.clone(),
             last: still.clone(),
             before: still,
         }
     }
 
-    /// Right-hand level of the formula, y + (7 d0 - 2 d1)/11.
+    /// Starts from `values` at rest.
+    pub(super) fn reset(&mut self, values: &[f64]) {
+        *self = Self::new(values);
+    }
+
+    /// Part of the new increment that follows from the last two, (7 d0 - 2 d1)/11.
     #[inline(always)]
-    pub(super) fn base(&self, r: usize) -> Lanes {
-        self.now.at(r) + (self.last.at(r) * 7.0 - self.before.at(r) * 2.0) * (1.0 / 11.0)
+    pub(super) fn momentum(&self, r: usize) -> Lanes {
+        (self.last.at(r) * 7.0 - self.before.at(r) * 2.0) * (1.0 / 11.0)
     }
 
     /// Extrapolation to the new time, y + 2 d0 - d1.
     #[inline(always)]
     pub(super) fn extrapolated(&self, r: usize) -> Lanes {
-        self.now.at(r) + self.last.at(r) * 2.0 - self.before.at(r)
+        self.now.at(r) + (self.last.at(r) * 2.0 - self.before.at(r))
     }
 
-    /// Takes the new value and shifts the levels.
+    /// Extrapolation minus the level of the formula, (15 d0 - 9 d1)/11.
     #[inline(always)]
-    pub(super) fn push(&mut self, r: usize, new: Lanes) {
+    pub(super) fn lead(&self, r: usize) -> Lanes {
+        (self.last.at(r) * 15.0 - self.before.at(r) * 9.0) * (1.0 / 11.0)
+    }
+
+    /// Adds the new increment, shifts the levels, and returns the new value.
+    #[inline(always)]
+    pub(super) fn push(&mut self, r: usize, increment: Lanes) -> Lanes {
+        let now = self.now.at(r);
+        let step = increment + self.lost.at(r);
+        let new = now + step;
+        self.lost.set(r, step - (new - now));
         self.before.set(r, self.last.at(r));
-        self.last.set(r, new - self.now.at(r));
+        self.last.set(r, increment);
         self.now.set(r, new);
+        new
     }
 
     /// y + 5/6 d0 - 1/3 d1: the combination whose change equals the flux of the new time.
-    fn conserved(&self, i: usize) -> f64 {
-        self.now.flat()[i] + (5.0 / 6.0) * self.last.flat()[i] - self.before.flat()[i] / 3.0
+    fn conserved(&self, i: usize) -> [f64; 4] {
+        [
+            self.now.flat()[i],
+            self.lost.flat()[i],
+            (5.0 / 6.0) * self.last.flat()[i],
+            self.before.flat()[i] / -3.0,
+        ]
     }
 
-    fn rows(&self) -> [&Rows; 3] {
-        [&self.now, &self.last, &self.before]
+    fn rows(&self) -> [&Rows; LEVELS] {
+        [&self.now, &self.lost, &self.last, &self.before]
     }
 
-    fn rows_mut(&mut self) -> [&mut Rows; 3] {
-        [&mut self.now, &mut self.last, &mut self.before]
+    fn rows_mut(&mut self) -> [&mut Rows; LEVELS] {
+        [
+            &mut self.now,
+            &mut self.lost,
+            &mut self.last,
+            &mut self.before,
+        ]
     }
 }
+
+/// Numbers that one field keeps per band.
+const LEVELS: usize = 4;
 
 /// Prognostic state: temperatures in degC, enthalpy in J m-2.
 #[derive(Clone, Debug, PartialEq)]
@@ -108,24 +143,30 @@ impl State {
     }
 
     /// Heat stored on the planet's surface and in the air, J, in the combination that the
-    /// formula conserves.
-    pub(super) fn heat_j(&self, c: &Coefficients) -> f64 {
+    /// formula conserves; summed exactly.
+    pub(super) fn heat_j(&self, c: &Coefficients) -> CompensatedSum {
         let sub_on = if c.sub_exchange > 0.0 {
             c.sub_capacity
         } else {
             0.0
         };
-        compensated((0..c.bands).flat_map(|i| {
+        let mut heat = CompensatedSum::default();
+        for i in 0..c.bands {
             let area = c.area_m2.flat()[i];
-            let land = area * c.land.flat()[i] * c.land_capacity;
             let ocean = c.ocean_area_m2.flat()[i];
-            [
-                area * c.air_capacity * self.air.conserved(i),
-                land * self.land.conserved(i),
-                ocean * self.enthalpy.conserved(i),
-                ocean * sub_on * self.sub.conserved(i),
-            ]
-        }))
+            for (capacity, levels) in [
+                (area * c.air_capacity, &self.air),
+                (area * c.land.flat()[i] * c.land_capacity, &self.land),
+                (ocean, &self.enthalpy),
+                (ocean * sub_on, &self.sub),
+            ] {
+                levels
+                    .conserved(i)
+                    .into_iter()
+                    .for_each(|part| heat.add_product(capacity, part));
+            }
+        }
+        heat
     }
 
     fn all(&self) -> impl Iterator<Item = &Rows> {
@@ -137,7 +178,7 @@ impl State {
 
     /// Number of values in a restart state of `bands` bands.
     pub(super) const fn len(bands: usize) -> usize {
-        14 * bands
+        (4 * LEVELS + 2) * bands
     }
 
     pub(super) fn save(&self, into: &mut Vec<f64>) {

@@ -35,12 +35,12 @@ macro_rules! work_fields {
 work_fields! {
     /// Extrapolated air temperature and the slope of humidity there.
     air, air_humidity_slope, air_humidity,
-    /// Storage residual of the air, C (T* - base)/gamma, and sunlight it absorbs.
-    air_base, air_absorbed,
+    /// Extrapolation of the air minus the level of the formula, and sunlight it absorbs.
+    air_lead, air_absorbed,
     /// Land: flux to air F*, slopes F_s and F_a, emission to space, absorbed S* and S'.
     land_flux, land_flux_slope, land_flux_air, land_emission, land_absorbed, land_absorbed_slope,
-    /// Land: residual, Newton slope, base level.
-    land_residual, land_newton, land_base,
+    /// Land: residual and Newton slope.
+    land_residual, land_newton,
     /// Snow cover of the land.
     snow,
     /// Ocean: flux to air X*, dX/dE, dX/dT_a.
@@ -49,10 +49,10 @@ work_fields! {
     ocean_emission, ocean_emission_enthalpy, ocean_emission_air,
     /// Ocean: absorbed sunlight and slope.
     ocean_absorbed, ocean_absorbed_enthalpy,
-    /// Flux into the seasonal thermocline and slope, its base level.
-    sub_flux, sub_flux_enthalpy, sub_base,
-    /// Ocean: residual, Newton slope, base level.
-    ocean_residual, ocean_newton, ocean_base,
+    /// Flux into the seasonal thermocline and slope.
+    sub_flux, sub_flux_enthalpy,
+    /// Ocean: residual and Newton slope.
+    ocean_residual, ocean_newton,
     /// One where the water is open, zero where there is ice.
     open_water,
     /// Mixed-layer temperature, ice cover, ice surface temperature.
@@ -120,7 +120,7 @@ pub(super) fn evaluate(
         w.air.set(r, air);
         w.air_humidity.set(r, q_air.humidity);
         w.air_humidity_slope.set(r, q_air.slope);
-        w.air_base.set(r, s.air.base(r));
+        w.air_lead.set(r, s.air.lead(r));
         let insolation = Lanes::load(sun.insolation, 4 * r);
         let tilt = Lanes::splat(0.65) - Lanes::load(sun.zenith, 4 * r);
         let water_albedo = c.water_albedo.at(r) + tilt * c.water_zenith;
@@ -159,7 +159,6 @@ fn land(
     greenhouse: f64,
 ) -> Lanes {
     let temperature = s.land.extrapolated(r);
-    let base = s.land.base(r);
     let warmth = (temperature - c.snow_temperature) * c.snow_steepness;
     let snow = Lanes::splat(1.0) / (warmth.exp() + 1.0);
     let sheet = c.sheet.at(r);
@@ -184,12 +183,9 @@ fn land(
     let storage = c.land_capacity / c.gamma_s;
     let newton = (f.slope + (storage + c.surface_emission_slope) - absorbed_slope)
         .max(Lanes::splat(storage * LEAST_LAND_SLOPE));
-    w.land_residual.set(
-        r,
-        absorbed - f.flux - emission - (temperature - base) * storage,
-    );
+    w.land_residual
+        .set(r, absorbed - f.flux - emission - s.land.lead(r) * storage);
     w.land_newton.set(r, newton);
-    w.land_base.set(r, base);
     w.land_flux.set(r, f.flux);
     w.land_flux_slope.set(r, f.slope);
     w.land_flux_air.set(r, f.slope_air);
@@ -288,9 +284,8 @@ fn ocean(
         r,
         open.select(Lanes::splat(SEA_WATER_FREEZING_C), ice.surface),
     );
-    w.ocean_base.set(r, s.enthalpy.base(r));
     store_sub_layer(c, s, w, r, open.select(per_capacity, zero));
-    close_ocean(c, w, r, enthalpy);
+    close_ocean(c, s, w, r);
     absorptance
 }
 
@@ -327,8 +322,7 @@ fn ice(c: &Coefficients, enthalpy: Lanes, skin: Lanes, f: &Bulk, gain: Lanes) ->
 /// Flux into the seasonal thermocline, lambda' (`T_o` - base), implicit in both.
 #[inline(always)]
 fn store_sub_layer(c: &Coefficients, s: &State, w: &mut Work, r: usize, water_slope: Lanes) {
-    let base = s.sub.base(r);
-    w.sub_base.set(r, base);
+    let base = s.sub.now.at(r) + s.sub.momentum(r);
     w.sub_flux
         .set(r, (w.water_temperature.at(r) - base) * c.sub_exchange);
     w.sub_flux_enthalpy.set(r, water_slope * c.sub_exchange);
@@ -336,7 +330,7 @@ fn store_sub_layer(c: &Coefficients, s: &State, w: &mut Work, r: usize, water_sl
 
 /// Residual (still without the ocean's transport) and Newton slope of the ocean.
 #[inline(always)]
-fn close_ocean(c: &Coefficients, w: &mut Work, r: usize, enthalpy: Lanes) {
+fn close_ocean(c: &Coefficients, s: &State, w: &mut Work, r: usize) {
     let storage = 1.0 / c.gamma_s;
     w.ocean_residual.set(
         r,
@@ -344,7 +338,7 @@ fn close_ocean(c: &Coefficients, w: &mut Work, r: usize, enthalpy: Lanes) {
             - w.ocean_flux.at(r)
             - w.ocean_emission.at(r)
             - w.sub_flux.at(r)
-            - (enthalpy - w.ocean_base.at(r)) * storage,
+            - s.enthalpy.lead(r) * storage,
     );
     let newton = w.ocean_flux_enthalpy.at(r) + w.ocean_emission_enthalpy.at(r)
         - w.ocean_absorbed_enthalpy.at(r)

@@ -1,7 +1,7 @@
 //! Completes a step: the increments of land and ocean follow from the air's, and every reservoir
 //! takes exactly the linearised fluxes that its neighbours gave.
 //!
-//! New level = base + (gamma/C) x (sum of fluxes at the new time), so that heat leaves one
+//! Increment = (7 d0 - 2 d1)/11 + (gamma/C) x (sum of fluxes at the new time): heat leaves one
 //! reservoir and enters the other with the same bits.
 
 use super::coefficients::Coefficients;
@@ -39,12 +39,12 @@ pub(super) fn advance(
         let (land_share, ocean_share) = (c.land.at(r), c.ocean.at(r));
         let input = w.air_absorbed.at(r) + land_share * land.to_air + ocean_share * ocean.to_air
             - air_emission;
-        let new = if c.massless_air() {
-            air
+        let increment = if c.massless_air() {
+            air - s.air.now.at(r)
         } else {
-            w.air_base.at(r) + (input + w.air_convergence.at(r)) * (c.gamma_s / c.air_capacity)
+            s.air.momentum(r) + (input + w.air_convergence.at(r)) * (c.gamma_s / c.air_capacity)
         };
-        s.air.push(r, new);
+        let new = s.air.push(r, increment);
         means.air_input.add(r, input);
         means.absorbed_air.add(r, w.air_absorbed.at(r));
         means.emitted.add(
@@ -62,8 +62,10 @@ fn settle_land(c: &Coefficients, s: &mut State, w: &Work, means: &mut Means, r: 
     let to_air = w.land_flux.at(r) + w.land_flux_slope.at(r) * step - w.land_flux_air.at(r) * air;
     let emitted = w.land_emission.at(r) + step * c.surface_emission_slope;
     let absorbed = w.land_absorbed.at(r) + w.land_absorbed_slope.at(r) * step;
-    let new = w.land_base.at(r) + (absorbed - to_air - emitted) * (c.gamma_s / c.land_capacity);
-    s.land.push(r, new);
+    let net = absorbed - to_air - emitted;
+    let new = s
+        .land
+        .push(r, s.land.momentum(r) + net * (c.gamma_s / c.land_capacity));
     means.absorbed_land.add(r, c.land.at(r) * absorbed);
     means.node.land.set(r, new);
     means.node.snow.set(r, w.snow.at(r));
@@ -84,13 +86,14 @@ fn settle_ocean(c: &Coefficients, s: &mut State, w: &Work, means: &mut Means, r:
     let absorbed = w.ocean_absorbed.at(r) + w.ocean_absorbed_enthalpy.at(r) * step;
     let stored = w.sub_flux.at(r) + w.sub_flux_enthalpy.at(r) * step;
     let gain = absorbed - to_air - emitted;
-    let stepped = w.ocean_base.at(r) + (gain - stored + w.ocean_transport.at(r)) * c.gamma_s;
     // Where there is no ocean nothing would limit the ice: such a band keeps its state.
-    let exists = c.has_ocean.at(r).at_least(Lanes::splat(0.5));
-    let enthalpy = exists.select(stepped, s.enthalpy.now.at(r));
-    s.enthalpy.push(r, enthalpy);
-    let sub = w.sub_base.at(r) + stored * (c.gamma_s / c.sub_capacity);
-    s.sub.push(r, exists.select(sub, s.sub.now.at(r)));
+    let exists = c.has_ocean.at(r);
+    let net = gain - stored + w.ocean_transport.at(r);
+    let enthalpy = s
+        .enthalpy
+        .push(r, (s.enthalpy.momentum(r) + net * c.gamma_s) * exists);
+    let sub = s.sub.momentum(r) + stored * (c.gamma_s / c.sub_capacity);
+    s.sub.push(r, sub * exists);
     s.ice_surface_before.set(r, s.ice_surface.at(r));
     s.ice_surface.set(r, w.ice_surface.at(r));
 
