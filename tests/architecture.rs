@@ -192,7 +192,7 @@ fn what_is_allowed_is_not_caught() {
         ("src/orbit/solution/tables.rs", "use std::fs::File;"),
         (
             "src/orbit/mod.rs",
-            "#[cfg(test)] mod tests { use super::*; use std::fs; }",
+            "#[cfg(test)] mod tests { use super::*; use std::fs; use toml::Table; }",
         ),
         (
             "src/physics/mod.rs",
