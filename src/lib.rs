@@ -6,6 +6,8 @@ pub mod grid;
 pub mod model;
 pub mod numerics;
 pub mod orbit;
+#[cfg(feature = "netcdf")]
+pub mod output;
 pub mod physics;
 pub mod series;
 pub mod tables;

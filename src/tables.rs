@@ -51,7 +51,10 @@ pub enum TableError {
 /// # Errors
 /// When the file cannot be read, a column is missing, or a cell is not a number.
 pub fn read_columns(path: &Path, columns: &[&str]) -> Result<Vec<Vec<f64>>, TableError> {
-    let failed = |source| TableError::Read { path: path.to_owned(), source };
+    let failed = |source| TableError::Read {
+        path: path.to_owned(),
+        source,
+    };
     let mut reader = csv::ReaderBuilder::new()
         .comment(Some(b'#'))
         .trim(csv::Trim::All)
@@ -59,13 +62,19 @@ pub fn read_columns(path: &Path, columns: &[&str]) -> Result<Vec<Vec<f64>>, Tabl
         .map_err(failed)?;
     let header = reader.headers().map_err(failed)?.clone();
     let position = |column: &&str| {
-        header.iter().position(|name| name == *column).ok_or_else(|| TableError::Column {
-            path: path.to_owned(),
-            column: (*column).to_owned(),
-            present: header.iter().collect::<Vec<_>>().join(", "),
-        })
+        header
+            .iter()
+            .position(|name| name == *column)
+            .ok_or_else(|| TableError::Column {
+                path: path.to_owned(),
+                column: (*column).to_owned(),
+                present: header.iter().collect::<Vec<_>>().join(", "),
+            })
     };
-    let positions = columns.iter().map(position).collect::<Result<Vec<_>, _>>()?;
+    let positions = columns
+        .iter()
+        .map(position)
+        .collect::<Result<Vec<_>, _>>()?;
     let mut values = vec![Vec::new(); columns.len()];
     for row in reader.records() {
         let row = row.map_err(failed)?;
@@ -81,7 +90,9 @@ pub fn read_columns(path: &Path, columns: &[&str]) -> Result<Vec<Vec<f64>>, Tabl
         }
     }
     if values.iter().any(Vec::is_empty) {
-        return Err(TableError::Empty { path: path.to_owned() });
+        return Err(TableError::Empty {
+            path: path.to_owned(),
+        });
     }
     Ok(values)
 }
@@ -106,8 +117,13 @@ mod tests {
     #[test]
     fn what_is_wrong_is_named_with_its_line() {
         let message = |text: &str| table(text).unwrap_err().to_string();
-        assert!(message("age_kyr,co2_ppm\n0,280\n1,abc\n").contains("line 3: `abc` in column `co2_ppm`"));
-        assert!(message("age_kyr,ppm\n0,280\n").contains("no column `co2_ppm` among: age_kyr, ppm"));
+        assert!(
+            message("age_kyr,co2_ppm\n0,280\n1,abc\n")
+                .contains("line 3: `abc` in column `co2_ppm`")
+        );
+        assert!(
+            message("age_kyr,ppm\n0,280\n").contains("no column `co2_ppm` among: age_kyr, ppm")
+        );
         assert!(message("age_kyr,co2_ppm\n").contains("no rows"));
     }
 }

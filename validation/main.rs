@@ -1,2 +1,24 @@
-//! v
-mod energy_balance { pub mod set_up; mod case; }
+//! Checks of the model against numbers from outside: published tables, closed forms, observations.
+//!
+//! One folder for each case, with its data, its tests and a README that says which equation is
+//! checked against what, how far the source can be trusted, and why the tolerance is what it is.
+//! Marks: R read at the source, M from memory, C computed from a published closed form with a
+//! general library.
+
+#[cfg(test)]
+mod csv;
+#[cfg(test)]
+#[path = "energy_balance/case.rs"]
+mod energy_balance;
+#[cfg(test)]
+#[path = "energy_balance/set_up.rs"]
+mod energy_balance_set_up;
+#[cfg(test)]
+#[path = "insolation/closed_forms.rs"]
+mod insolation_closed_forms;
+#[cfg(test)]
+#[path = "insolation/case.rs"]
+mod insolation_tables;
+#[cfg(test)]
+#[path = "orbit/case.rs"]
+mod orbit;

@@ -47,7 +47,9 @@ pub enum CarbonDioxideError {
         age_kyr: f64,
     },
     /// Ages out of order.
-    #[error("co2: ages must differ and increase down the table; {first} kyr is followed by {second} kyr")]
+    #[error(
+        "co2: ages must differ and increase down the table; {first} kyr is followed by {second} kyr"
+    )]
     Order {
         /// One age, kyr.
         first: f64,
@@ -55,7 +57,9 @@ pub enum CarbonDioxideError {
         second: f64,
     },
     /// An age that was not given.
-    #[error("co2: {age_kyr} kyr lies outside the ages given, {youngest} to {oldest} kyr: extend them or shorten the run")]
+    #[error(
+        "co2: {age_kyr} kyr lies outside the ages given, {youngest} to {oldest} kyr: extend them or shorten the run"
+    )]
     OutOfRange {
         /// The age asked for, kyr.
         age_kyr: f64,
@@ -80,7 +84,10 @@ impl CarbonDioxide {
     /// When it is not positive.
     pub fn constant(co2_ppm: f64) -> Result<Self, CarbonDioxideError> {
         check(&[f64::NAN], &[co2_ppm])?;
-        Ok(Self { age_kyr: Vec::new(), co2_ppm: vec![co2_ppm] })
+        Ok(Self {
+            age_kyr: Vec::new(),
+            co2_ppm: vec![co2_ppm],
+        })
     }
 
     /// Linear interpolation between ages, which must increase (older last).
@@ -91,7 +98,10 @@ impl CarbonDioxide {
         check(&age_kyr, &co2_ppm)?;
         for pair in age_kyr.windows(2) {
             if !(pair[0] < pair[1]) {
-                return Err(CarbonDioxideError::Order { first: pair[0], second: pair[1] });
+                return Err(CarbonDioxideError::Order {
+                    first: pair[0],
+                    second: pair[1],
+                });
             }
         }
         Ok(Self { age_kyr, co2_ppm })
@@ -107,7 +117,11 @@ impl CarbonDioxide {
         };
         // A millionth of a year of slack for rounding at the ends.
         if !(youngest - 1e-9..=oldest + 1e-9).contains(&age_kyr) {
-            return Err(CarbonDioxideError::OutOfRange { age_kyr, youngest, oldest });
+            return Err(CarbonDioxideError::OutOfRange {
+                age_kyr,
+                youngest,
+                oldest,
+            });
         }
         Ok(linear(&self.age_kyr, &self.co2_ppm, age_kyr))
     }
@@ -130,7 +144,11 @@ mod tests {
     fn analytic_between_ages_the_table_is_linear_and_beyond_them_an_error() {
         let c = CarbonDioxide::table(vec![0.0, 100.0], vec![280.0, 180.0]).unwrap();
         assert!((c.at(25.0).unwrap() - 255.0).abs() < 1e-12);
-        let beyond = CarbonDioxideError::OutOfRange { age_kyr: 101.0, youngest: 0.0, oldest: 100.0 };
+        let beyond = CarbonDioxideError::OutOfRange {
+            age_kyr: 101.0,
+            youngest: 0.0,
+            oldest: 100.0,
+        };
         assert_eq!(c.at(101.0), Err(beyond));
     }
 

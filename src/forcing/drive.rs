@@ -56,7 +56,11 @@ impl Drive {
     /// # Errors
     /// When the edges or the steps make no table.
     pub fn new(
-        orbit: Orbit, carbon_dioxide: CarbonDioxide, numbers: DriveNumbers, edge_sine: &[f64], steps: usize,
+        orbit: Orbit,
+        carbon_dioxide: CarbonDioxide,
+        numbers: DriveNumbers,
+        edge_sine: &[f64],
+        steps: usize,
     ) -> Result<Self, TableError> {
         Ok(Self {
             orbit,
@@ -97,10 +101,18 @@ impl Drive {
     ///
     /// # Errors
     /// When orbit or carbon dioxide do not reach there.
-    pub fn year(&mut self, start_kyr: f64, years: f64, slow_years: f64) -> Result<YearForcing<'_>, DriveError> {
+    pub fn year(
+        &mut self,
+        start_kyr: f64,
+        years: f64,
+        slow_years: f64,
+    ) -> Result<YearForcing<'_>, DriveError> {
         let age_kyr = start_kyr - years / 1000.0;
         let co2_ppm = self.carbon_dioxide.at(age_kyr)?;
-        #[expect(clippy::cast_possible_truncation, reason = "runs are far shorter than 2^63 intervals")]
+        #[expect(
+            clippy::cast_possible_truncation,
+            reason = "runs are far shorter than 2^63 intervals"
+        )]
         let interval = (years / self.refresh_yr).floor() as i64;
         let orbit = match self.table_orbit {
             Some(orbit) if self.table_interval == Some(interval) => orbit,
@@ -130,11 +142,21 @@ impl Drive {
     }
 
     fn renew(&mut self, orbit: Elements) {
-        self.table.update(&orbit, self.solar_constant_w_m2, Calendar.equinox_fraction());
+        self.table.update(
+            &orbit,
+            self.solar_constant_w_m2,
+            Calendar.equinox_fraction(),
+        );
         self.table_orbit = Some(orbit);
     }
 
-    fn forcing(&self, age_kyr: f64, orbit: Elements, co2_ppm: f64, slow_years: f64) -> YearForcing<'_> {
+    fn forcing(
+        &self,
+        age_kyr: f64,
+        orbit: Elements,
+        co2_ppm: f64,
+        slow_years: f64,
+    ) -> YearForcing<'_> {
         YearForcing {
             age_kyr,
             orbit,

@@ -85,8 +85,14 @@ impl Plan {
         for (key, value) in [
             ("time.record_every_yr", f64::from(record)),
             ("time.slow_years_per_seasonal_year", f64::from(slow)),
-            ("time.spin_up.seasonal_yr + settling_yr", f64::from(spec.spin_up.seasonal_yr + spec.spin_up.settling_yr)),
-            ("time.spin_up.slow_years_per_seasonal_year", spec.spin_up.slow_years_per_seasonal_year),
+            (
+                "time.spin_up.seasonal_yr + settling_yr",
+                f64::from(spec.spin_up.seasonal_yr + spec.spin_up.settling_yr),
+            ),
+            (
+                "time.spin_up.slow_years_per_seasonal_year",
+                spec.spin_up.slow_years_per_seasonal_year,
+            ),
         ] {
             if !(value >= 1.0 && value.is_finite()) {
                 wrong.push(PlanError::Zero { key });
@@ -99,21 +105,35 @@ impl Plan {
         let records = (years / f64::from(record)).round();
         if (records * f64::from(record) - years).abs() > 1e-6 * years.max(1.0) || records < 1.0 {
             wrong.push(PlanError::Multiple {
-                what: "the run", long: years, unit: "time.record_every_yr", short: f64::from(record),
+                what: "the run",
+                long: years,
+                unit: "time.record_every_yr",
+                short: f64::from(record),
             });
         }
         if record % slow != 0 {
             wrong.push(PlanError::Multiple {
-                what: "time.record_every_yr", long: f64::from(record),
-                unit: "time.slow_years_per_seasonal_year", short: f64::from(slow),
+                what: "time.record_every_yr",
+                long: f64::from(record),
+                unit: "time.slow_years_per_seasonal_year",
+                short: f64::from(slow),
             });
         }
         if !wrong.is_empty() {
             return Err(wrong);
         }
-        #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "at least one, checked above")]
+        #[expect(
+            clippy::cast_possible_truncation,
+            clippy::cast_sign_loss,
+            reason = "at least one, checked above"
+        )]
         let records = records as u64;
-        Ok(Self { start_kyr, slow_years: slow, seasonal_per_record: u64::from(record / slow), records })
+        Ok(Self {
+            start_kyr,
+            slow_years: slow,
+            seasonal_per_record: u64::from(record / slow),
+            records,
+        })
     }
 
     /// Age at which the run starts, kyr before 1950.
@@ -160,7 +180,10 @@ impl Plan {
     pub fn record_bounds_kyr(&self, year: u64) -> [f64; 2] {
         let length = self.seasonal_per_record as f64 * self.slow_years();
         let end = self.end_yr(year);
-        [self.start_kyr - (end - length) / 1000.0, self.start_kyr - end / 1000.0]
+        [
+            self.start_kyr - (end - length) / 1000.0,
+            self.start_kyr - end / 1000.0,
+        ]
     }
 }
 
@@ -169,8 +192,18 @@ mod tests {
     use super::*;
 
     fn spec(start_kyr: f64, end_kyr: f64, record_every_yr: u32, slow: u32) -> TimeSpec {
-        let spin_up = SpinUp { seasonal_yr: 1, slow_years_per_seasonal_year: 1.0, settling_yr: 0 };
-        TimeSpec { start_kyr, end_kyr, record_every_yr, slow_years_per_seasonal_year: slow, spin_up }
+        let spin_up = SpinUp {
+            seasonal_yr: 1,
+            slow_years_per_seasonal_year: 1.0,
+            settling_yr: 0,
+        };
+        TimeSpec {
+            start_kyr,
+            end_kyr,
+            record_every_yr,
+            slow_years_per_seasonal_year: slow,
+            spin_up,
+        }
     }
 
     #[test]

@@ -25,7 +25,9 @@ pub enum RunError<E: std::error::Error + 'static> {
     #[error(transparent)]
     Drive(#[from] DriveError),
     /// The physics broke down.
-    #[error("at {age_kyr:.3} kyr before 1950 (year {year} of the run): {source}; smaller steps (grid.steps_per_year) or the change that led here are the first things to look at")]
+    #[error(
+        "at {age_kyr:.3} kyr before 1950 (year {year} of the run): {source}; smaller steps (grid.steps_per_year) or the change that led here are the first things to look at"
+    )]
     Physics {
         /// Age, kyr before 1950.
         age_kyr: f64,
@@ -56,7 +58,12 @@ pub struct Model {
 impl Model {
     /// Couples components that were built on this exchange.
     pub fn new(components: Vec<Box<dyn Component>>, exchange: Exchange, drive: Drive) -> Self {
-        Self { components, exchange, drive, ledger: Ledger::new(Quantity::Energy) }
+        Self {
+            components,
+            exchange,
+            drive,
+            ledger: Ledger::new(Quantity::Energy),
+        }
     }
 
     /// The components, in the order in which they are advanced.
@@ -83,17 +90,34 @@ impl Model {
     ///
     /// # Errors
     /// When the forcing does not reach there or the physics breaks down.
-    pub fn held_year<E: std::error::Error>(&mut self, age_kyr: f64, slow_years: f64) -> Result<(), RunError<E>> {
+    pub fn held_year<E: std::error::Error>(
+        &mut self,
+        age_kyr: f64,
+        slow_years: f64,
+    ) -> Result<(), RunError<E>> {
         let forcing = self.drive.held(age_kyr, slow_years)?;
-        advance(&mut self.components, &mut self.exchange, &mut self.ledger, &forcing)
-            .map_err(|source| RunError::Physics { age_kyr, year: 0.0, source })
+        advance(
+            &mut self.components,
+            &mut self.exchange,
+            &mut self.ledger,
+            &forcing,
+        )
+        .map_err(|source| RunError::Physics {
+            age_kyr,
+            year: 0.0,
+            source,
+        })
     }
 
     /// Brings the model near balance at the age where a run starts.
     ///
     /// # Errors
     /// When the forcing does not reach there or the physics breaks down.
-    pub fn spin_up<E: std::error::Error>(&mut self, age_kyr: f64, spin_up: SpinUp) -> Result<(), RunError<E>> {
+    pub fn spin_up<E: std::error::Error>(
+        &mut self,
+        age_kyr: f64,
+        spin_up: SpinUp,
+    ) -> Result<(), RunError<E>> {
         for _ in 0..spin_up.seasonal_yr {
             self.held_year(age_kyr, spin_up.slow_years_per_seasonal_year)?;
         }
@@ -108,30 +132,59 @@ impl Model {
     ///
     /// # Errors
     /// When the forcing does not cover the plan, the physics breaks down, or the observer fails.
-    pub fn run<O: Observer>(&mut self, plan: &Plan, observer: &mut O) -> Result<(), RunError<O::Error>> {
+    pub fn run<O: Observer>(
+        &mut self,
+        plan: &Plan,
+        observer: &mut O,
+    ) -> Result<(), RunError<O::Error>> {
         let mut records = Records::new(&self.components);
         self.open_ledger();
         for year in 0..plan.seasonal_years() {
             let passed = plan.middle_yr(year);
-            let forcing = self.drive.year(plan.start_kyr(), passed, plan.slow_years())?;
+            let forcing = self
+                .drive
+                .year(plan.start_kyr(), passed, plan.slow_years())?;
             let age_kyr = forcing.age_kyr;
-            advance(&mut self.components, &mut self.exchange, &mut self.ledger, &forcing)
-                .map_err(|source| RunError::Physics { age_kyr, year: passed, source })?;
+            advance(
+                &mut self.components,
+                &mut self.exchange,
+                &mut self.ledger,
+                &forcing,
+            )
+            .map_err(|source| RunError::Physics {
+                age_kyr,
+                year: passed,
+                source,
+            })?;
             records.add(&self.components);
             if plan.record_ends(year) {
                 let record = records.close(plan, year, &self.drive, &self.ledger)?;
-                observer.record(&record, &|| self.restart()).map_err(RunError::Observer)?;
+                observer
+                    .record(&record, &|| self.restart())
+                    .map_err(RunError::Observer)?;
             }
-            observer.passed(plan.end_yr(year)).map_err(RunError::Observer)?;
+            observer
+                .passed(plan.end_yr(year))
+                .map_err(RunError::Observer)?;
         }
         Ok(())
     }
 
     /// Everything needed to go on bit for bit.
     pub fn restart(&self) -> Restart {
-        let parts = self.components.iter().map(|c| (c.name().to_owned(), c.save()));
-        let coupling = [("exchange", self.exchange.save()), ("ledger", self.ledger.save())];
-        Restart(parts.chain(coupling.map(|(name, values)| (name.to_owned(), values))).collect())
+        let parts = self
+            .components
+            .iter()
+            .map(|c| (c.name().to_owned(), c.save()));
+        let coupling = [
+            ("exchange", self.exchange.save()),
+            ("ledger", self.ledger.save()),
+        ];
+        Restart(
+            parts
+                .chain(coupling.map(|(name, values)| (name.to_owned(), values)))
+                .collect(),
+        )
     }
 
     /// Restores what [`Model::restart`] gave into a model of the same configuration.
@@ -141,26 +194,34 @@ impl Model {
     pub fn restore<E: std::error::Error>(&mut self, state: &Restart) -> Result<(), RunError<E>> {
         let part = |name: &str| {
             let found = state.0.iter().find(|(n, _)| n == name);
-            found.map(|(_, values)| values.as_slice()).ok_or_else(|| missing(name))
+            found
+                .map(|(_, values)| values.as_slice())
+                .ok_or_else(|| missing(name))
         };
         for component in &mut self.components {
             let name = component.name();
             component.restore(part(name)?).map_err(|_| missing(name))?;
         }
-        self.exchange.restore(part("exchange")?).ok_or_else(|| missing("exchange"))?;
-        self.ledger = Ledger::restored(Quantity::Energy, part("ledger")?)
-            .ok_or_else(|| missing("ledger"))?;
+        self.exchange
+            .restore(part("exchange")?)
+            .ok_or_else(|| missing("exchange"))?;
+        self.ledger =
+            Ledger::restored(Quantity::Energy, part("ledger")?).ok_or_else(|| missing("ledger"))?;
         Ok(())
     }
 }
 
 fn missing<E: std::error::Error>(what: &str) -> RunError<E> {
-    RunError::Restart { what: what.to_owned() }
+    RunError::Restart {
+        what: what.to_owned(),
+    }
 }
 
 /// One seasonal year of all components, and its entry in the ledger.
 fn advance(
-    components: &mut [Box<dyn Component>], exchange: &mut Exchange, ledger: &mut Ledger,
+    components: &mut [Box<dyn Component>],
+    exchange: &mut Exchange,
+    ledger: &mut Ledger,
     forcing: &crate::forcing::YearForcing<'_>,
 ) -> Result<(), PhysicsError> {
     for component in components.iter_mut() {

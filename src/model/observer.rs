@@ -15,7 +15,8 @@ pub trait Observer {
     ///
     /// # Errors
     /// Whatever stops the run.
-    fn record(&mut self, record: &Record, restart: &dyn Fn() -> Restart) -> Result<(), Self::Error>;
+    fn record(&mut self, record: &Record, restart: &dyn Fn() -> Restart)
+    -> Result<(), Self::Error>;
 
     /// So many years of the run have passed.
     ///

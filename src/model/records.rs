@@ -12,18 +12,68 @@ use crate::series::{Record, Scale, Variable};
 /// Variables that the model itself adds in front of those of the components.
 pub fn model_variables() -> Vec<Variable> {
     let scalar = |name, units, long_name, standard_name| Variable {
-        name, axes: &[], units, long_name, standard_name, scale: Scale::Plain,
+        name,
+        axes: &[],
+        units,
+        long_name,
+        standard_name,
+        scale: Scale::Plain,
     };
     vec![
-        scalar("eccentricity", "1", "eccentricity of the orbit, middle of the record", None),
-        scalar("obliquity", "degree", "obliquity of the ecliptic, middle of the record", None),
-        scalar("perihelion_longitude", "degree", "heliocentric longitude of perihelion from the moving March equinox (102.9 today; the sun is then seen 180 degrees further), middle of the record", None),
-        scalar("climatic_precession", "1", "eccentricity times the sine of the heliocentric longitude of perihelion, middle of the record", None),
-        scalar("co2", "1e-6", "mole fraction of carbon dioxide in dry air, middle of the record", Some("mole_fraction_of_carbon_dioxide_in_air")),
-        scalar("co2_forcing", "W m-2", "radiative forcing of carbon dioxide against its reference, middle of the record", None),
-        scalar("heat_residual", "J", "heat on the planet beyond what it held at the start and received since, end of the record", None),
-        scalar("heat_residual_over_throughput", "1", "the same over all sunlight absorbed since the start, end of the record", None),
-        scalar("heat_change", "J", "change of the heat on the planet since the start, end of the record", None),
+        scalar(
+            "eccentricity",
+            "1",
+            "eccentricity of the orbit, middle of the record",
+            None,
+        ),
+        scalar(
+            "obliquity",
+            "degree",
+            "obliquity of the ecliptic, middle of the record",
+            None,
+        ),
+        scalar(
+            "perihelion_longitude",
+            "degree",
+            "heliocentric longitude of perihelion from the moving March equinox (102.9 today; the sun is then seen 180 degrees further), middle of the record",
+            None,
+        ),
+        scalar(
+            "climatic_precession",
+            "1",
+            "eccentricity times the sine of the heliocentric longitude of perihelion, middle of the record",
+            None,
+        ),
+        scalar(
+            "co2",
+            "1e-6",
+            "mole fraction of carbon dioxide in dry air, middle of the record",
+            Some("mole_fraction_of_carbon_dioxide_in_air"),
+        ),
+        scalar(
+            "co2_forcing",
+            "W m-2",
+            "radiative forcing of carbon dioxide against its reference, middle of the record",
+            None,
+        ),
+        scalar(
+            "heat_residual",
+            "J",
+            "heat on the planet beyond what it held at the start and received since, end of the record",
+            None,
+        ),
+        scalar(
+            "heat_residual_over_throughput",
+            "1",
+            "the same over all sunlight absorbed since the start, end of the record",
+            None,
+        ),
+        scalar(
+            "heat_change",
+            "J",
+            "change of the heat on the planet since the start, end of the record",
+            None,
+        ),
     ]
 }
 
@@ -38,7 +88,11 @@ impl Records {
     pub(super) fn new(components: &[Box<dyn Component>]) -> Self {
         let mut year = Vec::new();
         components.iter().for_each(|c| c.record(&mut year));
-        Self { sums: vec![0.0; year.len()], year, count: 0 }
+        Self {
+            sums: vec![0.0; year.len()],
+            year,
+            count: 0,
+        }
     }
 
     /// Adds the year just run.
@@ -56,7 +110,11 @@ impl Records {
 
     /// Closes the record that ends with seasonal year `year`.
     pub(super) fn close(
-        &mut self, plan: &Plan, year: u64, drive: &Drive, ledger: &Ledger,
+        &mut self,
+        plan: &Plan,
+        year: u64,
+        drive: &Drive,
+        ledger: &Ledger,
     ) -> Result<Record, DriveError> {
         let age_bounds_kyr = plan.record_bounds_kyr(year);
         let age_kyr = 0.5 * (age_bounds_kyr[0] + age_bounds_kyr[1]);
@@ -77,6 +135,10 @@ impl Records {
         values.extend(self.sums.iter().map(|sum| sum * share));
         self.sums.fill(0.0);
         self.count = 0;
-        Ok(Record { age_kyr, age_bounds_kyr, values })
+        Ok(Record {
+            age_kyr,
+            age_bounds_kyr,
+            values,
+        })
     }
 }

@@ -61,14 +61,16 @@ impl Neg for Lanes {
 
 /// Outcome of comparing two [`Lanes`], element by element.
 #[derive(Clone, Copy, Debug)]
-pub struct Mask([bool; WIDTH]);
+pub struct Mask([u64; WIDTH]);
 
 impl Mask {
     /// `yes` where the comparison held, `no` elsewhere.
     #[inline(always)]
     pub fn select(self, yes: Lanes, no: Lanes) -> Lanes {
+        // Bits, not branches: this is the form the compiler turns into a vector blend.
         let m = self.0;
-        let pick = |i: usize| if m[i] { yes.0[i] } else { no.0[i] };
+        let pick =
+            |i: usize| f64::from_bits((yes.0[i].to_bits() & m[i]) | (no.0[i].to_bits() & !m[i]));
         Lanes([pick(0), pick(1), pick(2), pick(3)])
     }
 }
@@ -103,7 +105,13 @@ impl Lanes {
     #[inline(always)]
     pub fn at_least(self, other: Self) -> Mask {
         let (a, b) = (self.0, other.0);
-        Mask([a[0] >= b[0], a[1] >= b[1], a[2] >= b[2], a[3] >= b[3]])
+        let all = |held: bool| if held { u64::MAX } else { 0 };
+        Mask([
+            all(a[0] >= b[0]),
+            all(a[1] >= b[1]),
+            all(a[2] >= b[2]),
+            all(a[3] >= b[3]),
+        ])
     }
 
     /// The larger of two elements. A NaN in `self` stays, so that a broken state is seen.
@@ -175,7 +183,10 @@ impl Rows {
     /// A field holding `values`, whose number is rounded down to a multiple of four.
     pub fn from_slice(values: &[f64]) -> Self {
         let mut rows = Self::new(values.len(), 0.0);
-        rows.flat_mut().iter_mut().zip(values).for_each(|(to, from)| *to = *from);
+        rows.flat_mut()
+            .iter_mut()
+            .zip(values)
+            .for_each(|(to, from)| *to = *from);
         rows
     }
 

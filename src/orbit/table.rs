@@ -78,6 +78,8 @@ struct Season {
 struct EdgeBlock {
     /// Sine of latitude.
     x: Lanes,
+    /// Hemisphere: 1 north and on the equator, -1 south.
+    side: Lanes,
     /// 1 - x^2.
     cos_square: Lanes,
     /// 1 / sqrt(1 - x^2); 0 at a pole, where it only multiplies R = 0.
@@ -149,7 +151,9 @@ impl InsolationTable {
             }
         }
         let share = 1.0 / self.steps() as f64;
-        mean.iter_mut().for_each(|sum| *sum *= share);
+        for sum in &mut mean {
+            *sum *= share;
+        }
         mean
     }
 
@@ -214,6 +218,7 @@ fn edge_block(edges: &[f64]) -> EdgeBlock {
     };
     EdgeBlock {
         x: Lanes(x),
+        side: Lanes(x.map(|x| if x < 0.0 { -1.0 } else { 1.0 })),
         cos_square: Lanes(cos_square),
         inverse_cos: Lanes(cos_square.map(inverse)),
     }
@@ -234,13 +239,13 @@ fn primitives(edge: &EdgeBlock, season: Season, inverse_cosine: f64) -> (Lanes, 
     let tilt = edge.inverse_cos * s.abs();
     let sine = root * edge.inverse_cos;
 
-    let polar = Lanes::splat(FRAC_PI_2) - arc_cosine(along.min(one), root * inverse_cosine);
+    // Arcs for the hemisphere of the edge and of the Sun: signs instead of branches.
+    let quarter = Lanes::splat(FRAC_PI_2);
+    let polar = arc_cosine(along.min(one), root * inverse_cosine);
     let day = arc_cosine((along * tilt).min(one), sine * inverse_cosine);
     let turn = arc_cosine(tilt.min(one), sine);
-
-    let arc = x.at_least(zero).select(polar, -polar);
-    let same_side = (x * sign_s).at_least(zero);
-    let half_day = same_side.select(Lanes::splat(PI) - day, day);
+    let arc = edge.side * (quarter - polar);
+    let half_day = quarter + edge.side * sign_s * (quarter - day);
 
     let first = (arc + x * root - edge.cos_square * half_day * s) * 0.5;
     let half_c2 = 0.5 * c * c;

@@ -70,6 +70,38 @@ fn analytic_band_means_agree_with_quadrature_in_latitude() {
 }
 
 #[test]
+fn analytic_thin_bands_agree_with_the_closed_forms_at_a_point() {
+    // Curvature at the terminator leaves 1.1e-6 W m-2; it falls with the square of the width.
+    let width = 1e-5;
+    let places: Vec<f64> = (-97..=97).map(|i| f64::from(i) / 98.0).collect();
+    let thin: Vec<f64> = places
+        .iter()
+        .flat_map(|x| [x - width / 2.0, x + width / 2.0])
+        .collect();
+    let elements = orbit(0.04, 23.9, 250.0);
+    let mut table = InsolationTable::new(&thin, 24).unwrap();
+    table.update(&elements, 1361.0, EQUINOX);
+    for step in 0..24 {
+        let years = f64::from(step + 1) / 24.0 - EQUINOX;
+        let longitude = crate::orbit::kepler::sun_longitude_deg(&elements, years);
+        for (place, x) in places.iter().enumerate() {
+            let step = usize::try_from(step).unwrap();
+            let at = step * table.bands() + 2 * place;
+            let latitude = x.asin().to_degrees();
+            let point =
+                crate::orbit::insolation::daily_mean_w_m2(&elements, 1361.0, latitude, longitude);
+            let error = table.daily_mean_w_m2[at] - point;
+            assert!(error.abs() < 2e-6, "step {step} x {x}: {error:e}");
+            let [sunlight, squares] = half_day_integrals(*x, table.seasons[step]);
+            if point > 1.0 {
+                let error = table.zenith_cosine[at] - squares / sunlight;
+                assert!(error.abs() < 1e-6, "step {step} x {x}: {error:e}");
+            }
+        }
+    }
+}
+
+#[test]
 fn conserves_the_flux_on_the_disc_at_every_step_and_over_the_year() {
     for elements in [
         orbit(0.0, 23.4, 0.0),

@@ -121,22 +121,47 @@ impl Exchange {
 
     fn fields(&mut self, visit: &mut dyn FnMut(&mut [f64])) {
         let Self {
-            mixed_layer_temperature_c, sinking_volume_m3, sinking_heat_m3_c,
-            deep_sinking_temperature_c, gross_sinking_loss_w, net_sinking_loss_w,
-            atmosphere_transport_w, atmosphere_energy_input_w_m2, land_air_2m_c, ocean_air_2m_c,
-            column_heat_w, upwelling_m3_s, deep_sinking_m3_s, subtropical_sinking_m3_s,
-            column_area_share, column_depth_m, column_temperature_c,
+            mixed_layer_temperature_c,
+            sinking_volume_m3,
+            sinking_heat_m3_c,
+            deep_sinking_temperature_c,
+            gross_sinking_loss_w,
+            net_sinking_loss_w,
+            atmosphere_transport_w,
+            atmosphere_energy_input_w_m2,
+            land_air_2m_c,
+            ocean_air_2m_c,
+            column_heat_w,
+            upwelling_m3_s,
+            deep_sinking_m3_s,
+            subtropical_sinking_m3_s,
+            column_area_share,
+            column_depth_m,
+            column_temperature_c,
         } = self;
         for field in [
-            mixed_layer_temperature_c, sinking_volume_m3, sinking_heat_m3_c,
-            atmosphere_transport_w, atmosphere_energy_input_w_m2, land_air_2m_c, ocean_air_2m_c,
-            column_heat_w, upwelling_m3_s, column_area_share, column_depth_m, column_temperature_c,
+            mixed_layer_temperature_c,
+            sinking_volume_m3,
+            sinking_heat_m3_c,
+            atmosphere_transport_w,
+            atmosphere_energy_input_w_m2,
+            land_air_2m_c,
+            ocean_air_2m_c,
+            column_heat_w,
+            upwelling_m3_s,
+            column_area_share,
+            column_depth_m,
+            column_temperature_c,
         ] {
             visit(field);
         }
         visit(gross_sinking_loss_w);
         visit(net_sinking_loss_w);
-        for number in [deep_sinking_temperature_c, deep_sinking_m3_s, subtropical_sinking_m3_s] {
+        for number in [
+            deep_sinking_temperature_c,
+            deep_sinking_m3_s,
+            subtropical_sinking_m3_s,
+        ] {
             visit(std::slice::from_mut(number));
         }
     }

@@ -82,7 +82,11 @@ pub trait Build: Component + Sized + 'static {
     ///
     /// # Errors
     /// Every parameter out of range, with keys below the component's own table.
-    fn build(params: &Self::Params, setting: &Setting, exchange: &mut Exchange) -> Result<Self, Vec<RangeError>>;
+    fn build(
+        params: &Self::Params,
+        setting: &Setting,
+        exchange: &mut Exchange,
+    ) -> Result<Self, Vec<RangeError>>;
 }
 
 /// Declares the components: their table in the configuration, and the order in which they are

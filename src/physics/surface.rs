@@ -29,16 +29,29 @@ impl SurfaceSpec {
     pub fn build(&self, bands: &LatitudeBands) -> Result<Surface, Vec<RangeError>> {
         self.check()?;
         let fraction = bands.remap_equal_latitude(&self.land_fraction);
-        let weighted: Vec<f64> =
-            self.land_fraction.iter().zip(&self.land_elevation_m).map(|(f, z)| f * z).collect();
+        let weighted: Vec<f64> = self
+            .land_fraction
+            .iter()
+            .zip(&self.land_elevation_m)
+            .map(|(f, z)| f * z)
+            .collect();
         let height = bands.remap_equal_latitude(&weighted);
         let centre = bands.centre_deg();
         let land_fraction: Vec<f64> = fraction
             .iter()
             .zip(centre)
-            .map(|(f, lat)| if *lat < self.all_land_south_of_deg { 1.0 } else { f.min(1.0) })
+            .map(|(f, lat)| {
+                if *lat < self.all_land_south_of_deg {
+                    1.0
+                } else {
+                    f.min(1.0)
+                }
+            })
             .collect();
-        let ocean_area_m2 = land_fraction.iter().zip(bands.area_m2()).map(|(f, a)| (1.0 - f) * a);
+        let ocean_area_m2 = land_fraction
+            .iter()
+            .zip(bands.area_m2())
+            .map(|(f, a)| (1.0 - f) * a);
         let share = |lat: &f64| f64::from(u8::from(*lat < self.ice_sheet_south_of_deg));
         Ok(Surface {
             land_elevation_m: fraction
@@ -58,19 +71,37 @@ impl SurfaceSpec {
         let (fractions, heights) = (self.land_fraction.len(), self.land_elevation_m.len());
         let limit = "needs as many elevations as land fractions, at least two";
         let fits = fractions == heights && fractions >= 2;
-        r.require("surface.land_elevation_m (number of values)", heights as f64, fits, limit);
+        r.require(
+            "surface.land_elevation_m (number of values)",
+            heights as f64,
+            fits,
+            limit,
+        );
         for &fraction in &self.land_fraction {
             r.fraction("surface.land_fraction", fraction);
         }
         for &height in &self.land_elevation_m {
             let limit = "must lie between -500 and 9000 m";
-            r.require("surface.land_elevation_m", height, (-500.0..=9000.0).contains(&height), limit);
+            r.require(
+                "surface.land_elevation_m",
+                height,
+                (-500.0..=9000.0).contains(&height),
+                limit,
+            );
         }
         let ocean = self.land_fraction.iter().any(|f| *f < 1.0);
-        r.require("surface.land_fraction (largest sea)", 0.0, ocean || fractions < 2, "must leave some ocean");
+        r.require(
+            "surface.land_fraction (largest sea)",
+            0.0,
+            ocean || fractions < 2,
+            "must leave some ocean",
+        );
         for (key, value) in [
             ("surface.all_land_south_of_deg", self.all_land_south_of_deg),
-            ("surface.ice_sheet_south_of_deg", self.ice_sheet_south_of_deg),
+            (
+                "surface.ice_sheet_south_of_deg",
+                self.ice_sheet_south_of_deg,
+            ),
         ] {
             let limit = "must be a latitude from -90 (nowhere) to 0 degrees north";
             r.require(key, value, (-90.0..=0.0).contains(&value), limit);

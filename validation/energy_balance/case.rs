@@ -1,6 +1,6 @@
 //! The energy-balance kernel against closed forms; see the README of this folder.
 
-use super::set_up::{legendre, mean_legendre, one_surface, planet, run, sunlight};
+use crate::energy_balance_set_up::{legendre, mean_legendre, one_surface, planet, run, sunlight};
 use orbicline::grid::latitude::Spacing;
 use orbicline::physics::Setting;
 use orbicline::physics::energy_balance::EnergyBalance;
@@ -23,7 +23,10 @@ fn analytic_two_mode_solution_is_exact_on_bands_equal_in_area() {
         let (t0, t2) = (16.198_205_741_6, -18.904_174_005_7);
         for (x, t) in setting.surface.bands.edge_sine().windows(2).zip(&air) {
             let exact = t0 + t2 * mean_legendre(2, x[0], x[1]);
-            assert!((t - exact).abs() < 1e-9, "{bands} bands: {t} against {exact}");
+            assert!(
+                (t - exact).abs() < 1e-9,
+                "{bands} bands: {t} against {exact}"
+            );
         }
     }
 }
@@ -32,9 +35,13 @@ fn analytic_two_mode_solution_is_exact_on_bands_equal_in_area() {
 fn converges_second_order_in_latitude_bands() {
     let mut p = one_surface();
     p.albedo = Albedo::IceLine {
-        free: 0.303, free_second_legendre: 0.0779, ice: 0.62, edge: IceEdge::Prescribed { sine: 1.0 },
+        free: 0.303,
+        free_second_legendre: 0.0779,
+        ice: 0.62,
+        edge: IceEdge::Prescribed { sine: 1.0 },
     };
-    let exact = |x: f64| 17.408_072_88 - 22.729_902_18 * legendre(2, x) + 0.431_464_61 * legendre(4, x);
+    let exact =
+        |x: f64| 17.408_072_88 - 22.729_902_18 * legendre(2, x) + 0.431_464_61 * legendre(4, x);
     let errors: Vec<f64> = [36, 72, 144, 288]
         .iter()
         .map(|&bands| {

@@ -25,7 +25,10 @@ pub fn planet(bands: usize, spacing: Spacing, steps_per_year: usize, land: f64) 
         ocean_area_m2: bands.area_m2().iter().map(|a| a * (1.0 - land)).collect(),
         bands,
     };
-    Setting { surface, months: MonthWeights::new(steps_per_year).unwrap() }
+    Setting {
+        surface,
+        months: MonthWeights::new(steps_per_year).unwrap(),
+    }
 }
 
 /// Mean over a band of the n-th Legendre polynomial, from (2n+1) P_n = P'_{n+1} - P'_{n-1}.
@@ -44,7 +47,10 @@ pub fn legendre(n: usize, x: f64) -> f64 {
         return below;
     }
     for k in 1..n {
-        (below, here) = (here, ((2 * k + 1) as f64 * x * here - k as f64 * below) / (k + 1) as f64);
+        (below, here) = (
+            here,
+            ((2 * k + 1) as f64 * x * here - k as f64 * below) / (k + 1) as f64,
+        );
     }
     here
 }
@@ -61,7 +67,11 @@ pub fn sunlight(setting: &Setting, modes: &[usize], share: impl Fn(usize, f64) -
             edges
                 .windows(2)
                 .map(|x| {
-                    modes.iter().zip(&coefficients).map(|(&n, c)| c * mean_legendre(n, x[0], x[1])).sum()
+                    modes
+                        .iter()
+                        .zip(&coefficients)
+                        .map(|(&n, c)| c * mean_legendre(n, x[0], x[1]))
+                        .sum()
                 })
                 .collect::<Vec<f64>>()
         })
@@ -69,7 +79,12 @@ pub fn sunlight(setting: &Setting, modes: &[usize], share: impl Fn(usize, f64) -
 }
 
 /// Runs `years` years of the same sunlight.
-pub fn run(model: &mut EnergyBalance, setting: &Setting, sunlight: &[f64], years: usize) -> Exchange {
+pub fn run(
+    model: &mut EnergyBalance,
+    setting: &Setting,
+    sunlight: &[f64],
+    years: usize,
+) -> Exchange {
     let mut exchange = Exchange::new(setting.surface.bands.len());
     run_on(model, &mut exchange, sunlight, years);
     exchange

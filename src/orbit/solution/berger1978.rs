@@ -10,7 +10,7 @@
 //! Validity: within 1 Myr of 1950. Against a modern numerical solution (Laskar et al. 2004,
 //! A&A 428:261) the eccentricity is off by at most 0.0051 and the obliquity by 0.12 degrees in the
 //! last 300 kyr, by 0.0097 and 0.29 degrees before that; further back the series is useless.
-//! Source: Berger 1978, J. Atmos. Sci. 35:2362; terms in [`super::berger1978_terms`].
+//! Source: Berger 1978, J. Atmos. Sci. 35:2362; terms in `berger1978_terms.rs`.
 
 use super::berger1978_terms::{ECCENTRICITY_PERIHELION, GENERAL_PRECESSION, OBLIQUITY, Term};
 

@@ -3,7 +3,7 @@
 //! What: [`OrbitSpec`] says in a configuration file where eccentricity, obliquity and perihelion
 //! come from; [`Orbit::build`] checks it, and [`Orbit::at`] gives the elements. So one element can
 //! follow a solution while another stands still.
-//! Equations: in [`berger1978`] and [`idealised`].
+//! Equations: in [`berger1978`] and, for made-up courses, in `idealised.rs`.
 //! Units: ages in kyr before 1950 CE, positive into the past; degrees.
 //! Numerics: closed forms, no state.
 

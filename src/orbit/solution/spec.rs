@@ -3,7 +3,7 @@
 //! What: one source for each element, tagged by `kind`; the check of every number; the value of
 //! each source at an age.
 //! Units: in the names of the keys. Ages in kyr before 1950 CE.
-//! Numerics: none; see [`super::berger1978`] and [`super::idealised`].
+//! Numerics: none; see [`super::berger1978`] and `idealised.rs`.
 
 use serde::{Deserialize, Serialize};
 

@@ -23,7 +23,10 @@ use std::f64::consts::PI;
 #[derive(Clone, Debug)]
 pub(super) enum Transport {
     /// Diffusion with one conductance per edge (W K-1) and the moisture factor (Lv/cp) r (K).
-    Diffusion { conductance_w_k: Vec<f64>, moisture_k: f64 },
+    Diffusion {
+        conductance_w_k: Vec<f64>,
+        moisture_k: f64,
+    },
     /// Relaxation to the global mean, W m-2 K-1.
     MeanRelaxation { rate_w_m2_k: f64 },
 }
@@ -31,7 +34,11 @@ pub(super) enum Transport {
 impl Transport {
     pub(super) fn new(p: &params::Transport, bands: &LatitudeBands) -> Self {
         match *p {
-            params::Transport::Diffusion { diffusivity_w_m2_k, second_legendre_share, relative_humidity } => {
+            params::Transport::Diffusion {
+                diffusivity_w_m2_k,
+                second_legendre_share,
+                relative_humidity,
+            } => {
                 let circle = 2.0 * PI * EARTH_RADIUS_M * EARTH_RADIUS_M * diffusivity_w_m2_k;
                 let conductance_w_k = bands
                     .gradient_weight()
@@ -40,9 +47,14 @@ impl Transport {
                     .map(|(w, x)| circle * w * (1.0 + second_legendre_share * (1.5 * x * x - 0.5)))
                     .collect();
                 let moisture_k = LATENT_OVER_SPECIFIC_HEAT_K * relative_humidity;
-                Self::Diffusion { conductance_w_k, moisture_k }
+                Self::Diffusion {
+                    conductance_w_k,
+                    moisture_k,
+                }
             }
-            params::Transport::MeanRelaxation { rate_w_m2_k } => Self::MeanRelaxation { rate_w_m2_k },
+            params::Transport::MeanRelaxation { rate_w_m2_k } => {
+                Self::MeanRelaxation { rate_w_m2_k }
+            }
         }
     }
 
@@ -51,7 +63,10 @@ impl Transport {
     #[inline(always)]
     pub(super) fn solve(&self, c: &Coefficients, w: &mut Work, edge_flux_w: &mut [f64]) {
         match self {
-            Self::Diffusion { conductance_w_k, moisture_k } => {
+            Self::Diffusion {
+                conductance_w_k,
+                moisture_k,
+            } => {
                 diffuse(c, w, conductance_w_k, *moisture_k, edge_flux_w);
             }
             Self::MeanRelaxation { rate_w_m2_k } => relax(c, w, *rate_w_m2_k, edge_flux_w),
@@ -63,7 +78,11 @@ impl Transport {
 #[inline(always)]
 pub(super) fn assemble(c: &Coefficients, w: &mut Work, greenhouse: f64) {
     let storage = c.air_capacity / c.gamma_s;
-    let greenhouse = if c.air_emission_slope > 0.0 { greenhouse } else { 0.0 };
+    let greenhouse = if c.air_emission_slope > 0.0 {
+        greenhouse
+    } else {
+        0.0
+    };
     for r in 0..w.air.rows() {
         let (land, ocean) = (c.land.at(r), c.ocean.at(r));
         let per_land = land / w.land_newton.at(r);
@@ -97,7 +116,8 @@ fn diffuse(c: &Coefficients, w: &mut Work, conductance: &[f64], moisture_k: f64,
     for r in 0..w.air.rows() {
         let energy = w.air.at(r) + w.air_humidity.at(r) * moisture_k;
         w.static_energy.set(r, energy);
-        w.static_energy_slope.set(r, w.air_humidity_slope.at(r) * moisture_k + 1.0);
+        w.static_energy_slope
+            .set(r, w.air_humidity_slope.at(r) * moisture_k + 1.0);
     }
     let conductance = &conductance[..=n];
     edge_fluxes(conductance, w.static_energy.flat(), edge);
@@ -128,7 +148,10 @@ fn system(c: &Coefficients, w: &mut Work, conductance: &[f64], edge: &[f64]) {
     let slope = &w.static_energy_slope.flat()[..n];
     let area = &c.area_m2.flat()[..n];
     let (lower, upper) = (&mut w.lower.flat_mut()[..n], &mut w.upper.flat_mut()[..n]);
-    let (diagonal, rhs) = (&mut w.diagonal.flat_mut()[..n], &mut w.air_increment.flat_mut()[..n]);
+    let (diagonal, rhs) = (
+        &mut w.diagonal.flat_mut()[..n],
+        &mut w.air_increment.flat_mut()[..n],
+    );
     for i in 0..n {
         diagonal[i] = diagonal[i] * area[i] + (conductance[i] + conductance[i + 1]) * slope[i];
         rhs[i] = rhs[i] * area[i] + edge[i] - edge[i + 1];

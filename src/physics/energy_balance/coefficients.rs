@@ -10,8 +10,8 @@ use crate::numerics::tridiagonal::Factored;
 use crate::physics::exchange::Surface;
 use crate::physics::{Setting, saturation::saturation_humidity, smooth_step};
 use crate::units::{
-    CELSIUS_ZERO_K, EARTH_RADIUS_M, SEA_WATER_FREEZING_C,
-    SEA_WATER_HEAT_CAPACITY_J_M3_K, YEAR_SECONDS,
+    CELSIUS_ZERO_K, EARTH_RADIUS_M, SEA_WATER_FREEZING_C, SEA_WATER_HEAT_CAPACITY_J_M3_K,
+    YEAR_SECONDS,
 };
 use std::f64::consts::PI;
 
@@ -104,15 +104,27 @@ impl Coefficients {
         let n = bands.len();
         let step_s = YEAR_SECONDS / steps as f64;
         let gamma_s = 6.0 * step_s / 11.0;
-        let ocean_flag: Vec<f64> =
-            surface.ocean_area_m2.iter().map(|a| f64::from(u8::from(*a > 0.0))).collect();
-        let ocean: Vec<f64> =
-            surface.land_fraction.iter().zip(&ocean_flag).map(|(f, o)| (1.0 - f) * o).collect();
+        let ocean_flag: Vec<f64> = surface
+            .ocean_area_m2
+            .iter()
+            .map(|a| f64::from(u8::from(*a > 0.0)))
+            .collect();
+        let ocean: Vec<f64> = surface
+            .land_fraction
+            .iter()
+            .zip(&ocean_flag)
+            .map(|(f, o)| (1.0 - f) * o)
+            .collect();
         let depth: Vec<f64> = mixed_layer_depth(p, bands.centre_deg());
-        let capacity: Vec<f64> =
-            depth.iter().map(|d| SEA_WATER_HEAT_CAPACITY_J_M3_K * d).collect();
-        let elevation: Vec<f64> =
-            surface.land_elevation_m.iter().map(|z| p.lapse_rate_k_m * z).collect();
+        let capacity: Vec<f64> = depth
+            .iter()
+            .map(|d| SEA_WATER_HEAT_CAPACITY_J_M3_K * d)
+            .collect();
+        let elevation: Vec<f64> = surface
+            .land_elevation_m
+            .iter()
+            .map(|z| p.lapse_rate_k_m * z)
+            .collect();
         let (sub_capacity, sub_exchange) = seasonal_layer(p, gamma_s);
         let gyre_conductance = gyre(p, surface);
         let gyre_factors = gyre_matrix(surface, &capacity, &gyre_conductance, gamma_s);
@@ -212,8 +224,16 @@ impl Optics {
         let bands = &surface.bands;
         match &p.albedo {
             Albedo::Surfaces {
-                water, water_sine, water_second_legendre, water_zenith, land_excess, snow, sea_ice,
-                ice_sheet, snow_temperature_c, snow_width_k,
+                water,
+                water_sine,
+                water_second_legendre,
+                water_zenith,
+                land_excess,
+                snow,
+                sea_ice,
+                ice_sheet,
+                snow_temperature_c,
+                snow_width_k,
             } => {
                 let by_band: Vec<f64> = bands
                     .mean_sine()
@@ -249,7 +269,10 @@ impl Optics {
 }
 
 fn inverse(values: &[f64]) -> Vec<f64> {
-    values.iter().map(|v| if *v > 0.0 { 1.0 / v } else { 0.0 }).collect()
+    values
+        .iter()
+        .map(|v| if *v > 0.0 { 1.0 / v } else { 0.0 })
+        .collect()
 }
 
 fn window(surface: &Surface, shape: impl Fn(f64) -> f64) -> Rows {
@@ -266,7 +289,9 @@ fn mixed_layer_depth(p: &Params, latitude_deg: &[f64]) -> Vec<f64> {
     let m = &p.mixed_layer;
     latitude_deg
         .iter()
-        .map(|lat| m.depth_scale * crate::numerics::interpolate::linear(&m.latitude_deg, &m.depth_m, *lat))
+        .map(|lat| {
+            m.depth_scale * crate::numerics::interpolate::linear(&m.latitude_deg, &m.depth_m, *lat)
+        })
         .collect()
 }
 
@@ -281,10 +306,22 @@ fn seasonal_layer(p: &Params, gamma_s: f64) -> (f64, f64) {
 fn gyre(p: &Params, surface: &Surface) -> Vec<f64> {
     let n = surface.bands.len();
     let circle = 2.0 * PI * EARTH_RADIUS_M * EARTH_RADIUS_M * p.gyre_diffusivity_w_m2_k;
-    let ocean = |i: usize| if surface.ocean_area_m2[i] > 0.0 { 1.0 - surface.land_fraction[i] } else { 0.0 };
+    let ocean = |i: usize| {
+        if surface.ocean_area_m2[i] > 0.0 {
+            1.0 - surface.land_fraction[i]
+        } else {
+            0.0
+        }
+    };
     let weight = surface.bands.gradient_weight();
     (0..=n)
-        .map(|j| if j == 0 || j == n { 0.0 } else { circle * weight[j] * ocean(j - 1).min(ocean(j)) })
+        .map(|j| {
+            if j == 0 || j == n {
+                0.0
+            } else {
+                circle * weight[j] * ocean(j - 1).min(ocean(j))
+            }
+        })
         .collect()
 }
 

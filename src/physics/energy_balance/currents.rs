@@ -41,7 +41,12 @@ const LEAST_OPEN: f64 = 1.0e-9;
 /// the edges in `edge_flux_w` (W, northward, `bands + 1` values). Returns the temperature sum of
 /// the deep sinking, m3 s-1 degC.
 #[inline(always)]
-pub(super) fn transport(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>, edge_flux_w: &mut [f64]) -> f64 {
+pub(super) fn transport(
+    c: &Coefficients,
+    w: &mut Work,
+    column: ColumnSide<'_>,
+    edge_flux_w: &mut [f64],
+) -> f64 {
     let deep_heat = sinking_rates(c, w, column);
     advect(c, w, column, edge_flux_w);
     for r in 0..w.ocean_transport.rows() {
@@ -103,7 +108,11 @@ fn advect(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>, edge_flux_w: &
     edge[n] = 0.0;
     for j in 1..n {
         flow += upwelling[j - 1] - sinking[j - 1];
-        let carried = if flow > 0.0 { temperature[j - 1] } else { temperature[j] };
+        let carried = if flow > 0.0 {
+            temperature[j - 1]
+        } else {
+            temperature[j]
+        };
         edge[j] = SEA_WATER_HEAT_CAPACITY_J_M3_K * (flow * carried)
             - conductance[j] * (temperature[j] - temperature[j - 1]);
     }
@@ -129,7 +138,11 @@ fn correct_gyres(c: &Coefficients, w: &mut Work, edge_flux_w: &mut [f64]) {
     let brought = &mut w.ocean_transport.flat_mut()[..n];
     let mut below = 0.0;
     for i in 0..n {
-        let above = if i + 1 < n { -conductance[i + 1] * (delta[i + 1] - delta[i]) } else { 0.0 };
+        let above = if i + 1 < n {
+            -conductance[i + 1] * (delta[i + 1] - delta[i])
+        } else {
+            0.0
+        };
         let gained = (below - above) * area[i];
         residual[i] += gained;
         brought[i] += gained;

@@ -23,14 +23,26 @@ pub(super) struct IceLine {
 impl IceLine {
     /// The rule, when the albedo is of this kind.
     pub(super) fn new(albedo: &Albedo, bands: &LatitudeBands) -> Option<Self> {
-        let Albedo::IceLine { free, free_second_legendre, ice, edge } = albedo else { return None };
+        let Albedo::IceLine {
+            free,
+            free_second_legendre,
+            ice,
+            edge,
+        } = albedo
+        else {
+            return None;
+        };
         Some(Self {
             free: *free,
             free_second_legendre: *free_second_legendre,
             ice: *ice,
             edge: edge.clone(),
             edge_sine: bands.edge_sine().to_vec(),
-            centre_sine: bands.centre_deg().iter().map(|d| d.to_radians().sin()).collect(),
+            centre_sine: bands
+                .centre_deg()
+                .iter()
+                .map(|d| d.to_radians().sin())
+                .collect(),
         })
     }
 
@@ -63,7 +75,10 @@ impl IceLine {
                 let half = air_c.len() / 2;
                 let south: Vec<usize> = (0..half).rev().collect();
                 let north: Vec<usize> = (half..air_c.len()).collect();
-                [self.crossing(air_c, &south, threshold_c), self.crossing(air_c, &north, threshold_c)]
+                [
+                    self.crossing(air_c, &south, threshold_c),
+                    self.crossing(air_c, &north, threshold_c),
+                ]
             }
         }
     }
@@ -76,18 +91,26 @@ impl IceLine {
             let (inner, outer) = (air_c[pair[0]], air_c[pair[1]]);
             if outer < threshold_c {
                 let share = (inner - threshold_c) / (inner - outer);
-                let (a, b) = (self.centre_sine[pair[0]].abs(), self.centre_sine[pair[1]].abs());
+                let (a, b) = (
+                    self.centre_sine[pair[0]].abs(),
+                    self.centre_sine[pair[1]].abs(),
+                );
                 return a + share * (b - a);
             }
         }
         // Still warm at the last centre: extrapolate with the last slope, so that the edge
         // reaches the pole continuously.
-        let [.., before, last] = outward else { return 1.0 };
+        let [.., before, last] = outward else {
+            return 1.0;
+        };
         let slope = air_c[*before] - air_c[*last];
         if slope <= 0.0 {
             return 1.0;
         }
-        let (a, b) = (self.centre_sine[*before].abs(), self.centre_sine[*last].abs());
+        let (a, b) = (
+            self.centre_sine[*before].abs(),
+            self.centre_sine[*last].abs(),
+        );
         (b + (b - a) * (air_c[*last] - threshold_c) / slope).min(1.0)
     }
 }

@@ -94,15 +94,25 @@ impl Means {
     /// Forgets last year, except the instant it ended with.
     pub(super) fn begin_year(&mut self, c: &Coefficients) {
         for node in &mut self.monthly {
-            node.fields_mut().into_iter().for_each(|rows| rows.fill(0.0));
+            node.fields_mut()
+                .into_iter()
+                .for_each(|rows| rows.fill(0.0));
         }
         for rows in [
-            &mut self.absorbed_air, &mut self.absorbed_land, &mut self.absorbed_ocean,
-            &mut self.emitted, &mut self.air_input, &mut self.ocean_gain, &mut self.gross_loss,
+            &mut self.absorbed_air,
+            &mut self.absorbed_land,
+            &mut self.absorbed_ocean,
+            &mut self.emitted,
+            &mut self.air_input,
+            &mut self.ocean_gain,
+            &mut self.gross_loss,
         ] {
             rows.fill(0.0);
         }
-        self.sunk.iter_mut().chain(&mut self.sunk_heat).for_each(|rows| rows.fill(0.0));
+        self.sunk
+            .iter_mut()
+            .chain(&mut self.sunk_heat)
+            .for_each(|rows| rows.fill(0.0));
         self.air_flux_w.fill(0.0);
         self.ocean_flux_w.fill(0.0);
         self.deep_heat = 0.0;
@@ -156,6 +166,10 @@ pub(super) struct EdgeFluxes {
 
 impl EdgeFluxes {
     pub(super) fn new(bands: usize) -> Self {
-        Self { air_w: vec![0.0; bands + 1], ocean_w: vec![0.0; bands + 1], deep_heat: 0.0 }
+        Self {
+            air_w: vec![0.0; bands + 1],
+            ocean_w: vec![0.0; bands + 1],
+            deep_heat: 0.0,
+        }
     }
 }

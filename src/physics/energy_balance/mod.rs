@@ -72,10 +72,26 @@ impl EnergyBalance {
         let coefficients = Coefficients::new(p, setting);
         let state = State::new(&coefficients, &surface.bands.mean_sine());
         let mut means = Means::new(n);
-        means.node.air.flat_mut().copy_from_slice(state.air.now.flat());
-        means.node.land.flat_mut().copy_from_slice(state.land.now.flat());
-        means.node.water.flat_mut().copy_from_slice(state.sub.now.flat());
-        means.node.ocean_surface.flat_mut().copy_from_slice(state.sub.now.flat());
+        means
+            .node
+            .air
+            .flat_mut()
+            .copy_from_slice(state.air.now.flat());
+        means
+            .node
+            .land
+            .flat_mut()
+            .copy_from_slice(state.land.now.flat());
+        means
+            .node
+            .water
+            .flat_mut()
+            .copy_from_slice(state.sub.now.flat());
+        means
+            .node
+            .ocean_surface
+            .flat_mut()
+            .copy_from_slice(state.sub.now.flat());
         Ok(Self {
             transport: Transport::new(&p.transport, &surface.bands),
             ice_line: IceLine::new(&p.albedo, &surface.bands),
@@ -115,7 +131,9 @@ impl EnergyBalance {
     /// sin(latitude) of the ice edge in the southern and northern hemisphere, for an ice-line
     /// albedo; `None` otherwise.
     pub fn ice_edge_sine(&self) -> Option<[f64; 2]> {
-        self.ice_line.as_ref().map(|line| line.edges(self.state.air.now.flat()))
+        self.ice_line
+            .as_ref()
+            .map(|line| line.edges(self.state.air.now.flat()))
     }
 
     /// Heat held by air, land and ocean layers, J, in the combination the formula conserves.
@@ -127,7 +145,11 @@ impl EnergyBalance {
 impl Build for EnergyBalance {
     type Params = Params;
 
-    fn build(params: &Params, setting: &Setting, _: &mut Exchange) -> Result<Self, Vec<RangeError>> {
+    fn build(
+        params: &Params,
+        setting: &Setting,
+        _: &mut Exchange,
+    ) -> Result<Self, Vec<RangeError>> {
         Self::new(params, setting)
     }
 }
@@ -146,8 +168,16 @@ impl Kernel for Year<'_> {
 
     #[inline(always)]
     fn run(self) {
-        let EnergyBalance { coefficients: c, transport, ice_line, state, work, edges, means, .. } =
-            self.model;
+        let EnergyBalance {
+            coefficients: c,
+            transport,
+            ice_line,
+            state,
+            work,
+            edges,
+            means,
+            ..
+        } = self.model;
         let n = c.bands;
         means.begin_year(c);
         for k in 0..c.steps {
@@ -165,7 +195,11 @@ impl Kernel for Year<'_> {
             air::assemble(c, work, self.greenhouse);
             transport.solve(c, work, &mut edges.air_w);
             update::advance(c, state, work, means, self.greenhouse);
-            means.node.insolation.flat_mut().copy_from_slice(sun.insolation);
+            means
+                .node
+                .insolation
+                .flat_mut()
+                .copy_from_slice(sun.insolation);
             means.count_step(c, work, k, edges);
             means.count_node(c, k + 1);
         }
@@ -177,7 +211,11 @@ impl Component for EnergyBalance {
         "energy_balance"
     }
 
-    fn advance(&mut self, forcing: &YearForcing<'_>, exchange: &mut Exchange) -> Result<(), PhysicsError> {
+    fn advance(
+        &mut self,
+        forcing: &YearForcing<'_>,
+        exchange: &mut Exchange,
+    ) -> Result<(), PhysicsError> {
         let column = ColumnSide {
             heat_w: &exchange.column_heat_w,
             upwelling_m3_s: &exchange.upwelling_m3_s,
@@ -194,9 +232,19 @@ impl Component for EnergyBalance {
         if let Some((variable, band)) = self.state.broken() {
             let latitude = self.surface.bands.centre_deg()[band];
             let place = format!("the band at {latitude} degrees north");
-            return Err(PhysicsError::NotFinite { component: self.name(), variable, place });
+            return Err(PhysicsError::NotFinite {
+                component: self.name(),
+                variable,
+                place,
+            });
         }
-        self.report.close_year(&self.coefficients, &self.surface, &self.means, &self.state, exchange);
+        self.report.close_year(
+            &self.coefficients,
+            &self.surface,
+            &self.means,
+            &self.state,
+            exchange,
+        );
         Ok(())
     }
 
@@ -220,7 +268,11 @@ impl Component for EnergyBalance {
         let n = self.coefficients.bands;
         let mut values = Vec::with_capacity(State::len(n) + FIELDS * n);
         self.state.save(&mut values);
-        self.means.node.fields().into_iter().for_each(|rows| values.extend_from_slice(rows.flat()));
+        self.means
+            .node
+            .fields()
+            .into_iter()
+            .for_each(|rows| values.extend_from_slice(rows.flat()));
         values
     }
 
@@ -229,11 +281,21 @@ impl Component for EnergyBalance {
         let needed = State::len(n) + FIELDS * n;
         if state.len() != needed {
             let found = state.len();
-            return Err(PhysicsError::RestartLength { component: self.name(), found, needed });
+            return Err(PhysicsError::RestartLength {
+                component: self.name(),
+                found,
+                needed,
+            });
         }
         self.state.restore(state);
         let nodes = &state[State::len(n)..];
-        for (rows, values) in self.means.node.fields_mut().into_iter().zip(nodes.chunks(n)) {
+        for (rows, values) in self
+            .means
+            .node
+            .fields_mut()
+            .into_iter()
+            .zip(nodes.chunks(n))
+        {
             rows.flat_mut().copy_from_slice(values);
         }
         Ok(())

@@ -224,10 +224,16 @@ impl Params {
         r.positive("longwave.slope_w_m2_k", self.longwave.slope_w_m2_k);
         r.not_negative("gyre_diffusivity_w_m2_k", self.gyre_diffusivity_w_m2_k);
         r.positive("sea_ice.cover_thickness_m", self.sea_ice.cover_thickness_m);
-        r.positive("sea_ice.conductivity_w_m_k", self.sea_ice.conductivity_w_m_k);
+        r.positive(
+            "sea_ice.conductivity_w_m_k",
+            self.sea_ice.conductivity_w_m_k,
+        );
         if let Some(layer) = &self.seasonal_thermocline {
             r.positive("seasonal_thermocline.thickness_m", layer.thickness_m);
-            r.not_negative("seasonal_thermocline.exchange_w_m2_k", layer.exchange_w_m2_k);
+            r.not_negative(
+                "seasonal_thermocline.exchange_w_m2_k",
+                layer.exchange_w_m2_k,
+            );
         }
         self.check_exchange(&mut r);
         self.check_transport(&mut r);
@@ -242,7 +248,10 @@ impl Params {
         r.not_negative("surface_exchange.radiative_w_m2", s.radiative_w_m2);
         r.not_negative("surface_exchange.sensible_w_m2_k", s.sensible_w_m2_k);
         r.not_negative("surface_exchange.latent_w_m2", s.latent_w_m2);
-        r.fraction("surface_exchange.air_relative_humidity", s.air_relative_humidity);
+        r.fraction(
+            "surface_exchange.air_relative_humidity",
+            s.air_relative_humidity,
+        );
         r.fraction("surface_exchange.land_wetness", s.land_wetness);
         let massless = self.air_heat_capacity_j_m2_k <= 0.0;
         let coupled = s.sensible_w_m2_k > 0.0 || self.longwave.emitter == Emitter::Air;
@@ -256,11 +265,21 @@ impl Params {
 
     fn check_transport(&self, r: &mut Ranges) {
         match self.transport {
-            Transport::Diffusion { diffusivity_w_m2_k, second_legendre_share, relative_humidity } => {
+            Transport::Diffusion {
+                diffusivity_w_m2_k,
+                second_legendre_share,
+                relative_humidity,
+            } => {
                 r.not_negative("transport.diffusivity_w_m2_k", diffusivity_w_m2_k);
                 let d2 = second_legendre_share;
-                let limit = "must lie between -1 and 2, or the diffusivity would be negative somewhere";
-                r.require("transport.second_legendre_share", d2, d2 > -1.0 && d2 < 2.0, limit);
+                let limit =
+                    "must lie between -1 and 2, or the diffusivity would be negative somewhere";
+                r.require(
+                    "transport.second_legendre_share",
+                    d2,
+                    d2 > -1.0 && d2 < 2.0,
+                    limit,
+                );
                 r.fraction("transport.relative_humidity", relative_humidity);
             }
             Transport::MeanRelaxation { rate_w_m2_k } => {
@@ -272,8 +291,16 @@ impl Params {
     fn check_albedo(&self, r: &mut Ranges) {
         match &self.albedo {
             Albedo::Surfaces {
-                water, water_sine, water_second_legendre, water_zenith, land_excess, snow, sea_ice,
-                ice_sheet, snow_temperature_c, snow_width_k,
+                water,
+                water_sine,
+                water_second_legendre,
+                water_zenith,
+                land_excess,
+                snow,
+                sea_ice,
+                ice_sheet,
+                snow_temperature_c,
+                snow_width_k,
             } => {
                 r.fraction("albedo.water", *water);
                 r.fraction("albedo.snow", *snow);
@@ -286,7 +313,12 @@ impl Params {
                 r.finite("albedo.snow_temperature_c", *snow_temperature_c);
                 r.positive("albedo.snow_width_k", *snow_width_k);
             }
-            Albedo::IceLine { free, free_second_legendre, ice, edge } => {
+            Albedo::IceLine {
+                free,
+                free_second_legendre,
+                ice,
+                edge,
+            } => {
                 r.fraction("albedo.free", *free);
                 r.finite("albedo.free_second_legendre", *free_second_legendre);
                 r.fraction("albedo.ice", *ice);
@@ -305,13 +337,23 @@ impl Params {
         r.positive("mixed_layer.depth_scale", m.depth_scale);
         let lengths = !m.depth_m.is_empty() && m.depth_m.len() == m.latitude_deg.len();
         let limit = "needs as many depths as latitudes, at least one";
-        r.require("mixed_layer.depth_m (number of values)", m.depth_m.len() as f64, lengths, limit);
+        r.require(
+            "mixed_layer.depth_m (number of values)",
+            m.depth_m.len() as f64,
+            lengths,
+            limit,
+        );
         for &depth in &m.depth_m {
             r.positive("mixed_layer.depth_m", depth);
         }
         for pair in m.latitude_deg.windows(2) {
             let limit = "latitudes must increase";
-            r.require("mixed_layer.latitude_deg", pair[1], pair[1] > pair[0], limit);
+            r.require(
+                "mixed_layer.latitude_deg",
+                pair[1],
+                pair[1] > pair[0],
+                limit,
+            );
         }
     }
 
@@ -319,13 +361,21 @@ impl Params {
         let s = &self.sinking;
         let latitude = |v: f64| (0.0..=90.0).contains(&v);
         let limit = "must be a latitude from 0 to 90 degrees";
-        r.require("sinking.deep_latitude_deg", s.deep_latitude_deg, latitude(s.deep_latitude_deg), limit);
+        r.require(
+            "sinking.deep_latitude_deg",
+            s.deep_latitude_deg,
+            latitude(s.deep_latitude_deg),
+            limit,
+        );
         let [low, high] = s.subtropical_latitudes_deg;
         let limit = "must be two increasing latitudes from 0 to 90 degrees";
         let ordered = latitude(low) && latitude(high) && low < high;
         r.require("sinking.subtropical_latitudes_deg", low, ordered, limit);
         r.positive("sinking.edge_width_deg", s.edge_width_deg);
         r.positive("sinking.loss_smoothing_w_m2", s.loss_smoothing_w_m2);
-        r.positive("sinking.convection_temperature_k", s.convection_temperature_k);
+        r.positive(
+            "sinking.convection_temperature_k",
+            s.convection_temperature_k,
+        );
     }
 }

@@ -59,16 +59,86 @@ pub(super) fn variables() -> Vec<Variable> {
 
 fn monthly_variables() -> Vec<Variable> {
     vec![
-        variable!("insolation", BY_MONTH, "W m-2", "insolation at the top of the atmosphere", Some("toa_incoming_shortwave_flux"), Plain),
-        variable!("air_temperature_sea_level", BY_MONTH, "degC", "temperature of the air column brought to sea level", None, Temperature),
-        variable!("land_surface_temperature", BY_MONTH, "degC", "land surface temperature at the land's elevation", Some("surface_temperature"), Temperature),
-        variable!("ocean_temperature", BY_MONTH, "degC", "temperature of the ocean mixed layer", Some("sea_surface_temperature"), Temperature),
-        variable!("air_temperature_2m", BY_MONTH, "degC", "air temperature at 2 m", Some("air_temperature"), Temperature),
-        variable!("land_air_temperature_2m", BY_MONTH, "degC", "air temperature at 2 m over land", Some("air_temperature"), Temperature),
-        variable!("ocean_air_temperature_2m", BY_MONTH, "degC", "air temperature at 2 m over ocean and sea ice", Some("air_temperature"), Temperature),
-        variable!("snow_cover", BY_MONTH, "1", "fraction of the land under snow or ice sheet", Some("surface_snow_area_fraction"), Plain),
-        variable!("sea_ice_fraction", BY_MONTH, "1", "fraction of the ocean under sea ice", Some("sea_ice_area_fraction"), Plain),
-        variable!("sea_ice_thickness", BY_MONTH, "m", "sea-ice volume per area of ocean", None, Plain),
+        variable!(
+            "insolation",
+            BY_MONTH,
+            "W m-2",
+            "insolation at the top of the atmosphere",
+            Some("toa_incoming_shortwave_flux"),
+            Plain
+        ),
+        variable!(
+            "air_temperature_sea_level",
+            BY_MONTH,
+            "degC",
+            "temperature of the air column brought to sea level",
+            None,
+            Temperature
+        ),
+        variable!(
+            "land_surface_temperature",
+            BY_MONTH,
+            "degC",
+            "land surface temperature at the land's elevation",
+            Some("surface_temperature"),
+            Temperature
+        ),
+        variable!(
+            "ocean_temperature",
+            BY_MONTH,
+            "degC",
+            "temperature of the ocean mixed layer",
+            Some("sea_surface_temperature"),
+            Temperature
+        ),
+        variable!(
+            "air_temperature_2m",
+            BY_MONTH,
+            "degC",
+            "air temperature at 2 m",
+            Some("air_temperature"),
+            Temperature
+        ),
+        variable!(
+            "land_air_temperature_2m",
+            BY_MONTH,
+            "degC",
+            "air temperature at 2 m over land",
+            Some("air_temperature"),
+            Temperature
+        ),
+        variable!(
+            "ocean_air_temperature_2m",
+            BY_MONTH,
+            "degC",
+            "air temperature at 2 m over ocean and sea ice",
+            Some("air_temperature"),
+            Temperature
+        ),
+        variable!(
+            "snow_cover",
+            BY_MONTH,
+            "1",
+            "fraction of the land under snow or ice sheet",
+            Some("surface_snow_area_fraction"),
+            Plain
+        ),
+        variable!(
+            "sea_ice_fraction",
+            BY_MONTH,
+            "1",
+            "fraction of the ocean under sea ice",
+            Some("sea_ice_area_fraction"),
+            Plain
+        ),
+        variable!(
+            "sea_ice_thickness",
+            BY_MONTH,
+            "m",
+            "sea-ice volume per area of ocean",
+            None,
+            Plain
+        ),
     ]
 }
 
@@ -76,21 +146,126 @@ fn annual_variables() -> Vec<Variable> {
     const EDGES: &[Axis] = &[Axis::LatitudeEdge];
     const BOTH: &[Axis] = &[Axis::Hemisphere];
     vec![
-        variable!("ocean_heat_transport", EDGES, "PW", "northward heat transport of the ocean", Some("northward_ocean_heat_transport"), Plain),
-        variable!("atmosphere_heat_transport", EDGES, "PW", "northward heat transport of the atmosphere", Some("northward_atmosphere_heat_transport"), Plain),
-        variable!("total_heat_transport", EDGES, "PW", "northward heat transport of ocean and atmosphere", None, Plain),
-        variable!("ocean_surface_gain", &[Axis::Latitude], "W m-2", "net heat gain of the ocean through its surface, per area of ocean", Some("surface_downward_heat_flux_in_sea_water"), Plain),
-        variable!("absorbed_solar", &[Axis::Latitude], "W m-2", "absorbed solar radiation", None, Plain),
-        variable!("outgoing_longwave", &[Axis::Latitude], "W m-2", "outgoing longwave radiation", Some("toa_outgoing_longwave_flux"), Plain),
-        variable!("sea_ice_area", BOTH, "m2", "sea-ice area", Some("sea_ice_area"), Plain),
-        variable!("high_latitude_ocean_loss_net", BOTH, "PW", "net annual heat loss of the ocean poleward of 45 degrees", None, Plain),
-        variable!("sinking_region_loss_net", BOTH, "PW", "net annual heat loss of the ocean in the deep-sinking regions", None, Plain),
-        variable!("sinking_region_loss_gross", BOTH, "PW", "heat loss of the ocean in the deep-sinking regions, seasons of loss only", None, Plain),
-        variable!("tropical_ocean_gain", &[], "PW", "net annual heat gain of the ocean within 30 degrees of the equator", None, Plain),
-        variable!("global_air_temperature_2m", &[], "degC", "global annual mean air temperature at 2 m", Some("air_temperature"), Temperature),
-        variable!("global_absorbed_solar", &[], "W m-2", "global mean absorbed solar radiation", None, Plain),
-        variable!("global_outgoing_longwave", &[], "W m-2", "global mean outgoing longwave radiation", Some("toa_outgoing_longwave_flux"), Plain),
-        variable!("planetary_albedo", &[], "1", "planetary albedo", Some("planetary_albedo"), Plain),
+        variable!(
+            "ocean_heat_transport",
+            EDGES,
+            "PW",
+            "northward heat transport of the ocean",
+            Some("northward_ocean_heat_transport"),
+            Plain
+        ),
+        variable!(
+            "atmosphere_heat_transport",
+            EDGES,
+            "PW",
+            "northward heat transport of the atmosphere",
+            Some("northward_atmosphere_heat_transport"),
+            Plain
+        ),
+        variable!(
+            "total_heat_transport",
+            EDGES,
+            "PW",
+            "northward heat transport of ocean and atmosphere",
+            None,
+            Plain
+        ),
+        variable!(
+            "ocean_surface_gain",
+            &[Axis::Latitude],
+            "W m-2",
+            "net heat gain of the ocean through its surface, per area of ocean",
+            Some("surface_downward_heat_flux_in_sea_water"),
+            Plain
+        ),
+        variable!(
+            "absorbed_solar",
+            &[Axis::Latitude],
+            "W m-2",
+            "absorbed solar radiation",
+            None,
+            Plain
+        ),
+        variable!(
+            "outgoing_longwave",
+            &[Axis::Latitude],
+            "W m-2",
+            "outgoing longwave radiation",
+            Some("toa_outgoing_longwave_flux"),
+            Plain
+        ),
+        variable!(
+            "sea_ice_area",
+            BOTH,
+            "m2",
+            "sea-ice area",
+            Some("sea_ice_area"),
+            Plain
+        ),
+        variable!(
+            "high_latitude_ocean_loss_net",
+            BOTH,
+            "PW",
+            "net annual heat loss of the ocean poleward of 45 degrees",
+            None,
+            Plain
+        ),
+        variable!(
+            "sinking_region_loss_net",
+            BOTH,
+            "PW",
+            "net annual heat loss of the ocean in the deep-sinking regions",
+            None,
+            Plain
+        ),
+        variable!(
+            "sinking_region_loss_gross",
+            BOTH,
+            "PW",
+            "heat loss of the ocean in the deep-sinking regions, seasons of loss only",
+            None,
+            Plain
+        ),
+        variable!(
+            "tropical_ocean_gain",
+            &[],
+            "PW",
+            "net annual heat gain of the ocean within 30 degrees of the equator",
+            None,
+            Plain
+        ),
+        variable!(
+            "global_air_temperature_2m",
+            &[],
+            "degC",
+            "global annual mean air temperature at 2 m",
+            Some("air_temperature"),
+            Temperature
+        ),
+        variable!(
+            "global_absorbed_solar",
+            &[],
+            "W m-2",
+            "global mean absorbed solar radiation",
+            None,
+            Plain
+        ),
+        variable!(
+            "global_outgoing_longwave",
+            &[],
+            "W m-2",
+            "global mean outgoing longwave radiation",
+            Some("toa_outgoing_longwave_flux"),
+            Plain
+        ),
+        variable!(
+            "planetary_albedo",
+            &[],
+            "1",
+            "planetary albedo",
+            Some("planetary_albedo"),
+            Plain
+        ),
     ]
 }
 
@@ -104,7 +279,11 @@ impl Report {
             from_components: Vec::new(),
         };
         let length = 10 * 12 * bands + 3 * (bands + 1) + 3 * bands + 13;
-        Self { surface_weight: p.air_2m_surface_weight, account, values: Vec::with_capacity(length) }
+        Self {
+            surface_weight: p.air_2m_surface_weight,
+            account,
+            values: Vec::with_capacity(length),
+        }
     }
 
     pub(super) fn record(&self, values: &mut Vec<f64>) {
@@ -113,7 +292,12 @@ impl Report {
 
     /// Works out everything from the sums of the year.
     pub(super) fn close_year(
-        &mut self, c: &Coefficients, surface: &Surface, m: &Means, s: &State, exchange: &mut Exchange,
+        &mut self,
+        c: &Coefficients,
+        surface: &Surface,
+        m: &Means,
+        s: &State,
+        exchange: &mut Exchange,
     ) {
         self.account(c, m, s, exchange);
         tell(c, m, exchange);
@@ -132,11 +316,18 @@ impl Report {
         self.account.from_outside = vec![
             flow("sunlight absorbed by the air", over_area(&m.absorbed_air)),
             flow("sunlight absorbed by land", over_area(&m.absorbed_land)),
-            flow("sunlight absorbed by the ocean", over_area(&m.absorbed_ocean)),
+            flow(
+                "sunlight absorbed by the ocean",
+                over_area(&m.absorbed_ocean),
+            ),
             flow("radiation emitted to space", -over_area(&m.emitted)),
         ];
         let given = compensated(exchange.column_heat_w.iter().copied()) * YEAR_SECONDS;
-        let sunk = compensated(m.sunk_heat.iter().flat_map(|rows| rows.flat().iter().copied()));
+        let sunk = compensated(
+            m.sunk_heat
+                .iter()
+                .flat_map(|rows| rows.flat().iter().copied()),
+        );
         self.account.from_components = vec![
             flow("heat from the column", given),
             flow("sinking water", -SEA_WATER_HEAT_CAPACITY_J_M3_K * sunk),
@@ -149,7 +340,10 @@ impl Report {
         let lifts = c.elevation_k.flat();
         for (month, node) in m.monthly.iter().enumerate() {
             let row = month * n..(month + 1) * n;
-            let (land, ocean) = (&mut exchange.land_air_2m_c[row.clone()], &mut exchange.ocean_air_2m_c[row]);
+            let (land, ocean) = (
+                &mut exchange.land_air_2m_c[row.clone()],
+                &mut exchange.ocean_air_2m_c[row],
+            );
             let fields = (node.air.flat(), node.land.flat(), node.ocean_surface.flat());
             for i in 0..n {
                 land[i] = w * fields.1[i] + (1.0 - w) * (fields.0[i] - lifts[i]);
@@ -184,15 +378,26 @@ impl Report {
     fn annual(&mut self, c: &Coefficients, surface: &Surface, m: &Means, exchange: &Exchange) {
         let per_step = 1.0 / c.steps as f64;
         let column = column_transport(c, m, exchange);
-        let ocean: Vec<f64> =
-            m.ocean_flux_w.iter().zip(&column).map(|(s, below)| s * per_step + below).collect();
+        let ocean: Vec<f64> = m
+            .ocean_flux_w
+            .iter()
+            .zip(&column)
+            .map(|(s, below)| s * per_step + below)
+            .collect();
         let air = &exchange.atmosphere_transport_w;
         self.values.extend(ocean.iter().map(|v| v / PETAWATT_W));
         self.values.extend(air.iter().map(|v| v / PETAWATT_W));
-        self.values.extend(ocean.iter().zip(air).map(|(o, a)| (o + a) / PETAWATT_W));
+        self.values
+            .extend(ocean.iter().zip(air).map(|(o, a)| (o + a) / PETAWATT_W));
         let has_ocean = c.has_ocean.flat();
         let gain: Vec<f64> = m.ocean_gain.flat().iter().map(|v| v * per_step).collect();
-        self.values.extend((0..c.bands).map(|i| if has_ocean[i] > 0.0 { gain[i] } else { f64::NAN }));
+        self.values.extend((0..c.bands).map(|i| {
+            if has_ocean[i] > 0.0 {
+                gain[i]
+            } else {
+                f64::NAN
+            }
+        }));
         let absorbed: Vec<f64> = (0..c.bands)
             .map(|i| {
                 let parts = [&m.absorbed_air, &m.absorbed_land, &m.absorbed_ocean];
@@ -206,7 +411,14 @@ impl Report {
         self.global(surface, m, &absorbed, &emitted);
     }
 
-    fn sums(&mut self, c: &Coefficients, surface: &Surface, m: &Means, gain: &[f64], exchange: &Exchange) {
+    fn sums(
+        &mut self,
+        c: &Coefficients,
+        surface: &Surface,
+        m: &Means,
+        gain: &[f64],
+        exchange: &Exchange,
+    ) {
         let latitude = surface.bands.centre_deg();
         let area = c.ocean_area_m2.flat();
         let mut ice = [0.0; 2];
@@ -221,8 +433,10 @@ impl Report {
         }
         self.values.extend_from_slice(&ice);
         self.values.extend(loss.map(|v| v / PETAWATT_W));
-        self.values.extend(exchange.net_sinking_loss_w.map(|v| v / PETAWATT_W));
-        self.values.extend(exchange.gross_sinking_loss_w.map(|v| v / PETAWATT_W));
+        self.values
+            .extend(exchange.net_sinking_loss_w.map(|v| v / PETAWATT_W));
+        self.values
+            .extend(exchange.gross_sinking_loss_w.map(|v| v / PETAWATT_W));
         self.values.push(tropics / PETAWATT_W);
     }
 
@@ -235,7 +449,9 @@ impl Report {
             .zip(lengths)
             .map(|(month, share)| share * surface.bands.mean(month))
             .sum();
-        let incoming: Vec<f64> = (0..n).map(|i| annual(m, |node| node.insolation.flat()[i])).collect();
+        let incoming: Vec<f64> = (0..n)
+            .map(|i| annual(m, |node| node.insolation.flat()[i]))
+            .collect();
         let (taken, given) = (surface.bands.mean(absorbed), surface.bands.mean(emitted));
         let albedo = 1.0 - taken / surface.bands.mean(&incoming);
         self.values.extend([monthly, taken, given, albedo]);
@@ -244,13 +460,20 @@ impl Report {
 
 /// Annual mean of a monthly quantity.
 fn annual(m: &Means, value: impl Fn(&Node) -> f64) -> f64 {
-    m.monthly.iter().zip(Calendar.month_shares()).map(|(node, share)| share * value(node)).sum()
+    m.monthly
+        .iter()
+        .zip(Calendar.month_shares())
+        .map(|(node, share)| share * value(node))
+        .sum()
 }
 
 /// Share of band `i`'s area poleward of `latitude_deg` in its hemisphere.
 fn poleward_share(surface: &Surface, i: usize, latitude_deg: f64) -> f64 {
     let edges = surface.bands.edge_sine();
-    let (a, b) = (edges[i].abs().min(edges[i + 1].abs()), edges[i].abs().max(edges[i + 1].abs()));
+    let (a, b) = (
+        edges[i].abs().min(edges[i + 1].abs()),
+        edges[i].abs().max(edges[i + 1].abs()),
+    );
     ((b - latitude_deg.to_radians().sin().max(a)) / (b - a)).clamp(0.0, 1.0)
 }
 
@@ -283,7 +506,11 @@ fn tell(c: &Coefficients, m: &Means, exchange: &mut Exchange) {
         exchange.sinking_volume_m3[row.clone()].copy_from_slice(m.sunk[month].flat());
         exchange.sinking_heat_m3_c[row].copy_from_slice(m.sunk_heat[month].flat());
     }
-    for (told, sum) in exchange.atmosphere_transport_w.iter_mut().zip(&m.air_flux_w) {
+    for (told, sum) in exchange
+        .atmosphere_transport_w
+        .iter_mut()
+        .zip(&m.air_flux_w)
+    {
         *told = sum * per_step;
     }
     let deep = exchange.deep_sinking_m3_s;

@@ -20,7 +20,11 @@ pub(super) struct Levels {
 impl Levels {
     fn new(values: &[f64]) -> Self {
         let still = Rows::new(values.len(), 0.0);
-        Self { now: Rows::from_slice(values), last: still.clone(), before: still }
+        Self {
+            now: Rows::from_slice(values),
+            last: still.clone(),
+            before: still,
+        }
     }
 
     /// Right-hand level of the formula, y + (7 d0 - 2 d1)/11.
@@ -78,9 +82,15 @@ impl State {
     /// A smooth start: 27 degC at the equator, falling with the square of sin(latitude).
     pub(super) fn new(c: &Coefficients, mean_sine: &[f64]) -> Self {
         let air: Vec<f64> = mean_sine.iter().map(|x| 25.0 - 40.0 * x * x).collect();
-        let land: Vec<f64> =
-            air.iter().zip(c.elevation_k.flat()).map(|(t, lift)| t + 2.0 - lift).collect();
-        let water: Vec<f64> = air.iter().map(|t| (t + 2.0).max(SEA_WATER_FREEZING_C)).collect();
+        let land: Vec<f64> = air
+            .iter()
+            .zip(c.elevation_k.flat())
+            .map(|(t, lift)| t + 2.0 - lift)
+            .collect();
+        let water: Vec<f64> = air
+            .iter()
+            .map(|t| (t + 2.0).max(SEA_WATER_FREEZING_C))
+            .collect();
         let enthalpy: Vec<f64> = water
             .iter()
             .zip(c.water_capacity.flat())
@@ -100,7 +110,11 @@ impl State {
     /// Heat stored on the planet's surface and in the air, J, in the combination that the
     /// formula conserves.
     pub(super) fn heat_j(&self, c: &Coefficients) -> f64 {
-        let sub_on = if c.sub_exchange > 0.0 { c.sub_capacity } else { 0.0 };
+        let sub_on = if c.sub_exchange > 0.0 {
+            c.sub_capacity
+        } else {
+            0.0
+        };
         compensated((0..c.bands).flat_map(|i| {
             let area = c.area_m2.flat()[i];
             let land = area * c.land.flat()[i] * c.land_capacity;
@@ -127,15 +141,28 @@ impl State {
     }
 
     pub(super) fn save(&self, into: &mut Vec<f64>) {
-        self.all().for_each(|rows| into.extend_from_slice(rows.flat()));
+        self.all()
+            .for_each(|rows| into.extend_from_slice(rows.flat()));
     }
 
     /// Takes the first [`State::len`] values of `from`.
     pub(super) fn restore(&mut self, from: &[f64]) {
         let n = self.ice_surface.flat().len();
-        let Self { air, land, enthalpy, sub, ice_surface, ice_surface_before } = self;
-        let levels = [air, land, enthalpy, sub].into_iter().flat_map(Levels::rows_mut);
-        for (rows, values) in levels.chain([ice_surface, ice_surface_before]).zip(from.chunks(n)) {
+        let Self {
+            air,
+            land,
+            enthalpy,
+            sub,
+            ice_surface,
+            ice_surface_before,
+        } = self;
+        let levels = [air, land, enthalpy, sub]
+            .into_iter()
+            .flat_map(Levels::rows_mut);
+        for (rows, values) in levels
+            .chain([ice_surface, ice_surface_before])
+            .zip(from.chunks(n))
+        {
             rows.flat_mut().copy_from_slice(values);
         }
     }
@@ -149,7 +176,10 @@ impl State {
             ("seasonal thermocline temperature", &self.sub.now),
         ];
         fields.into_iter().find_map(|(name, rows)| {
-            rows.flat().iter().position(|v| !v.is_finite()).map(|band| (name, band))
+            rows.flat()
+                .iter()
+                .position(|v| !v.is_finite())
+                .map(|band| (name, band))
         })
     }
 }

@@ -84,7 +84,14 @@ struct Bulk {
 }
 
 #[inline(always)]
-fn bulk(c: &Coefficients, surface: Lanes, lifted: Lanes, wetness: f64, air: Lanes, q_air: Saturation) -> Bulk {
+fn bulk(
+    c: &Coefficients,
+    surface: Lanes,
+    lifted: Lanes,
+    wetness: f64,
+    air: Lanes,
+    q_air: Saturation,
+) -> Bulk {
     let kelvin = surface + CELSIUS_ZERO_K;
     let cubed = kelvin * kelvin * kelvin * c.radiative;
     let q = saturation(lifted);
@@ -100,7 +107,13 @@ fn bulk(c: &Coefficients, surface: Lanes, lifted: Lanes, wetness: f64, air: Lane
 
 /// Extrapolates the state and evaluates all surface fluxes of row after row.
 #[inline(always)]
-pub(super) fn evaluate(c: &Coefficients, s: &State, w: &mut Work, sun: Sunlight<'_>, greenhouse: f64) {
+pub(super) fn evaluate(
+    c: &Coefficients,
+    s: &State,
+    w: &mut Work,
+    sun: Sunlight<'_>,
+    greenhouse: f64,
+) {
     for r in 0..w.air.rows() {
         let air = s.air.extrapolated(r);
         let q_air = saturation(air);
@@ -111,8 +124,24 @@ pub(super) fn evaluate(c: &Coefficients, s: &State, w: &mut Work, sun: Sunlight<
         let insolation = Lanes::load(sun.insolation, 4 * r);
         let tilt = Lanes::splat(0.65) - Lanes::load(sun.zenith, 4 * r);
         let water_albedo = c.water_albedo.at(r) + tilt * c.water_zenith;
-        let land = land(c, s, w, r, (air, q_air), (insolation, water_albedo), greenhouse);
-        let ocean = ocean(c, s, w, r, (air, q_air), (insolation, water_albedo), greenhouse);
+        let land = land(
+            c,
+            s,
+            w,
+            r,
+            (air, q_air),
+            (insolation, water_albedo),
+            greenhouse,
+        );
+        let ocean = ocean(
+            c,
+            s,
+            w,
+            r,
+            (air, q_air),
+            (insolation, water_albedo),
+            greenhouse,
+        );
         let absorbed = c.land.at(r) * land + c.ocean.at(r) * ocean;
         w.air_absorbed.set(r, insolation * absorbed * c.air_share);
     }
@@ -121,8 +150,13 @@ pub(super) fn evaluate(c: &Coefficients, s: &State, w: &mut Work, sun: Sunlight<
 /// Land of one row; returns its absorptance.
 #[inline(always)]
 fn land(
-    c: &Coefficients, s: &State, w: &mut Work, r: usize, (air, q_air): (Lanes, Saturation),
-    (insolation, water_albedo): (Lanes, Lanes), greenhouse: f64,
+    c: &Coefficients,
+    s: &State,
+    w: &mut Work,
+    r: usize,
+    (air, q_air): (Lanes, Saturation),
+    (insolation, water_albedo): (Lanes, Lanes),
+    greenhouse: f64,
 ) -> Lanes {
     let temperature = s.land.extrapolated(r);
     let base = s.land.base(r);
@@ -137,13 +171,23 @@ fn land(
     let absorbed = light * absorptance;
     let absorbed_slope = light * brightening * snow * (Lanes::splat(1.0) - snow) * c.snow_steepness;
 
-    let f = bulk(c, temperature, temperature + c.elevation_k.at(r), c.land_wetness, air, q_air);
+    let f = bulk(
+        c,
+        temperature,
+        temperature + c.elevation_k.at(r),
+        c.land_wetness,
+        air,
+        q_air,
+    );
     let emission = temperature * c.surface_emission_slope
         + (c.surface_emission_offset - greenhouse * surface_share(c));
     let storage = c.land_capacity / c.gamma_s;
     let newton = (f.slope + (storage + c.surface_emission_slope) - absorbed_slope)
         .max(Lanes::splat(storage * LEAST_LAND_SLOPE));
-    w.land_residual.set(r, absorbed - f.flux - emission - (temperature - base) * storage);
+    w.land_residual.set(
+        r,
+        absorbed - f.flux - emission - (temperature - base) * storage,
+    );
     w.land_newton.set(r, newton);
     w.land_base.set(r, base);
     w.land_flux.set(r, f.flux);
@@ -159,7 +203,11 @@ fn land(
 /// Share of the greenhouse forcing that acts on surface emission: one or zero.
 #[inline(always)]
 fn surface_share(c: &Coefficients) -> f64 {
-    if c.surface_emission_slope > 0.0 { 1.0 } else { 0.0 }
+    if c.surface_emission_slope > 0.0 {
+        1.0
+    } else {
+        0.0
+    }
 }
 
 /// What the ice of a row contributes.
@@ -175,8 +223,13 @@ struct Ice {
 /// Ocean of one row; returns its absorptance.
 #[inline(always)]
 fn ocean(
-    c: &Coefficients, s: &State, w: &mut Work, r: usize, (air, q_air): (Lanes, Saturation),
-    (insolation, water_albedo): (Lanes, Lanes), greenhouse: f64,
+    c: &Coefficients,
+    s: &State,
+    w: &mut Work,
+    r: usize,
+    (air, q_air): (Lanes, Saturation),
+    (insolation, water_albedo): (Lanes, Lanes),
+    greenhouse: f64,
 ) -> Lanes {
     let (zero, one) = (Lanes::splat(0.0), Lanes::splat(1.0));
     let enthalpy = s.enthalpy.extrapolated(r);
@@ -206,7 +259,10 @@ fn ocean(
         f.slope * per_capacity,
         cover_enthalpy * (ice.flux - water_flux) + cover * f.slope * ice.surface_enthalpy,
     );
-    let flux_air = open.select(-f.slope_air, cover * f.slope * ice.surface_air - f.slope_air);
+    let flux_air = open.select(
+        -f.slope_air,
+        cover * f.slope * ice.surface_air - f.slope_air,
+    );
     let (water_emission, ice_emission) = (emit(water), emit(ice.surface));
     let slope = Lanes::splat(c.surface_emission_slope);
     let emission_enthalpy = open.select(
@@ -217,15 +273,21 @@ fn ocean(
     w.ocean_flux.set(r, flux);
     w.ocean_flux_enthalpy.set(r, flux_enthalpy);
     w.ocean_flux_air.set(r, flux_air);
-    w.ocean_emission.set(r, clear * water_emission + cover * ice_emission);
+    w.ocean_emission
+        .set(r, clear * water_emission + cover * ice_emission);
     w.ocean_emission_enthalpy.set(r, emission_enthalpy);
-    w.ocean_emission_air.set(r, open.select(zero, cover * slope * ice.surface_air));
+    w.ocean_emission_air
+        .set(r, open.select(zero, cover * slope * ice.surface_air));
     w.ocean_absorbed.set(r, light * absorptance);
-    w.ocean_absorbed_enthalpy.set(r, cover_enthalpy * light * (water_albedo - ice_albedo));
+    w.ocean_absorbed_enthalpy
+        .set(r, cover_enthalpy * light * (water_albedo - ice_albedo));
     w.open_water.set(r, open.select(one, zero));
     w.water_temperature.set(r, water);
     w.ice_cover.set(r, cover);
-    w.ice_surface.set(r, open.select(Lanes::splat(SEA_WATER_FREEZING_C), ice.surface));
+    w.ice_surface.set(
+        r,
+        open.select(Lanes::splat(SEA_WATER_FREEZING_C), ice.surface),
+    );
     w.ocean_base.set(r, s.enthalpy.base(r));
     store_sub_layer(c, s, w, r, open.select(per_capacity, zero));
     close_ocean(c, w, r, enthalpy);
@@ -243,8 +305,9 @@ fn ice(c: &Coefficients, enthalpy: Lanes, skin: Lanes, f: &Bulk, gain: Lanes) ->
     let cover_enthalpy = remaining * (-1.0 / (SEA_ICE_LATENT_HEAT_J_M3 * c.cover_thickness));
     let per_held = one / held;
     let conductance = cover * per_held * c.conductivity;
-    let conductance_enthalpy =
-        (conductance * (1.0 / SEA_ICE_LATENT_HEAT_J_M3) + cover_enthalpy * c.conductivity) * per_held;
+    let conductance_enthalpy = (conductance * (1.0 / SEA_ICE_LATENT_HEAT_J_M3)
+        + cover_enthalpy * c.conductivity)
+        * per_held;
     let slope = conductance + f.slope + c.surface_emission_slope;
     let per_slope = one / slope;
     let lift = Lanes::splat(SEA_WATER_FREEZING_C);
@@ -266,7 +329,8 @@ fn ice(c: &Coefficients, enthalpy: Lanes, skin: Lanes, f: &Bulk, gain: Lanes) ->
 fn store_sub_layer(c: &Coefficients, s: &State, w: &mut Work, r: usize, water_slope: Lanes) {
     let base = s.sub.base(r);
     w.sub_base.set(r, base);
-    w.sub_flux.set(r, (w.water_temperature.at(r) - base) * c.sub_exchange);
+    w.sub_flux
+        .set(r, (w.water_temperature.at(r) - base) * c.sub_exchange);
     w.sub_flux_enthalpy.set(r, water_slope * c.sub_exchange);
 }
 
@@ -286,5 +350,6 @@ fn close_ocean(c: &Coefficients, w: &mut Work, r: usize, enthalpy: Lanes) {
         - w.ocean_absorbed_enthalpy.at(r)
         + w.sub_flux_enthalpy.at(r)
         + storage;
-    w.ocean_newton.set(r, newton.max(Lanes::splat(0.25 * storage)));
+    w.ocean_newton
+        .set(r, newton.max(Lanes::splat(0.25 * storage)));
 }

@@ -19,8 +19,18 @@ struct Settled {
 
 /// Advances all levels by one step and adds the step's fluxes to the year's sums.
 #[inline(always)]
-pub(super) fn advance(c: &Coefficients, s: &mut State, w: &Work, means: &mut Means, greenhouse: f64) {
-    let greenhouse = if c.air_emission_slope > 0.0 { greenhouse } else { 0.0 };
+pub(super) fn advance(
+    c: &Coefficients,
+    s: &mut State,
+    w: &Work,
+    means: &mut Means,
+    greenhouse: f64,
+) {
+    let greenhouse = if c.air_emission_slope > 0.0 {
+        greenhouse
+    } else {
+        0.0
+    };
     for r in 0..w.air.rows() {
         let land = settle_land(c, s, w, means, r);
         let ocean = settle_ocean(c, s, w, means, r);
@@ -37,7 +47,10 @@ pub(super) fn advance(c: &Coefficients, s: &mut State, w: &Work, means: &mut Mea
         s.air.push(r, new);
         means.air_input.add(r, input);
         means.absorbed_air.add(r, w.air_absorbed.at(r));
-        means.emitted.add(r, air_emission + land_share * land.emitted + ocean_share * ocean.emitted);
+        means.emitted.add(
+            r,
+            air_emission + land_share * land.emitted + ocean_share * ocean.emitted,
+        );
         means.node.air.set(r, new);
     }
 }
@@ -84,11 +97,18 @@ fn settle_ocean(c: &Coefficients, s: &mut State, w: &Work, means: &mut Means, r:
     means.absorbed_ocean.add(r, c.ocean.at(r) * absorbed);
     means.ocean_gain.add(r, gain);
     means.gross_loss.add(r, (-gain).max(zero));
-    let water = enthalpy.max(zero) * c.per_water_capacity.at(r) + crate::units::SEA_WATER_FREEZING_C;
+    let water =
+        enthalpy.max(zero) * c.per_water_capacity.at(r) + crate::units::SEA_WATER_FREEZING_C;
     let cover = w.ice_cover.at(r);
     means.node.water.set(r, water);
-    means.node.ocean_surface.set(r, water + (w.ice_surface.at(r) - water) * cover);
+    means
+        .node
+        .ocean_surface
+        .set(r, water + (w.ice_surface.at(r) - water) * cover);
     means.node.ice_cover.set(r, cover);
-    means.node.ice_thickness.set(r, (-enthalpy).max(zero) * (1.0 / SEA_ICE_LATENT_HEAT_J_M3));
+    means
+        .node
+        .ice_thickness
+        .set(r, (-enthalpy).max(zero) * (1.0 / SEA_ICE_LATENT_HEAT_J_M3));
     Settled { to_air, emitted }
 }

@@ -1,0 +1,197 @@
+//! A run file's layout: the table of [`super::schema`] turned into NetCDF-4 variables.
+//!
+//! Segments and the merged file are made by the same code, so they differ only in the number of
+//! records. Format facts: CF 1.11 as listed in [`super::schema`]; records lie in chunks of
+//! [`CHUNK`] along `age`, written whole; a restart state is a list of numbers with a dimension
+//! of its own, bit for bit.
+
+use std::path::Path;
+
+use super::error::Result;
+use super::netcdf4::{Definition, Kind, Length, Missing, NetCdfFile, Values, VariableId, narrow};
+use super::schema::{
+    self, AGE, AGE_BOUNDS, BOUNDS, CONVENTIONS, Content, Coordinate, RESTART_PREFIX, Schema,
+};
+use crate::series::Record;
+
+/// Records per chunk and per segment. Longer chunks compress better and are written once.
+pub(crate) const CHUNK: usize = 64;
+
+/// Restart states by component.
+pub(crate) type Restart = Vec<(String, Vec<f64>)>;
+
+/// Consecutive records, turned round: one list per variable.
+#[derive(Clone, Debug, PartialEq)]
+pub(crate) struct Block {
+    /// Ages, kyr.
+    pub(crate) age: Vec<f64>,
+    /// Older and younger ends, one after another.
+    pub(crate) bounds: Vec<f64>,
+    /// Values of each variable, record after record.
+    pub(crate) columns: Vec<Vec<f64>>,
+}
+
+impl Block {
+    /// Gathers records that fit the table.
+    pub(crate) fn gather(schema: &Schema, records: &[Record]) -> Self {
+        let mut columns = Vec::with_capacity(schema.variables.len());
+        let mut start = 0;
+        for variable in &schema.variables {
+            let end = start + schema.size(variable);
+            let parts = records.iter().flat_map(|r| &r.values[start..end]);
+            columns.push(parts.copied().collect());
+            start = end;
+        }
+        Self {
+            age: records.iter().map(|r| r.age_kyr).collect(),
+            bounds: records.iter().flat_map(|r| r.age_bounds_kyr).collect(),
+            columns,
+        }
+    }
+}
+
+/// A run file being written.
+pub(crate) struct Layout {
+    file: NetCdfFile,
+    age: VariableId,
+    bounds: VariableId,
+    variables: Vec<(VariableId, Kind)>,
+}
+
+impl Layout {
+    /// Creates the file with everything that does not depend on the records.
+    pub(crate) fn create(path: &Path, schema: &Schema) -> Result<Self> {
+        let mut file = NetCdfFile::create(path)?;
+        file.text(None, "Conventions", CONVENTIONS)?;
+        for (name, value) in &schema.global {
+            file.text(None, name, value)?;
+        }
+        let (age, bounds) = define_ages(&mut file, schema)?;
+        for coordinate in schema.coordinates() {
+            define_coordinate(&mut file, &coordinate)?;
+        }
+        let mut variables = Vec::with_capacity(schema.variables.len());
+        for variable in &schema.variables {
+            let kind = if variable.axes.is_empty() {
+                Kind::F64
+            } else {
+                Kind::F32
+            };
+            let axes = variable.axes.iter().map(|&axis| schema::dimension(axis));
+            let dimensions: Vec<&str> = std::iter::once(AGE).chain(axes).collect();
+            let definition = Definition {
+                name: variable.name,
+                kind,
+                dimensions: &dimensions,
+                records_per_chunk: Some(CHUNK),
+                missing: Missing::Nan,
+            };
+            let id = file.define(&definition)?;
+            for (name, value) in schema::attributes(variable) {
+                file.text(Some(id), name, &value)?;
+            }
+            variables.push((id, kind));
+        }
+        Ok(Self {
+            file,
+            age,
+            bounds,
+            variables,
+        })
+    }
+
+    /// Writes records from number `first` on.
+    pub(crate) fn write(&self, first: usize, block: &Block) -> Result<()> {
+        self.file
+            .write_records(self.age, first, Values::F64(&block.age))?;
+        self.file
+            .write_records(self.bounds, first, Values::F64(&block.bounds))?;
+        for (&(id, kind), column) in self.variables.iter().zip(&block.columns) {
+            // One bit pattern for "no value": the sign of a NaN depends on the machine.
+            let one_nan = |&v: &f64| if v.is_nan() { f64::NAN } else { v };
+            if kind == Kind::F64 {
+                let values: Vec<f64> = column.iter().map(one_nan).collect();
+                self.file.write_records(id, first, Values::F64(&values))?;
+            } else {
+                let values: Vec<f32> = column.iter().map(|v| narrow(one_nan(v))).collect();
+                self.file.write_records(id, first, Values::F32(&values))?;
+            }
+        }
+        Ok(())
+    }
+
+    /// Adds the restart state and finishes the file.
+    pub(crate) fn finish(mut self, restart: &[(String, Vec<f64>)]) -> Result<()> {
+        for (component, state) in restart {
+            let name = format!("{RESTART_PREFIX}{component}");
+            let dimension = format!("{name}_index");
+            self.file
+                .dimension(&dimension, Length::Fixed(state.len()))?;
+            self.file.without_coordinate(&dimension)?;
+            let id = self.file.define(&Definition {
+                name: &name,
+                kind: Kind::F64,
+                dimensions: &[&dimension],
+                records_per_chunk: None,
+                missing: Missing::Never,
+            })?;
+            let long_name = format!("state of {component} after the last record, to restart from");
+            self.file.text(Some(id), "long_name", &long_name)?;
+            self.file.text(Some(id), "units", "1")?;
+            self.file.write(id, Values::F64(state))?;
+        }
+        self.file.close()
+    }
+}
+
+fn define_ages(file: &mut NetCdfFile, schema: &Schema) -> Result<(VariableId, VariableId)> {
+    file.dimension(AGE, Length::Unlimited)?;
+    let dimensions = schema.dimensions();
+    for &(name, length, _) in &dimensions {
+        file.dimension(name, Length::Fixed(length))?;
+    }
+    let records_per_chunk = Some(CHUNK);
+    let (kind, missing) = (Kind::F64, Missing::Never);
+    let age = Definition {
+        name: AGE,
+        kind,
+        dimensions: &[AGE],
+        records_per_chunk,
+        missing,
+    };
+    let age = file.define(&age)?;
+    for (name, value) in schema::age_attributes() {
+        file.text(Some(age), name, &value)?;
+    }
+    for &(name, ..) in dimensions.iter().filter(|d| !d.2) {
+        file.without_coordinate(name)?;
+    }
+    let dimensions: &[&str] = &[AGE, BOUNDS];
+    let bounds = Definition {
+        name: AGE_BOUNDS,
+        kind,
+        dimensions,
+        records_per_chunk,
+        missing,
+    };
+    Ok((age, file.define(&bounds)?))
+}
+
+fn define_coordinate(file: &mut NetCdfFile, coordinate: &Coordinate) -> Result<()> {
+    let (kind, values) = match &coordinate.content {
+        Content::Numbers(v) => (Kind::F64, Values::F64(v)),
+        Content::Integers(v) => (Kind::I32, Values::I32(v)),
+        Content::Letters(v) => (Kind::Char, Values::Char(v)),
+    };
+    let id = file.define(&Definition {
+        name: coordinate.name,
+        kind,
+        dimensions: coordinate.dimensions,
+        records_per_chunk: None,
+        missing: Missing::Never,
+    })?;
+    for (name, value) in &coordinate.attributes {
+        file.text(Some(id), name, value)?;
+    }
+    file.write(id, values)
+}

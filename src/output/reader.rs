@@ -1,0 +1,252 @@
+//! Reads run files, and their segments, back.
+//!
+//! Format facts: variables are HDF5 datasets in creation order; a dataset whose NAME attribute
+//! begins with "This is a netCDF dimension but not a netCDF variable" is a dimension only;
+//! `DIMENSION_LIST` leads from a variable to its dimensions; missing values are NaN.
+//!
+//! Sources: HDF5 Dimension Scale specification; NetCDF-4 format specification.
+
+use std::path::{Path, PathBuf};
+
+use hdf5::types::VarLenArray;
+use hdf5::{
+    Attribute, Dataset, File, IndexType, IterationOrder, ObjectReference1, ReferencedObject,
+};
+use ndarray::ArrayD;
+
+use super::error::{OutputError, Result, hdf5_at};
+use super::layout::{Block, Restart};
+use super::netcdf4::read_text;
+use super::schema::{AGE, AGE_BOUNDS, RESTART_PREFIX, Schema};
+use crate::series::TimeSeries;
+
+/// A run file opened for reading.
+#[derive(Debug)]
+pub struct RunFile {
+    path: PathBuf,
+    file: File,
+    /// Variables, restart states included, in the order of the file.
+    names: Vec<String>,
+}
+
+impl RunFile {
+    /// Opens a file.
+    ///
+    /// # Errors
+    /// If it cannot be opened or is no run file.
+    pub fn open(path: &Path) -> Result<Self> {
+        let file = File::open(path).map_err(hdf5_at(path, "open the file"))?;
+        let mut names = file
+            .member_names_by(IndexType::CreationOrder, IterationOrder::Increasing)
+            .map_err(hdf5_at(path, "list the variables"))?;
+        let mut failed = None;
+        names.retain(|name| match is_variable(&file, name) {
+            Ok(answer) => answer,
+            Err(error) => {
+                failed = Some((name.clone(), error));
+                false
+            }
+        });
+        match failed {
+            Some((name, error)) => Err(hdf5_at(path, format!("look at `{name}`"))(error)),
+            None => Ok(Self {
+                path: path.to_owned(),
+                file,
+                names,
+            }),
+        }
+    }
+
+    /// The file's path.
+    pub fn path(&self) -> &Path {
+        &self.path
+    }
+
+    /// Names of all variables and coordinates, in the order of the file, without restart states.
+    pub fn variables(&self) -> Vec<&str> {
+        let names = self.names.iter().map(String::as_str);
+        names
+            .filter(|name| !name.starts_with(RESTART_PREFIX))
+            .collect()
+    }
+
+    /// Names of a variable's dimensions, slowest first.
+    ///
+    /// # Errors
+    /// If there is no such variable or its dimensions cannot be read.
+    pub fn dimensions(&self, variable: &str) -> Result<Vec<String>> {
+        let dataset = self.dataset(variable)?;
+        let at = || hdf5_at(&self.path, format!("read the dimensions of `{variable}`"));
+        let Some(list) = attribute_of(dataset.attr_names(), "DIMENSION_LIST", |n| dataset.attr(n))
+            .map_err(at())?
+        else {
+            let coordinate = dataset.ndim() == 1;
+            return Ok(if coordinate {
+                vec![variable.to_owned()]
+            } else {
+                Vec::new()
+            });
+        };
+        let read = || -> hdf5::Result<Vec<String>> {
+            let list = list.read_raw::<VarLenArray<ObjectReference1>>()?;
+            let mut names = Vec::with_capacity(list.len());
+            for axis in &list {
+                let reference = axis.first().ok_or("an axis without dimension")?;
+                match self.file.dereference(reference)? {
+                    ReferencedObject::Dataset(scale) => {
+                        names.push(scale.name().trim_start_matches('/').to_owned());
+                    }
+                    _ => return Err("a dimension that is no dataset".into()),
+                }
+            }
+            Ok(names)
+        };
+        read().map_err(at())
+    }
+
+    /// One number per record, with its age.
+    ///
+    /// # Errors
+    /// If there is no such variable, or it is not one number per record.
+    pub fn series(&self, variable: &str) -> Result<TimeSeries> {
+        let values = self.array(variable)?;
+        let age_kyr = self.array(AGE)?.into_raw_vec_and_offset().0;
+        let of_age = self.dimensions(variable)? == [AGE];
+        if !of_age || values.len() != age_kyr.len() {
+            return Err(OutputError::Shape {
+                path: self.path.clone(),
+                variable: variable.to_owned(),
+                shape: values.shape().to_vec(),
+                needed: "one number for each age",
+            });
+        }
+        Ok(TimeSeries {
+            age_kyr,
+            values: values.into_raw_vec_and_offset().0,
+        })
+    }
+
+    /// All values of a variable.
+    ///
+    /// # Errors
+    /// If there is no such variable, or it holds no numbers.
+    pub fn array(&self, variable: &str) -> Result<ArrayD<f64>> {
+        let dataset = self.dataset(variable)?;
+        dataset
+            .read_dyn()
+            .map_err(hdf5_at(&self.path, format!("read `{variable}`")))
+    }
+
+    /// A text attribute of the file.
+    ///
+    /// # Errors
+    /// If there is none of that name.
+    pub fn global(&self, name: &str) -> Result<String> {
+        let attribute = attribute_of(self.file.attr_names(), name, |n| self.file.attr(n));
+        self.text(attribute, "the file", name)
+    }
+
+    /// A text attribute of a variable.
+    ///
+    /// # Errors
+    /// If there is no such variable, or none of that name.
+    pub fn attribute(&self, variable: &str, name: &str) -> Result<String> {
+        let dataset = self.dataset(variable)?;
+        let attribute = attribute_of(dataset.attr_names(), name, |n| dataset.attr(n));
+        self.text(attribute, &format!("variable `{variable}`"), name)
+    }
+
+    /// States of the components after the last record, in the order they were given.
+    ///
+    /// # Errors
+    /// If a state cannot be read.
+    pub fn restart(&self) -> Result<Vec<(String, Vec<f64>)>> {
+        let mut states = Restart::new();
+        for name in &self.names {
+            if let Some(component) = name.strip_prefix(RESTART_PREFIX) {
+                let state = self.array(name)?.into_raw_vec_and_offset().0;
+                states.push((component.to_owned(), state));
+            }
+        }
+        Ok(states)
+    }
+
+    /// All records, checked against the table.
+    pub(crate) fn block(&self, schema: &Schema) -> Result<Block> {
+        let age = self.sized(AGE, None)?;
+        let records = age.len();
+        let bounds = self.sized(AGE_BOUNDS, Some(2 * records))?;
+        let column =
+            |v: &crate::series::Variable| self.sized(v.name, Some(schema.size(v) * records));
+        let columns = schema.variables.iter().map(column).collect::<Result<_>>()?;
+        Ok(Block {
+            age,
+            bounds,
+            columns,
+        })
+    }
+
+    fn sized(&self, variable: &str, size: Option<usize>) -> Result<Vec<f64>> {
+        let array = self.array(variable)?;
+        if size.is_some_and(|size| size != array.len()) {
+            return Err(OutputError::Shape {
+                path: self.path.clone(),
+                variable: variable.to_owned(),
+                shape: array.shape().to_vec(),
+                needed: "the shape of the table",
+            });
+        }
+        Ok(array.into_raw_vec_and_offset().0)
+    }
+
+    fn dataset(&self, variable: &str) -> Result<Dataset> {
+        if !self.names.iter().any(|name| name == variable) {
+            return Err(OutputError::NoVariable {
+                path: self.path.clone(),
+                variable: variable.to_owned(),
+                known: self.variables().join(", "),
+            });
+        }
+        self.file
+            .dataset(variable)
+            .map_err(hdf5_at(&self.path, format!("open `{variable}`")))
+    }
+
+    fn text(
+        &self,
+        attribute: hdf5::Result<Option<Attribute>>,
+        owner: &str,
+        name: &str,
+    ) -> Result<String> {
+        let text = attribute.and_then(|found| found.map_or(Ok(None), |a| read_text(&a)));
+        let text = text.map_err(hdf5_at(
+            &self.path,
+            format!("read attribute `{name}` of {owner}"),
+        ))?;
+        text.ok_or_else(|| OutputError::NoAttribute {
+            path: self.path.clone(),
+            owner: owner.to_owned(),
+            attribute: name.to_owned(),
+        })
+    }
+}
+
+/// The attribute of that name, or `None`; an unreadable list of attributes is an error.
+fn attribute_of(
+    names: hdf5::Result<Vec<String>>,
+    name: &str,
+    open: impl FnOnce(&str) -> hdf5::Result<Attribute>,
+) -> hdf5::Result<Option<Attribute>> {
+    if names?.iter().any(|n| n == name) {
+        open(name).map(Some)
+    } else {
+        Ok(None)
+    }
+}
+
+fn is_variable(file: &File, name: &str) -> hdf5::Result<bool> {
+    let dataset = file.dataset(name)?;
+    let label = attribute_of(dataset.attr_names(), "NAME", |n| dataset.attr(n))?;
+    let label = label.map_or(Ok(None), |a| read_text(&a))?;
+    Ok(!label.is_some_and(|l| l.starts_with("This is a netCDF dimension but not")))
+}

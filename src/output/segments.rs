@@ -1,0 +1,143 @@
+//! Segment files: what a killed run leaves behind, whole and readable.
+//!
+//! Format facts: `<out>.segNNNN.tmp` is written, closed, synced and renamed to
+//! `<out>.segNNNN.nc`; then the folder is synced. Renaming within a folder is atomic (POSIX), so
+//! a file with the final name is complete: a killed run loses at most the records since its last
+//! segment. Each segment is a NetCDF-4 file of its own, with the restart state.
+
+use std::fs::{self, File, OpenOptions};
+use std::path::{Path, PathBuf};
+
+use super::error::{OutputError, Result, io_at};
+
+/// Name of segment `number` of an output.
+pub(crate) fn path(output: &Path, number: usize) -> PathBuf {
+    suffixed(output, &format!(".seg{number:04}.nc"))
+}
+
+/// Name of segment `number` while it is written.
+pub(crate) fn temporary(output: &Path, number: usize) -> PathBuf {
+    suffixed(output, &format!(".seg{number:04}.tmp"))
+}
+
+/// Name of the merged output while it is written.
+pub(crate) fn merging(output: &Path) -> PathBuf {
+    suffixed(output, ".tmp")
+}
+
+/// Folder of an output.
+pub(crate) fn folder(output: &Path) -> &Path {
+    match output.parent() {
+        Some(parent) if !parent.as_os_str().is_empty() => parent,
+        _ => Path::new("."),
+    }
+}
+
+/// Whatever unfinished runs of this output left in its folder, sorted by name.
+pub(crate) fn leftovers(output: &Path) -> Result<Vec<PathBuf>> {
+    let folder = folder(output);
+    let mut found = Vec::new();
+    for entry in fs::read_dir(folder).map_err(io_at(folder, "list"))? {
+        let path = entry.map_err(io_at(folder, "list"))?.path();
+        if is_leftover(output, &path) {
+            found.push(path);
+        }
+    }
+    found.sort();
+    Ok(found)
+}
+
+fn is_leftover(output: &Path, path: &Path) -> bool {
+    let (Some(output), Some(name)) = (output.file_name(), path.file_name()) else {
+        return false;
+    };
+    let Some(rest) = name
+        .as_encoded_bytes()
+        .strip_prefix(output.as_encoded_bytes())
+    else {
+        return false;
+    };
+    let number = rest.strip_prefix(b".seg").and_then(|rest| {
+        rest.strip_suffix(b".nc")
+            .or_else(|| rest.strip_suffix(b".tmp"))
+    });
+    rest == b".tmp" || number.is_some_and(|n| n.len() >= 4 && n.iter().all(u8::is_ascii_digit))
+}
+
+/// Deletes files.
+pub(crate) fn remove(files: &[PathBuf]) -> Result<()> {
+    for file in files {
+        fs::remove_file(file).map_err(io_at(file, "delete"))?;
+    }
+    Ok(())
+}
+
+/// Gives a finished, closed file its final name, so that a crash leaves the old or the new state.
+pub(crate) fn seal(temporary: &Path, path: &Path) -> Result<()> {
+    let file = OpenOptions::new().write(true).open(temporary);
+    let file = file.map_err(io_at(temporary, "reopen"))?;
+    file.sync_all().map_err(io_at(temporary, "sync"))?;
+    drop(file);
+    fs::rename(temporary, path).map_err(io_at(temporary, "rename"))?;
+    let folder = folder(path);
+    let handle = File::open(folder).map_err(io_at(folder, "open"))?;
+    handle.sync_all().map_err(io_at(folder, "sync"))
+}
+
+/// Makes the folder and makes sure that files can be created in it, before hours of computing.
+pub(crate) fn prepare(output: &Path) -> Result<()> {
+    let reason = if output.file_name().is_none() {
+        Some("it ends without a file name; add one")
+    } else if output.is_dir() {
+        Some("it is a folder; add a file name")
+    } else if output.to_str().is_none() {
+        Some("it is not UTF-8, which HDF5 needs; rename it")
+    } else {
+        None
+    };
+    if let Some(reason) = reason {
+        return Err(OutputError::BadPath {
+            path: output.to_owned(),
+            reason,
+        });
+    }
+    let folder = folder(output);
+    fs::create_dir_all(folder).map_err(io_at(folder, "create the folder"))?;
+    let probe = suffixed(output, ".probe");
+    let created = OpenOptions::new().write(true).create_new(true).open(&probe);
+    drop(created.map_err(io_at(&probe, "create a file in the output folder:"))?);
+    fs::remove_file(&probe).map_err(io_at(&probe, "delete"))
+}
+
+fn suffixed(output: &Path, suffix: &str) -> PathBuf {
+    let mut name = output.as_os_str().to_owned();
+    name.push(suffix);
+    PathBuf::from(name)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn only_files_of_this_output_are_leftovers() {
+        let output = Path::new("a/run.nc");
+        for name in ["run.nc.seg0000.nc", "run.nc.seg12345.tmp", "run.nc.tmp"] {
+            assert!(is_leftover(output, &Path::new("a").join(name)), "{name}");
+        }
+        for name in [
+            "run.nc",
+            "run.nc.segment.nc",
+            "run.nc.seg1.nc",
+            "xrun.nc.seg0000.nc",
+        ] {
+            assert!(!is_leftover(output, &Path::new("a").join(name)), "{name}");
+        }
+        assert_eq!(path(output, 7), Path::new("a/run.nc.seg0007.nc"));
+        assert_eq!(
+            temporary(output, 12_345),
+            Path::new("a/run.nc.seg12345.tmp")
+        );
+        assert_eq!(folder(Path::new("run.nc")), Path::new("."));
+    }
+}
