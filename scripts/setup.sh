@@ -62,8 +62,8 @@ if ! command -v cargo >/dev/null 2>&1; then
 fi
 
 missing=
-command -v cc >/dev/null 2>&1 || missing="gcc libc6-dev"
-has_hdf5 || missing="$missing libhdf5-dev"
+command -v cc >/dev/null 2>&1 || missing="gcc libc6-dev "
+has_hdf5 || missing="${missing}libhdf5-dev"
 [ -n "$missing" ] || exit 0
 
 as_root=
@@ -81,5 +81,5 @@ if command -v apt-get >/dev/null 2>&1; then
     fi
 fi
 printf 'setup: please install (names as in Debian): %s; or set HDF5_DIR to an HDF5 folder\n' \
-    "$(echo $missing)" >&2
+    "$missing" >&2
 exit 1
