@@ -15,7 +15,6 @@ use super::means::{Means, Node};
 use super::params::Params;
 use super::state::State;
 use crate::grid::calendar::Calendar;
-use crate::numerics::lanes::Rows;
 use crate::numerics::sum::{CompensatedSum, compensated};
 use crate::physics::budget::{Account, Flow, Quantity};
 use crate::physics::exchange::{Exchange, Surface};
