@@ -190,37 +190,16 @@ impl Rows {
         rows
     }
 
-    /// Number of rows.
+    /// The rows, south to north.
     #[inline(always)]
-    pub fn rows(&self) -> usize {
-        self.0.len()
+    pub fn iter(&self) -> impl Iterator<Item = Lanes> {
+        self.0.iter().map(|row| Lanes(*row))
     }
 
-    /// Row `r`.
-    ///
-    /// # Panics
-    /// When there is no such row.
+    /// The rows as arrays of four, to be changed.
     #[inline(always)]
-    pub fn at(&self, r: usize) -> Lanes {
-        Lanes(self.0[r])
-    }
-
-    /// Replaces row `r`.
-    ///
-    /// # Panics
-    /// When there is no such row.
-    #[inline(always)]
-    pub fn set(&mut self, r: usize, value: Lanes) {
-        self.0[r] = value.0;
-    }
-
-    /// Adds to row `r`.
-    ///
-    /// # Panics
-    /// When there is no such row.
-    #[inline(always)]
-    pub fn add(&mut self, r: usize, value: Lanes) {
-        self.set(r, self.at(r) + value);
+    pub fn iter_mut(&mut self) -> std::slice::IterMut<'_, [f64; WIDTH]> {
+        self.0.iter_mut()
     }
 
     /// All values in order.

@@ -12,7 +12,7 @@
 
 use super::coefficients::Coefficients;
 use super::params;
-use super::surfaces::Work;
+use super::work::Work;
 use crate::grid::latitude::LatitudeBands;
 use crate::numerics::lanes::Lanes;
 use crate::numerics::tridiagonal;
@@ -83,41 +83,38 @@ pub(super) fn assemble(c: &Coefficients, w: &mut Work, greenhouse: f64) {
     } else {
         0.0
     };
-    for r in 0..w.air.rows() {
-        let (land, ocean) = (c.land.at(r), c.ocean.at(r));
-        let per_land = land / w.land_newton.at(r);
-        let per_ocean = ocean / w.ocean_newton.at(r);
-        let air = w.air.at(r);
-        let (slope, slope_air) = (w.land_flux_slope.at(r), w.land_flux_air.at(r));
-        let (by_enthalpy, by_air) = (w.ocean_flux_enthalpy.at(r), w.ocean_flux_air.at(r));
-        let emission = c.air_emission_offset.at(r) + air * c.air_emission_slope - greenhouse;
-        let local = w.air_absorbed.at(r) - emission - w.air_lead.at(r) * storage;
-        w.air_increment.set(
-            r,
-            local
-                + land * w.land_flux.at(r)
-                + ocean * w.ocean_flux.at(r)
-                + per_land * slope * w.land_residual.at(r)
-                + per_ocean * by_enthalpy * w.ocean_residual.at(r),
-        );
-        let through_ocean = by_air + w.ocean_emission_air.at(r);
-        w.diagonal.set(
-            r,
-            land * slope_air - per_land * slope * slope_air - ocean * by_air
-                + per_ocean * by_enthalpy * through_ocean
-                + (storage + c.air_emission_slope),
-        );
+    let system = w.air_increment.iter_mut().zip(w.diagonal.iter_mut());
+    for ((row, b), (rhs, diagonal)) in w.rows.iter().zip(&c.rows).zip(system) {
+        let per_land = b.land * row.land_per_newton;
+        let per_ocean = b.ocean * row.ocean_per_newton;
+        let (slope, slope_air) = (row.land_flux_slope, row.land_flux_air);
+        let (by_enthalpy, by_air) = (row.ocean_flux_enthalpy, row.ocean_flux_air);
+        let emission = b.air_emission_offset + row.air * c.air_emission_slope - greenhouse;
+        let local = row.air_absorbed - emission - row.air_lead * storage;
+        *rhs = (local
+            + b.land * row.land_flux
+            + b.ocean * row.ocean_flux
+            + per_land * slope * row.land_residual
+            + per_ocean * by_enthalpy * row.ocean_residual)
+            .0;
+        let through_ocean = by_air + row.ocean_emission_air;
+        *diagonal = (b.land * slope_air - per_land * slope * slope_air - b.ocean * by_air
+            + per_ocean * by_enthalpy * through_ocean
+            + (storage + c.air_emission_slope))
+            .0;
     }
 }
 
 #[inline(always)]
 fn diffuse(c: &Coefficients, w: &mut Work, conductance: &[f64], moisture_k: f64, edge: &mut [f64]) {
     let n = c.bands;
-    for r in 0..w.air.rows() {
-        let energy = w.air.at(r) + w.air_humidity.at(r) * moisture_k;
-        w.static_energy.set(r, energy);
-        w.static_energy_slope
-            .set(r, w.air_humidity_slope.at(r) * moisture_k + 1.0);
+    let fields = w
+        .static_energy
+        .iter_mut()
+        .zip(w.static_energy_slope.iter_mut());
+    for (row, (energy, slope)) in w.rows.iter().zip(fields) {
+        *energy = (row.air + row.air_humidity * moisture_k).0;
+        *slope = (row.air_humidity_slope * moisture_k + 1.0).0;
     }
     let conductance = &conductance[..=n];
     edge_fluxes(conductance, w.static_energy.flat(), edge);
@@ -129,13 +126,13 @@ fn diffuse(c: &Coefficients, w: &mut Work, conductance: &[f64], moisture_k: f64,
         w.air_increment.flat_mut(),
         w.scratch.flat_mut(),
     );
-    for r in 0..w.air.rows() {
-        let moved = w.static_energy_slope.at(r) * w.air_increment.at(r);
-        w.static_energy.add(r, moved);
+    let moved = w.static_energy_slope.iter().zip(w.air_increment.iter());
+    for (energy, (slope, increment)) in w.static_energy.iter_mut().zip(moved) {
+        *energy = (Lanes(*energy) + slope * increment).0;
     }
     edge_fluxes(conductance, w.static_energy.flat(), edge);
     let convergence = &mut w.air_convergence.flat_mut()[..n];
-    let area = &c.area_m2.flat()[..n];
+    let (area, edge) = (&c.area_m2[..n], &edge[..=n]);
     for i in 0..n {
         convergence[i] = (edge[i] - edge[i + 1]) / area[i];
     }
@@ -146,7 +143,7 @@ fn diffuse(c: &Coefficients, w: &mut Work, conductance: &[f64], moisture_k: f64,
 fn system(c: &Coefficients, w: &mut Work, conductance: &[f64], edge: &[f64]) {
     let n = c.bands;
     let slope = &w.static_energy_slope.flat()[..n];
-    let area = &c.area_m2.flat()[..n];
+    let (area, edge) = (&c.area_m2[..n], &edge[..=n]);
     let (lower, upper) = (&mut w.lower.flat_mut()[..n], &mut w.upper.flat_mut()[..n]);
     let (diagonal, rhs) = (
         &mut w.diagonal.flat_mut()[..n],
@@ -176,27 +173,36 @@ fn edge_fluxes(conductance: &[f64], energy: &[f64], edge: &mut [f64]) {
 #[inline(always)]
 fn relax(c: &Coefficients, w: &mut Work, rate: f64, edge: &mut [f64]) {
     let n = c.bands;
-    let area = &c.area_m2.flat()[..n];
+    let area = &c.area_m2[..n];
     let total: f64 = area.iter().sum();
     let mean = |field: &[f64]| area.iter().zip(field).map(|(a, v)| a * v).sum::<f64>() / total;
-    let mean_now = mean(w.air.flat());
-    for r in 0..w.air.rows() {
-        let per = Lanes::splat(1.0) / (w.diagonal.at(r) + rate);
-        let local = w.air_increment.at(r) + (Lanes::splat(mean_now) - w.air.at(r)) * rate;
-        w.air_increment.set(r, local * per);
-        w.scratch.set(r, per);
+    for (row, air) in w.rows.iter().zip(w.static_energy.iter_mut()) {
+        *air = row.air.0;
     }
-    let mean_increment = mean(w.air_increment.flat()) / (1.0 - rate * mean(w.scratch.flat()));
-    for r in 0..w.air.rows() {
-        let share = w.scratch.at(r) * (rate * mean_increment);
-        w.air_increment.add(r, share);
-        w.static_energy.set(r, w.air.at(r) + w.air_increment.at(r));
+    let mean_now = mean(w.static_energy.flat());
+    for (row, increment) in w.rows.iter().zip(w.air_increment.iter_mut()) {
+        *increment = (Lanes(*increment) + (Lanes::splat(mean_now) - row.air) * rate).0;
     }
-    let mean_new = mean(w.static_energy.flat());
+    let (increment, diagonal) = (
+        &mut w.air_increment.flat_mut()[..n],
+        &w.diagonal.flat()[..n],
+    );
+    let per = &mut w.scratch.flat_mut()[..n];
+    for i in 0..n {
+        per[i] = 1.0 / (diagonal[i] + rate);
+        increment[i] *= per[i];
+    }
+    let mean_increment = mean(increment) / (1.0 - rate * mean(per));
+    let air = &mut w.static_energy.flat_mut()[..n];
+    for i in 0..n {
+        increment[i] += rate * mean_increment * per[i];
+        air[i] += increment[i];
+    }
+    let mean_new = mean(air);
     let convergence = &mut w.air_convergence.flat_mut()[..n];
     edge[0] = 0.0;
     for i in 0..n {
-        convergence[i] = rate * (mean_new - w.static_energy.flat()[i]);
+        convergence[i] = rate * (mean_new - air[i]);
         edge[i + 1] = edge[i] - convergence[i] * area[i];
     }
     edge[n] = 0.0;

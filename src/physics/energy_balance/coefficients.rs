@@ -5,7 +5,7 @@
 
 use super::params::{Albedo, Emitter, Params};
 use crate::grid::calendar::MonthWeights;
-use crate::numerics::lanes::Rows;
+use crate::numerics::lanes::{Lanes, WIDTH};
 use crate::numerics::tridiagonal::Factored;
 use crate::physics::exchange::Surface;
 use crate::physics::{Setting, saturation::saturation_humidity, smooth_step};
@@ -18,7 +18,34 @@ use std::f64::consts::PI;
 /// Temperature at which the radiative surface flux equals `R0`, K.
 const RADIATIVE_REFERENCE_K: f64 = 288.0;
 
-/// Everything constant in a time step. Fields over bands unless said otherwise.
+/// What is constant in a time step and differs from band to band, for four bands.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct BandRow {
+    pub area_m2: Lanes,
+    pub land: Lanes,
+    pub ocean: Lanes,
+    pub ocean_area_m2: Lanes,
+    /// 1 / ocean area, zero where there is no ocean, m-2.
+    pub per_ocean_area: Lanes,
+    /// One where there is ocean, else zero.
+    pub has_ocean: Lanes,
+    /// Gamma z: land temperature excess when brought to sea level, K.
+    pub elevation_k: Lanes,
+    /// 1 / (heat capacity of the mixed layer), m2 K J-1.
+    pub per_water_capacity: Lanes,
+    pub air_emission_offset: Lanes,
+    pub water_albedo: Lanes,
+    pub snow_albedo: Lanes,
+    pub ice_albedo: Lanes,
+    /// Fraction of land under permanent ice.
+    pub sheet: Lanes,
+    /// Ocean area times deep-sinking window, m2.
+    pub deep_window: Lanes,
+    /// Ocean area times subtropical window, m2.
+    pub subtropical_window: Lanes,
+}
+
+/// Everything constant in a time step.
 #[derive(Clone, Debug)]
 pub(super) struct Coefficients {
     pub bands: usize,
@@ -27,30 +54,19 @@ pub(super) struct Coefficients {
     /// gamma of the third-order formula: 6 h / 11, s.
     pub gamma_s: f64,
     pub months: MonthWeights,
-
-    pub area_m2: Rows,
-    pub land: Rows,
-    pub ocean: Rows,
-    pub ocean_area_m2: Rows,
-    /// 1 / ocean area, zero where there is no ocean, m-2.
-    pub per_ocean_area: Rows,
-    /// One where there is ocean, else zero.
-    pub has_ocean: Rows,
-    /// Gamma z: land temperature excess when brought to sea level, K.
-    pub elevation_k: Rows,
+    pub rows: Vec<BandRow>,
+    /// Area and 1 / ocean area of each band once more, for the loops along the meridian.
+    pub area_m2: Vec<f64>,
+    pub per_ocean_area: Vec<f64>,
 
     pub air_share: f64,
     pub air_capacity: f64,
     pub land_capacity: f64,
-    pub water_capacity: Rows,
-    /// 1 / (heat capacity of the mixed layer), m2 K J-1.
-    pub per_water_capacity: Rows,
     /// Heat capacity of the seasonal thermocline, J m-2 K-1.
     pub sub_capacity: f64,
     /// Exchange with it seen by a step, lambda / (1 + gamma lambda / C), W m-2 K-1.
     pub sub_exchange: f64,
 
-    pub air_emission_offset: Rows,
     pub air_emission_slope: f64,
     pub surface_emission_offset: f64,
     pub surface_emission_slope: f64,
@@ -64,14 +80,9 @@ pub(super) struct Coefficients {
     /// Radiative plus latent flux of water at the freezing point without the air's part, W m-2.
     pub freezing_flux: f64,
 
-    pub water_albedo: Rows,
     pub water_zenith: f64,
     pub land_excess: f64,
-    pub snow_albedo: Rows,
-    pub ice_albedo: Rows,
     pub sheet_albedo: f64,
-    /// Fraction of land under permanent ice.
-    pub sheet: Rows,
     pub snow_temperature: f64,
     pub snow_steepness: f64,
 
@@ -81,17 +92,13 @@ pub(super) struct Coefficients {
     /// Gyre conductance of each edge, W K-1, `bands + 1`.
     pub gyre_conductance: Vec<f64>,
     pub gyre_factors: Factored,
-    /// Ocean area times deep-sinking window, m2.
-    pub deep_window: Rows,
-    /// Ocean area times subtropical window, m2.
-    pub subtropical_window: Rows,
     pub loss_smoothing_squared: f64,
     pub per_convection_temperature: f64,
 }
 
-/// Newton slope of the land may not fall below this share of its storage term: keeps the step
-/// well posed should the albedo feedback ever outrun it (never seen at 24 steps a year or more).
-pub(super) const LEAST_LAND_SLOPE: f64 = 0.25;
+/// Newton slopes of land and ocean may not fall below this share of their storage term: keeps a
+/// step well posed should the albedo feedback ever outrun it (not seen at 24 steps or more).
+pub(super) const LEAST_NEWTON_SHARE: f64 = 0.25;
 
 /// Ice thinner than this is treated as this thick in the conductance, m (keeps k/h finite; the
 /// flux k phi/h tends to k/h0 and does not depend on it).
@@ -101,100 +108,56 @@ impl Coefficients {
     pub(super) fn new(p: &Params, setting: &Setting) -> Self {
         let (surface, steps) = (&setting.surface, setting.steps_per_year());
         let bands = &surface.bands;
-        let n = bands.len();
         let step_s = YEAR_SECONDS / steps as f64;
         let gamma_s = 6.0 * step_s / 11.0;
-        let ocean_flag: Vec<f64> = surface
-            .ocean_area_m2
-            .iter()
-            .map(|a| f64::from(u8::from(*a > 0.0)))
-            .collect();
-        let ocean: Vec<f64> = surface
-            .land_fraction
-            .iter()
-            .zip(&ocean_flag)
-            .map(|(f, o)| (1.0 - f) * o)
-            .collect();
-        let depth: Vec<f64> = mixed_layer_depth(p, bands.centre_deg());
+        let depth = mixed_layer_depth(p, bands.centre_deg());
         let capacity: Vec<f64> = depth
             .iter()
             .map(|d| SEA_WATER_HEAT_CAPACITY_J_M3_K * d)
             .collect();
-        let elevation: Vec<f64> = surface
-            .land_elevation_m
-            .iter()
-            .map(|z| p.lapse_rate_k_m * z)
-            .collect();
         let (sub_capacity, sub_exchange) = seasonal_layer(p, gamma_s);
         let gyre_conductance = gyre(p, surface);
-        let gyre_factors = gyre_matrix(surface, &capacity, &gyre_conductance, gamma_s);
         let optics = Optics::new(p, surface);
         let radiative = p.surface_exchange.radiative_w_m2 / RADIATIVE_REFERENCE_K.powi(4);
         let freezing_k = SEA_WATER_FREEZING_C + CELSIUS_ZERO_K;
-        let freezing_flux = radiative * freezing_k.powi(4)
-            + p.surface_exchange.latent_w_m2 * saturation_humidity(SEA_WATER_FREEZING_C);
+        let latent = p.surface_exchange.latent_w_m2;
         let (air_on, surface_on) = match p.longwave.emitter {
             Emitter::Air => (1.0, 0.0),
             Emitter::Surface => (0.0, 1.0),
         };
-        let slope = p.longwave.slope_w_m2_k;
-        let air_emission: Vec<f64> = surface
-            .land_fraction
-            .iter()
-            .zip(&elevation)
-            .map(|(f, e)| air_on * (p.longwave.offset_w_m2 - slope * f * e))
-            .collect();
         Self {
-            bands: n,
+            bands: bands.len(),
             steps,
             step_s,
             gamma_s,
             months: setting.months.clone(),
-            area_m2: Rows::from_slice(bands.area_m2()),
-            land: Rows::from_slice(&surface.land_fraction),
-            ocean: Rows::from_slice(&ocean),
-            ocean_area_m2: Rows::from_slice(&surface.ocean_area_m2),
-            per_ocean_area: Rows::from_slice(&inverse(&surface.ocean_area_m2)),
-            has_ocean: Rows::from_slice(&ocean_flag),
-            elevation_k: Rows::from_slice(&elevation),
+            rows: band_rows(p, surface, &capacity, &optics, air_on),
+            area_m2: bands.area_m2().to_vec(),
+            per_ocean_area: inverse(&surface.ocean_area_m2),
             air_share: p.air_shortwave_share,
             air_capacity: p.air_heat_capacity_j_m2_k,
             land_capacity: p.land_heat_capacity_j_m2_k,
-            per_water_capacity: Rows::from_slice(&inverse(&capacity)),
-            water_capacity: Rows::from_slice(&capacity),
             sub_capacity,
             sub_exchange,
-            air_emission_offset: Rows::from_slice(&air_emission),
-            air_emission_slope: air_on * slope,
+            air_emission_slope: air_on * p.longwave.slope_w_m2_k,
             surface_emission_offset: surface_on * p.longwave.offset_w_m2,
-            surface_emission_slope: surface_on * slope,
+            surface_emission_slope: surface_on * p.longwave.slope_w_m2_k,
             radiative,
             sensible: p.surface_exchange.sensible_w_m2_k,
-            latent: p.surface_exchange.latent_w_m2,
+            latent,
             air_humidity: p.surface_exchange.air_relative_humidity,
             land_wetness: p.surface_exchange.land_wetness,
-            freezing_flux,
-            water_albedo: optics.water,
+            freezing_flux: radiative * freezing_k.powi(4)
+                + latent * saturation_humidity(SEA_WATER_FREEZING_C),
             water_zenith: optics.zenith,
             land_excess: optics.land_excess,
-            snow_albedo: Rows::new(n, optics.snow),
-            ice_albedo: Rows::new(n, optics.ice),
             sheet_albedo: optics.sheet_albedo,
-            sheet: optics.sheet,
             snow_temperature: optics.snow_temperature,
             snow_steepness: optics.snow_steepness,
             cover_thickness: p.sea_ice.cover_thickness_m,
             conductivity: p.sea_ice.conductivity_w_m_k,
+            gyre_factors: gyre_matrix(surface, &capacity, &gyre_conductance, gamma_s),
             gyre_conductance,
-            gyre_factors,
-            deep_window: window(surface, |lat| {
-                smooth_step(lat, p.sinking.deep_latitude_deg, p.sinking.edge_width_deg)
-            }),
-            subtropical_window: window(surface, |lat| {
-                let [low, high] = p.sinking.subtropical_latitudes_deg;
-                let width = p.sinking.edge_width_deg;
-                smooth_step(lat, low, width) * (1.0 - smooth_step(lat, high, width))
-            }),
             loss_smoothing_squared: p.sinking.loss_smoothing_w_m2.powi(2),
             per_convection_temperature: 1.0 / p.sinking.convection_temperature_k,
         }
@@ -206,15 +169,76 @@ impl Coefficients {
     }
 }
 
+/// The constants of each band, in rows of four.
+fn band_rows(
+    p: &Params,
+    surface: &Surface,
+    capacity: &[f64],
+    optics: &Optics,
+    air_on: f64,
+) -> Vec<BandRow> {
+    let s = &p.sinking;
+    let ocean_flag: Vec<f64> = surface
+        .ocean_area_m2
+        .iter()
+        .map(|a| f64::from(u8::from(*a > 0.0)))
+        .collect();
+    let ocean: Vec<f64> = surface
+        .land_fraction
+        .iter()
+        .zip(&ocean_flag)
+        .map(|(f, o)| (1.0 - f) * o)
+        .collect();
+    let elevation: Vec<f64> = surface
+        .land_elevation_m
+        .iter()
+        .map(|z| p.lapse_rate_k_m * z)
+        .collect();
+    let air_emission: Vec<f64> = surface
+        .land_fraction
+        .iter()
+        .zip(&elevation)
+        .map(|(f, e)| air_on * (p.longwave.offset_w_m2 - p.longwave.slope_w_m2_k * f * e))
+        .collect();
+    let deep = window(surface, |lat| {
+        smooth_step(lat, s.deep_latitude_deg, s.edge_width_deg)
+    });
+    let subtropical = window(surface, |lat| {
+        let [low, high] = s.subtropical_latitudes_deg;
+        smooth_step(lat, low, s.edge_width_deg) * (1.0 - smooth_step(lat, high, s.edge_width_deg))
+    });
+    let (per_ocean, per_capacity) = (inverse(&surface.ocean_area_m2), inverse(capacity));
+    (0..surface.bands.len())
+        .step_by(WIDTH)
+        .map(|i| BandRow {
+            area_m2: Lanes::load(surface.bands.area_m2(), i),
+            land: Lanes::load(&surface.land_fraction, i),
+            ocean: Lanes::load(&ocean, i),
+            ocean_area_m2: Lanes::load(&surface.ocean_area_m2, i),
+            per_ocean_area: Lanes::load(&per_ocean, i),
+            has_ocean: Lanes::load(&ocean_flag, i),
+            elevation_k: Lanes::load(&elevation, i),
+            per_water_capacity: Lanes::load(&per_capacity, i),
+            air_emission_offset: Lanes::load(&air_emission, i),
+            water_albedo: Lanes::load(&optics.water, i),
+            snow_albedo: Lanes::splat(optics.snow),
+            ice_albedo: Lanes::splat(optics.ice),
+            sheet: Lanes::load(&optics.sheet, i),
+            deep_window: Lanes::load(&deep, i),
+            subtropical_window: Lanes::load(&subtropical, i),
+        })
+        .collect()
+}
+
 /// The albedo set-up as plain numbers; an ice-line set-up starts from zero and is renewed.
 struct Optics {
-    water: Rows,
+    water: Vec<f64>,
     zenith: f64,
     land_excess: f64,
     snow: f64,
     ice: f64,
     sheet_albedo: f64,
-    sheet: Rows,
+    sheet: Vec<f64>,
     snow_temperature: f64,
     snow_steepness: f64,
 }
@@ -242,25 +266,25 @@ impl Optics {
                     .map(|(x, p2)| water + water_sine * x + water_second_legendre * p2)
                     .collect();
                 Self {
-                    water: Rows::from_slice(&by_band),
+                    water: by_band,
                     zenith: *water_zenith,
                     land_excess: *land_excess,
                     snow: *snow,
                     ice: *sea_ice,
                     sheet_albedo: *ice_sheet,
-                    sheet: Rows::from_slice(&surface.ice_sheet_fraction),
+                    sheet: surface.ice_sheet_fraction.clone(),
                     snow_temperature: *snow_temperature_c,
                     snow_steepness: 2.0 / snow_width_k,
                 }
             }
             Albedo::IceLine { .. } => Self {
-                water: Rows::new(bands.len(), 0.0),
+                water: vec![0.0; bands.len()],
                 zenith: 0.0,
                 land_excess: 0.0,
                 snow: 0.0,
                 ice: 0.0,
                 sheet_albedo: 0.0,
-                sheet: Rows::new(bands.len(), 0.0),
+                sheet: vec![0.0; bands.len()],
                 snow_temperature: 0.0,
                 snow_steepness: 1.0,
             },
@@ -275,14 +299,14 @@ fn inverse(values: &[f64]) -> Vec<f64> {
         .collect()
 }
 
-fn window(surface: &Surface, shape: impl Fn(f64) -> f64) -> Rows {
-    let weights: Vec<f64> = surface
+fn window(surface: &Surface, shape: impl Fn(f64) -> f64) -> Vec<f64> {
+    let latitudes = surface.bands.centre_deg();
+    surface
         .ocean_area_m2
         .iter()
-        .zip(surface.bands.centre_deg())
+        .zip(latitudes)
         .map(|(area, lat)| area * shape(lat.abs()))
-        .collect();
-    Rows::from_slice(&weights)
+        .collect()
 }
 
 fn mixed_layer_depth(p: &Params, latitude_deg: &[f64]) -> Vec<f64> {

@@ -18,7 +18,7 @@
 //! delta is of the size of the extrapolation error.
 
 use super::coefficients::Coefficients;
-use super::surfaces::Work;
+use super::work::Work;
 use crate::numerics::lanes::Lanes;
 use crate::units::{SEA_WATER_FREEZING_C, SEA_WATER_HEAT_CAPACITY_J_M3_K};
 
@@ -49,10 +49,12 @@ pub(super) fn transport(
 ) -> f64 {
     let deep_heat = sinking_rates(c, w, column);
     advect(c, w, column, edge_flux_w);
-    for r in 0..w.ocean_transport.rows() {
-        let brought = w.ocean_transport.at(r) * c.per_ocean_area.at(r);
-        w.ocean_transport.set(r, brought);
-        w.ocean_residual.add(r, brought);
+    let rows = w.rows.iter_mut().zip(&c.rows).zip(w.brought.iter_mut());
+    for (((row, b), brought), correction) in rows.zip(w.correction.iter_mut()) {
+        let gained = Lanes(*brought) * b.per_ocean_area;
+        *brought = gained.0;
+        row.ocean_residual += gained;
+        *correction = (row.open_water * b.ocean_area_m2 * row.ocean_residual).0;
     }
     correct_gyres(c, w, edge_flux_w);
     deep_heat
@@ -61,28 +63,25 @@ pub(super) fn transport(
 #[inline(always)]
 fn sinking_rates(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>) -> f64 {
     let (mut deep_sum, mut shallow_sum) = (Lanes::splat(0.0), Lanes::splat(0.0));
-    for r in 0..w.air.rows() {
-        let loss = w.ocean_flux.at(r) + w.ocean_emission.at(r) - w.ocean_absorbed.at(r);
+    for ((row, b), sinking) in w.rows.iter_mut().zip(&c.rows).zip(w.sinking.iter_mut()) {
+        let loss = row.ocean_flux + row.ocean_emission - row.ocean_absorbed;
         let positive = (loss + (loss * loss + c.loss_smoothing_squared).sqrt()) * 0.5;
-        let above_freezing = w.water_temperature.at(r) - SEA_WATER_FREEZING_C;
+        let above_freezing = row.water_temperature - SEA_WATER_FREEZING_C;
         let cold = (above_freezing * -c.per_convection_temperature).exp();
-        let open = (Lanes::splat(1.0) - w.ice_cover.at(r)).max(Lanes::splat(LEAST_OPEN));
-        let deep = c.deep_window.at(r) * open * positive * cold;
-        let shallow = c.subtropical_window.at(r) * positive;
-        deep_sum += deep;
+        let open = (Lanes::splat(1.0) - row.ice_cover).max(Lanes::splat(LEAST_OPEN));
+        row.deep_sinking = b.deep_window * open * positive * cold;
+        let shallow = b.subtropical_window * positive;
+        deep_sum += row.deep_sinking;
         shallow_sum += shallow;
-        w.deep_sinking.set(r, deep);
-        w.sinking.set(r, shallow);
+        *sinking = shallow.0;
     }
     let deep_scale = per(column.deep_sinking_m3_s, deep_sum.sum());
     let shallow_scale = per(column.subtropical_sinking_m3_s, shallow_sum.sum());
     let mut deep_heat = Lanes::splat(0.0);
-    for r in 0..w.air.rows() {
-        let deep = w.deep_sinking.at(r) * deep_scale;
-        let shallow = w.sinking.at(r) * shallow_scale;
-        deep_heat += deep * w.water_temperature.at(r);
-        w.deep_sinking.set(r, deep);
-        w.sinking.set(r, deep + shallow);
+    for (row, sinking) in w.rows.iter_mut().zip(w.sinking.iter_mut()) {
+        row.deep_sinking = row.deep_sinking * deep_scale;
+        deep_heat += row.deep_sinking * row.water_temperature;
+        *sinking = (row.deep_sinking + Lanes(*sinking) * shallow_scale).0;
     }
     deep_heat.sum()
 }
@@ -101,7 +100,7 @@ fn advect(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>, edge_flux_w: &
     let sinking = &w.sinking.flat()[..n];
     let (upwelling, heat) = (&column.upwelling_m3_s[..n], &column.heat_w[..n]);
     let conductance = &c.gyre_conductance[..=n];
-    let into = &mut w.ocean_transport.flat_mut()[..n];
+    let brought = &mut w.brought.flat_mut()[..n];
     let edge = &mut edge_flux_w[..=n];
     let mut flow = 0.0;
     edge[0] = 0.0;
@@ -117,25 +116,20 @@ fn advect(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>, edge_flux_w: &
             - conductance[j] * (temperature[j] - temperature[j - 1]);
     }
     for i in 0..n {
-        into[i] = edge[i] - edge[i + 1] + heat[i]
+        brought[i] = edge[i] - edge[i + 1] + heat[i]
             - SEA_WATER_HEAT_CAPACITY_J_M3_K * (sinking[i] * temperature[i]);
     }
 }
 
+/// Solves for the correction and adds its fluxes; `correction` ends as heat gained, W m-2.
 #[inline(always)]
 fn correct_gyres(c: &Coefficients, w: &mut Work, edge_flux_w: &mut [f64]) {
-    for r in 0..w.air.rows() {
-        let open = w.open_water.at(r) * c.ocean_area_m2.at(r);
-        w.correction.set(r, open * w.ocean_residual.at(r));
-    }
     c.gyre_factors.solve(w.correction.flat_mut());
     let n = c.bands;
-    let delta = &w.correction.flat()[..n];
+    let delta = &mut w.correction.flat_mut()[..n];
     let conductance = &c.gyre_conductance[..=n];
-    let area = &c.per_ocean_area.flat()[..n];
+    let area = &c.per_ocean_area[..n];
     let edge = &mut edge_flux_w[..=n];
-    let residual = &mut w.ocean_residual.flat_mut()[..n];
-    let brought = &mut w.ocean_transport.flat_mut()[..n];
     let mut below = 0.0;
     for i in 0..n {
         let above = if i + 1 < n {
@@ -143,10 +137,13 @@ fn correct_gyres(c: &Coefficients, w: &mut Work, edge_flux_w: &mut [f64]) {
         } else {
             0.0
         };
-        let gained = (below - above) * area[i];
-        residual[i] += gained;
-        brought[i] += gained;
+        delta[i] = (below - above) * area[i];
         edge[i + 1] += above;
         below = above;
+    }
+    let fields = w.brought.iter_mut().zip(w.correction.iter());
+    for (row, (brought, gained)) in w.rows.iter_mut().zip(fields) {
+        row.ocean_residual += gained;
+        *brought = (Lanes(*brought) + gained).0;
     }
 }

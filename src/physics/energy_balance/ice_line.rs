@@ -8,6 +8,7 @@
 use super::coefficients::Coefficients;
 use super::params::{Albedo, IceEdge};
 use crate::grid::latitude::LatitudeBands;
+use crate::numerics::lanes::WIDTH;
 
 /// The edge rule with the grid it acts on.
 #[derive(Clone, Debug)]
@@ -60,8 +61,13 @@ impl IceLine {
                 self.ice
             };
             let albedo = share * free + (1.0 - share) * self.ice;
-            for rows in [&mut c.water_albedo, &mut c.snow_albedo, &mut c.ice_albedo] {
-                rows.flat_mut()[i] = albedo;
+            let row = &mut c.rows[i / WIDTH];
+            for lanes in [
+                &mut row.water_albedo,
+                &mut row.snow_albedo,
+                &mut row.ice_albedo,
+            ] {
+                lanes.0[i % WIDTH] = albedo;
             }
         }
     }

@@ -4,109 +4,114 @@
 //! the ends of the steps; fluxes count equally in each step, as the conserved heat does.
 
 use super::coefficients::Coefficients;
-use super::surfaces::Work;
-use crate::numerics::lanes::{Lanes, Rows};
+use super::state::StateRow;
+use super::work::Work;
+use crate::numerics::lanes::{Lanes, Rows, WIDTH};
 use crate::numerics::sum::CompensatedSum;
+use crate::units::SEA_WATER_FREEZING_C;
 
-macro_rules! node_fields {
-    ($($(#[$doc:meta])* $field:ident),* $(,)?) => {
-        /// Fields at one instant, one value per band.
-        #[derive(Clone, Debug)]
-        pub(super) struct Node { $($(#[$doc])* pub $field: Rows),* }
-        impl Node {
-            pub(super) fn new(bands: usize) -> Self {
-                Self { $($field: Rows::new(bands, 0.0)),* }
-            }
-            pub(super) fn fields(&self) -> [&Rows; FIELDS] { [$(&self.$field),*] }
-            pub(super) fn fields_mut(&mut self) -> [&mut Rows; FIELDS] { [$(&mut self.$field),*] }
-        }
-    };
+/// Fields that are averaged over the months.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Field {
+    /// Air temperature at sea level, degC.
+    Air,
+    /// Land surface temperature, degC.
+    Land,
+    /// Mixed-layer temperature, degC.
+    Water,
+    /// Temperature of the ocean's surface, water and ice, degC.
+    OceanSurface,
+    /// Snow cover of land without ice sheet, 0-1.
+    Snow,
+    /// Ice cover of the ocean, 0-1.
+    IceCover,
+    /// Mean ice thickness over the ocean, m.
+    IceThickness,
+    /// Insolation, W m-2.
+    Insolation,
 }
 
-/// Number of fields in a [`Node`].
+/// Number of [`Field`]s.
 pub(super) const FIELDS: usize = 8;
 
-node_fields! {
-    /// Air temperature at sea level, degC.
-    air,
-    /// Land surface temperature, degC.
-    land,
-    /// Mixed-layer temperature, degC.
-    water,
-    /// Temperature of the ocean's surface, water and ice, degC.
-    ocean_surface,
-    /// Snow cover of land without ice sheet, 0-1.
-    snow,
-    /// Ice cover of the ocean, 0-1.
-    ice_cover,
-    /// Mean ice thickness over the ocean, m.
-    ice_thickness,
-    /// Insolation, W m-2.
-    insolation,
+/// A sum over the steps with its rounding error carried along.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct LaneSum {
+    sum: Lanes,
+    lost: Lanes,
 }
 
-/// Sums over the steps, one per band, with the rounding error of each carried along.
-#[derive(Clone, Debug)]
-pub(super) struct RowSums {
-    sum: Rows,
-    lost: Rows,
+impl LaneSum {
+    #[inline(always)]
+    pub(super) fn add(&mut self, value: Lanes) {
+        let after = self.sum + value;
+        let added = after - self.sum;
+        self.lost += (self.sum - (after - added)) + (value - added);
+        self.sum = after;
+    }
 }
 
-impl RowSums {
-    fn new(bands: usize) -> Self {
-        Self {
-            sum: Rows::new(bands, 0.0),
-            lost: Rows::new(bands, 0.0),
-        }
+/// Sums of one year for four bands; fluxes in W m-2 of band (ocean's: of ocean).
+#[derive(Clone, Copy, Debug)]
+pub(super) struct MeanRow {
+    /// Fields at the last instant, carried over New Year.
+    node: [Lanes; FIELDS],
+    pub absorbed_air: LaneSum,
+    pub absorbed_land: LaneSum,
+    pub absorbed_ocean: LaneSum,
+    pub emitted: LaneSum,
+    pub air_input: Lanes,
+    pub ocean_gain: Lanes,
+    pub gross_loss: Lanes,
+}
+
+impl MeanRow {
+    /// Fields of the start state, which has no ice and no snow.
+    fn new(state: &StateRow) -> Self {
+        let mut row = Self {
+            node: [Lanes::splat(0.0); FIELDS],
+            ..Self::empty()
+        };
+        row.set(Field::Air, state.air.now);
+        row.set(Field::Land, state.land.now);
+        row.set(Field::Water, state.sub.now);
+        row.set(
+            Field::OceanSurface,
+            state.sub.now.max(Lanes::splat(SEA_WATER_FREEZING_C)),
+        );
+        row
     }
 
-    fn clear(&mut self) {
-        self.sum.fill(0.0);
-        self.lost.fill(0.0);
+    fn empty() -> Self {
+        let zero = Lanes::splat(0.0);
+        let sum = LaneSum {
+            sum: zero,
+            lost: zero,
+        };
+        Self {
+            node: [zero; FIELDS],
+            absorbed_air: sum,
+            absorbed_land: sum,
+            absorbed_ocean: sum,
+            emitted: sum,
+            air_input: zero,
+            ocean_gain: zero,
+            gross_loss: zero,
+        }
     }
 
     #[inline(always)]
-    pub(super) fn add(&mut self, r: usize, value: Lanes) {
-        let before = self.sum.at(r);
-        let after = before + value;
-        let added = after - before;
-        self.lost
-            .add(r, (before - (after - added)) + (value - added));
-        self.sum.set(r, after);
-    }
-
-    /// The sum of band `i`.
-    pub(super) fn band(&self, i: usize) -> f64 {
-        self.sum.flat()[i] + self.lost.flat()[i]
-    }
-
-    /// Sum over all bands, each with its weight, times `factor`.
-    pub(super) fn weighted(&self, weight: &[f64], factor: f64) -> CompensatedSum {
-        let mut total = CompensatedSum::default();
-        for ((sum, lost), weight) in self.sum.flat().iter().zip(self.lost.flat()).zip(weight) {
-            let scaled = factor * weight;
-            total.add_product(scaled, *sum);
-            total.add_product(scaled, *lost);
-        }
-        total
+    pub(super) fn set(&mut self, field: Field, value: Lanes) {
+        self.node[field as usize] = value;
     }
 }
 
 /// Sums of one year.
 #[derive(Clone, Debug)]
 pub(super) struct Means {
-    /// Fields at the last instant, carried over New Year.
-    pub node: Node,
-    /// Monthly means.
-    pub monthly: Vec<Node>,
-    /// Sums over the steps, W m-2 of band (ocean: of ocean).
-    pub absorbed_air: RowSums,
-    pub absorbed_land: RowSums,
-    pub absorbed_ocean: RowSums,
-    pub emitted: RowSums,
-    pub air_input: Rows,
-    pub ocean_gain: Rows,
-    pub gross_loss: Rows,
+    pub rows: Vec<MeanRow>,
+    /// Monthly means, month after month.
+    monthly: Vec<[Lanes; FIELDS]>,
     /// Flux through the edges summed over the steps, W.
     pub air_flux_w: Vec<f64>,
     pub ocean_flux_w: Vec<f64>,
@@ -118,19 +123,12 @@ pub(super) struct Means {
 }
 
 impl Means {
-    pub(super) fn new(bands: usize) -> Self {
-        let zero = Rows::new(bands, 0.0);
-        let twelve = || vec![zero.clone(); 12];
+    pub(super) fn new(start: &[StateRow]) -> Self {
+        let bands = start.len() * WIDTH;
+        let twelve = || vec![Rows::new(bands, 0.0); 12];
         Self {
-            node: Node::new(bands),
-            monthly: vec![Node::new(bands); 12],
-            absorbed_air: RowSums::new(bands),
-            absorbed_land: RowSums::new(bands),
-            absorbed_ocean: RowSums::new(bands),
-            emitted: RowSums::new(bands),
-            air_input: zero.clone(),
-            ocean_gain: zero.clone(),
-            gross_loss: zero.clone(),
+            rows: start.iter().map(MeanRow::new).collect(),
+            monthly: vec![[Lanes::splat(0.0); FIELDS]; 12 * start.len()],
             air_flux_w: vec![0.0; bands + 1],
             ocean_flux_w: vec![0.0; bands + 1],
             sunk: twelve(),
@@ -141,25 +139,12 @@ impl Means {
 
     /// Forgets last year, except the instant it ended with.
     pub(super) fn begin_year(&mut self, c: &Coefficients) {
-        for node in &mut self.monthly {
-            node.fields_mut()
-                .into_iter()
-                .for_each(|rows| rows.fill(0.0));
-        }
-        for sums in [
-            &mut self.absorbed_air,
-            &mut self.absorbed_land,
-            &mut self.absorbed_ocean,
-            &mut self.emitted,
-        ] {
-            sums.clear();
-        }
-        for rows in [
-            &mut self.air_input,
-            &mut self.ocean_gain,
-            &mut self.gross_loss,
-        ] {
-            rows.fill(0.0);
+        self.monthly.fill([Lanes::splat(0.0); FIELDS]);
+        for row in &mut self.rows {
+            *row = MeanRow {
+                node: row.node,
+                ..MeanRow::empty()
+            };
         }
         self.sunk
             .iter_mut()
@@ -174,11 +159,12 @@ impl Means {
     /// Adds the fields of the present instant, node `k` of the year, to the months it touches.
     #[inline(always)]
     pub(super) fn count_node(&mut self, c: &Coefficients, k: usize) {
+        let length = self.rows.len();
         for &(month, weight) in c.months.node(k) {
-            let sums = self.monthly[month].fields_mut();
-            for (sum, field) in sums.into_iter().zip(self.node.fields()) {
-                for r in 0..field.rows() {
-                    sum.add(r, field.at(r) * weight);
+            let sums = &mut self.monthly[month * length..(month + 1) * length];
+            for (sum, row) in sums.iter_mut().zip(&self.rows) {
+                for (sum, value) in sum.iter_mut().zip(&row.node) {
+                    *sum += *value * weight;
                 }
             }
         }
@@ -188,15 +174,70 @@ impl Means {
     #[inline(always)]
     pub(super) fn count_step(&mut self, c: &Coefficients, w: &Work, k: usize, edges: &EdgeFluxes) {
         let month = c.months.month_of_step(k);
-        let (volume, heat) = (&mut self.sunk[month], &mut self.sunk_heat[month]);
-        for r in 0..w.sinking.rows() {
-            let sunk = w.sinking.at(r) * c.step_s;
-            volume.add(r, sunk);
-            heat.add(r, sunk * w.water_temperature.at(r));
+        let booked = self.sunk[month]
+            .iter_mut()
+            .zip(self.sunk_heat[month].iter_mut());
+        let sinking = w.sinking.iter().zip(w.water_temperature.iter());
+        for ((volume, heat), (rate, temperature)) in booked.zip(sinking) {
+            let sunk = rate * c.step_s;
+            *volume = (Lanes(*volume) + sunk).0;
+            *heat = (Lanes(*heat) + sunk * temperature).0;
         }
         add_all(&mut self.air_flux_w, &edges.air_w);
         add_all(&mut self.ocean_flux_w, &edges.ocean_w);
         self.deep_heat += edges.deep_heat;
+    }
+
+    /// Monthly mean of a field in band `i`.
+    pub(super) fn monthly(&self, month: usize, field: Field, i: usize) -> f64 {
+        self.monthly[month * self.rows.len() + i / WIDTH][field as usize].0[i % WIDTH]
+    }
+
+    /// Annual sum of a flux in band `i`.
+    pub(super) fn sum(&self, i: usize, of: impl Fn(&MeanRow) -> Lanes) -> f64 {
+        of(&self.rows[i / WIDTH]).0[i % WIDTH]
+    }
+
+    /// Annual sum of a carried sum in band `i`.
+    pub(super) fn exact_sum(&self, i: usize, of: impl Fn(&MeanRow) -> LaneSum) -> f64 {
+        let sum = of(&self.rows[i / WIDTH]);
+        sum.sum.0[i % WIDTH] + sum.lost.0[i % WIDTH]
+    }
+
+    /// Sum over all bands by area, times the length of a step: the year's amount, J.
+    pub(super) fn amount_j(
+        &self,
+        c: &Coefficients,
+        of: impl Fn(&MeanRow) -> LaneSum,
+    ) -> CompensatedSum {
+        let mut total = CompensatedSum::default();
+        for (row, b) in self.rows.iter().zip(&c.rows) {
+            let sum = of(row);
+            for k in 0..WIDTH {
+                let scaled = c.step_s * b.area_m2.0[k];
+                total.add_product(scaled, sum.sum.0[k]);
+                total.add_product(scaled, sum.lost.0[k]);
+            }
+        }
+        total
+    }
+
+    /// Fields at the last instant, for restart files.
+    pub(super) fn save(&self, into: &mut Vec<f64>) {
+        into.extend(
+            self.rows
+                .iter()
+                .flat_map(|row| row.node)
+                .flat_map(|lanes| lanes.0),
+        );
+    }
+
+    /// Takes what [`Means::save`] gave.
+    pub(super) fn restore(&mut self, from: &[f64]) {
+        let nodes = self.rows.iter_mut().flat_map(|row| &mut row.node);
+        for (lanes, values) in nodes.zip(from.chunks_exact(WIDTH)) {
+            *lanes = Lanes::load(values, 0);
+        }
     }
 }
 

@@ -29,6 +29,8 @@ mod report;
 mod state;
 mod surfaces;
 mod update;
+mod variables;
+mod work;
 
 use super::budget::{Account, Quantity};
 use super::exchange::{Exchange, Surface};
@@ -44,7 +46,8 @@ use means::{EdgeFluxes, FIELDS, Means};
 use params::Params;
 use report::Report;
 use state::State;
-use surfaces::{Sunlight, Work};
+use surfaces::Sunlight;
+use work::Work;
 
 /// The component; see the module.
 #[derive(Clone, Debug)]
@@ -71,59 +74,38 @@ impl EnergyBalance {
         let n = surface.bands.len();
         let coefficients = Coefficients::new(p, setting);
         let state = State::new(&coefficients, &surface.bands.mean_sine());
-        let mut means = Means::new(n);
-        means
-            .node
-            .air
-            .flat_mut()
-            .copy_from_slice(state.air.now.flat());
-        means
-            .node
-            .land
-            .flat_mut()
-            .copy_from_slice(state.land.now.flat());
-        means
-            .node
-            .water
-            .flat_mut()
-            .copy_from_slice(state.sub.now.flat());
-        means
-            .node
-            .ocean_surface
-            .flat_mut()
-            .copy_from_slice(state.sub.now.flat());
         Ok(Self {
             transport: Transport::new(&p.transport, &surface.bands),
             ice_line: IceLine::new(&p.albedo, &surface.bands),
             work: Work::new(n),
             edges: EdgeFluxes::new(n),
-            report: Report::new(p, n),
+            report: Report::new(p, surface, &coefficients),
+            means: Means::new(&state.rows),
             surface: surface.clone(),
             coefficients,
             state,
-            means,
         })
     }
 
     /// Air temperature at sea level at the end of the last step, degC, `[band]`.
-    pub fn air_temperature_c(&self) -> &[f64] {
-        self.state.air.now.flat()
+    pub fn air_temperature_c(&self) -> Vec<f64> {
+        self.state.field(|row| &row.air)
     }
 
     /// Land surface temperature at the end of the last step, degC, `[band]`.
-    pub fn land_temperature_c(&self) -> &[f64] {
-        self.state.land.now.flat()
+    pub fn land_temperature_c(&self) -> Vec<f64> {
+        self.state.field(|row| &row.land)
     }
 
     /// Enthalpy of mixed layer and sea ice, J per m2 of ocean, `[band]`.
-    pub fn ocean_enthalpy_j_m2(&self) -> &[f64] {
-        self.state.enthalpy.now.flat()
+    pub fn ocean_enthalpy_j_m2(&self) -> Vec<f64> {
+        self.state.field(|row| &row.enthalpy)
     }
 
     /// Replaces the air temperature (degC, `[band]`) by a state at rest, for experiments on
     /// stability.
     pub fn set_air_temperature_c(&mut self, air_c: &[f64]) {
-        self.state.air.reset(air_c);
+        self.state.rest_air(air_c);
     }
 
     /// sin(latitude) of the ice edge in the southern and northern hemisphere, for an ice-line
@@ -131,7 +113,7 @@ impl EnergyBalance {
     pub fn ice_edge_sine(&self) -> Option<[f64; 2]> {
         self.ice_line
             .as_ref()
-            .map(|line| line.edges(self.state.air.now.flat()))
+            .map(|line| line.edges(&self.air_temperature_c()))
     }
 
     /// Heat held by air, land and ocean layers, J, in the combination the formula conserves.
@@ -184,20 +166,18 @@ impl Kernel for Year<'_> {
                 zenith: &self.zenith[k * n..(k + 1) * n],
             };
             if let Some(line) = ice_line {
-                let ahead: Vec<[f64; 4]> =
-                    (0..n / 4).map(|r| state.air.extrapolated(r).0).collect();
-                line.renew(ahead.as_flattened(), c);
+                let ahead: Vec<f64> = state
+                    .rows
+                    .iter()
+                    .flat_map(|row| row.air.extrapolated().0)
+                    .collect();
+                line.renew(&ahead, c);
             }
             surfaces::evaluate(c, state, work, sun, self.greenhouse);
             edges.deep_heat = currents::transport(c, work, self.column, &mut edges.ocean_w);
             air::assemble(c, work, self.greenhouse);
             transport.solve(c, work, &mut edges.air_w);
-            update::advance(c, state, work, means, self.greenhouse);
-            means
-                .node
-                .insolation
-                .flat_mut()
-                .copy_from_slice(sun.insolation);
+            update::advance(c, state, work, means, sun.insolation, self.greenhouse);
             means.count_step(c, work, k, edges);
             means.count_node(c, k + 1);
         }
@@ -236,13 +216,8 @@ impl Component for EnergyBalance {
                 place,
             });
         }
-        self.report.close_year(
-            &self.coefficients,
-            &self.surface,
-            &self.means,
-            &self.state,
-            exchange,
-        );
+        self.report
+            .close_year(&self.coefficients, &self.means, &self.state, exchange);
         Ok(())
     }
 
@@ -255,7 +230,7 @@ impl Component for EnergyBalance {
     }
 
     fn variables(&self) -> Vec<Variable> {
-        report::variables()
+        variables::variables()
     }
 
     fn record(&self, values: &mut Vec<f64>) {
@@ -266,11 +241,7 @@ impl Component for EnergyBalance {
         let n = self.coefficients.bands;
         let mut values = Vec::with_capacity(State::len(n) + FIELDS * n);
         self.state.save(&mut values);
-        self.means
-            .node
-            .fields()
-            .into_iter()
-            .for_each(|rows| values.extend_from_slice(rows.flat()));
+        self.means.save(&mut values);
         values
     }
 
@@ -286,16 +257,7 @@ impl Component for EnergyBalance {
             });
         }
         self.state.restore(state);
-        let nodes = &state[State::len(n)..];
-        for (rows, values) in self
-            .means
-            .node
-            .fields_mut()
-            .into_iter()
-            .zip(nodes.chunks(n))
-        {
-            rows.flat_mut().copy_from_slice(values);
-        }
+        self.means.restore(&state[State::len(n)..]);
         Ok(())
     }
 }

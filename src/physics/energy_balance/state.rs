@@ -8,82 +8,77 @@
 //! far below the rounding of y itself.
 
 use super::coefficients::Coefficients;
-use crate::numerics::lanes::{Lanes, Rows};
+use crate::numerics::lanes::{Lanes, WIDTH};
 use crate::numerics::sum::CompensatedSum;
 use crate::units::SEA_WATER_FREEZING_C;
 
-/// One field in three time levels.
-#[derive(Clone, Debug, PartialEq)]
-pub(super) struct Levels {
-    pub now: Rows,
+/// One field of four bands in its time levels.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Level {
+    pub now: Lanes,
     /// What `now` lacks of the exact sum of all increments.
-    lost: Rows,
-    last: Rows,
-    before: Rows,
+    lost: Lanes,
+    last: Lanes,
+    before: Lanes,
 }
 
-impl Levels {
-    fn new(values: &[f64]) -> Self {
-        let still = Rows::new(values.len(), 0.0);
+impl Level {
+    /// A value at rest.
+    pub(super) fn new(now: Lanes) -> Self {
+        let still = Lanes::splat(0.0);
         Self {
-            now: Rows::from_slice(values),
-            lost: still.clone(),
-            last: still.clone(),
+            now,
+            lost: still,
+            last: still,
             before: still,
         }
     }
 
-    /// Starts from `values` at rest.
-    pub(super) fn reset(&mut self, values: &[f64]) {
-        *self = Self::new(values);
-    }
-
     /// Part of the new increment that follows from the last two, (7 d0 - 2 d1)/11.
     #[inline(always)]
-    pub(super) fn momentum(&self, r: usize) -> Lanes {
-        (self.last.at(r) * 7.0 - self.before.at(r) * 2.0) * (1.0 / 11.0)
+    pub(super) fn momentum(&self) -> Lanes {
+        (self.last * 7.0 - self.before * 2.0) * (1.0 / 11.0)
     }
 
     /// Extrapolation to the new time, y + 2 d0 - d1.
     #[inline(always)]
-    pub(super) fn extrapolated(&self, r: usize) -> Lanes {
-        self.now.at(r) + (self.last.at(r) * 2.0 - self.before.at(r))
+    pub(super) fn extrapolated(&self) -> Lanes {
+        self.now + (self.last * 2.0 - self.before)
     }
 
     /// Extrapolation minus the level of the formula, (15 d0 - 9 d1)/11.
     #[inline(always)]
-    pub(super) fn lead(&self, r: usize) -> Lanes {
-        (self.last.at(r) * 15.0 - self.before.at(r) * 9.0) * (1.0 / 11.0)
+    pub(super) fn lead(&self) -> Lanes {
+        (self.last * 15.0 - self.before * 9.0) * (1.0 / 11.0)
     }
 
     /// Adds the new increment, shifts the levels, and returns the new value.
     #[inline(always)]
-    pub(super) fn push(&mut self, r: usize, increment: Lanes) -> Lanes {
-        let now = self.now.at(r);
-        let step = increment + self.lost.at(r);
-        let new = now + step;
-        self.lost.set(r, step - (new - now));
-        self.before.set(r, self.last.at(r));
-        self.last.set(r, increment);
-        self.now.set(r, new);
+    pub(super) fn push(&mut self, increment: Lanes) -> Lanes {
+        let step = increment + self.lost;
+        let new = self.now + step;
+        self.lost = step - (new - self.now);
+        self.before = self.last;
+        self.last = increment;
+        self.now = new;
         new
     }
 
-    /// y + 5/6 d0 - 1/3 d1: the combination whose change equals the flux of the new time.
-    fn conserved(&self, i: usize) -> [f64; 4] {
+    /// y + 5/6 d0 - 1/3 d1 of lane `k`, in parts: its change equals the flux of the new time.
+    fn conserved(&self, k: usize) -> [f64; 4] {
         [
-            self.now.flat()[i],
-            self.lost.flat()[i],
-            (5.0 / 6.0) * self.last.flat()[i],
-            self.before.flat()[i] / -3.0,
+            self.now.0[k],
+            self.lost.0[k],
+            (5.0 / 6.0) * self.last.0[k],
+            self.before.0[k] / -3.0,
         ]
     }
 
-    fn rows(&self) -> [&Rows; LEVELS] {
-        [&self.now, &self.lost, &self.last, &self.before]
+    fn lanes(&self) -> [Lanes; LEVELS] {
+        [self.now, self.lost, self.last, self.before]
     }
 
-    fn rows_mut(&mut self) -> [&mut Rows; LEVELS] {
+    fn lanes_mut(&mut self) -> [&mut Lanes; LEVELS] {
         [
             &mut self.now,
             &mut self.lost,
@@ -95,50 +90,78 @@ impl Levels {
 
 /// Numbers that one field keeps per band.
 const LEVELS: usize = 4;
+/// Lanes of one row in a restart state.
+const ROW: usize = 4 * LEVELS + 2;
 
-/// Prognostic state: temperatures in degC, enthalpy in J m-2.
-#[derive(Clone, Debug, PartialEq)]
-pub(super) struct State {
+/// Prognostic state of four bands: temperatures in degC, enthalpy in J m-2.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct StateRow {
     /// Air temperature brought to sea level.
-    pub air: Levels,
+    pub air: Level,
     /// Land surface temperature at its own elevation.
-    pub land: Levels,
+    pub land: Level,
     /// Enthalpy of mixed layer and sea ice per area of ocean: heat above freezing when
     /// positive, minus the latent heat of the ice when negative.
-    pub enthalpy: Levels,
+    pub enthalpy: Level,
     /// Temperature of the seasonal thermocline.
-    pub sub: Levels,
+    pub sub: Level,
     /// Ice surface temperature now and one step before.
-    pub ice_surface: Rows,
-    pub ice_surface_before: Rows,
+    pub ice_surface: Lanes,
+    pub ice_surface_before: Lanes,
+}
+
+impl StateRow {
+    fn lanes(&self) -> impl Iterator<Item = Lanes> {
+        let fields = [&self.air, &self.land, &self.enthalpy, &self.sub];
+        fields
+            .into_iter()
+            .flat_map(Level::lanes)
+            .chain([self.ice_surface, self.ice_surface_before])
+    }
+
+    fn lanes_mut(&mut self) -> impl Iterator<Item = &mut Lanes> {
+        let fields = [
+            &mut self.air,
+            &mut self.land,
+            &mut self.enthalpy,
+            &mut self.sub,
+        ];
+        fields
+            .into_iter()
+            .flat_map(Level::lanes_mut)
+            .chain([&mut self.ice_surface, &mut self.ice_surface_before])
+    }
+}
+
+/// Prognostic state, south to north.
+#[derive(Clone, Debug, PartialEq)]
+pub(super) struct State {
+    pub rows: Vec<StateRow>,
 }
 
 impl State {
-    /// A smooth start: 27 degC at the equator, falling with the square of sin(latitude).
+    /// A smooth start: 25 degC at the equator, falling with the square of sin(latitude).
     pub(super) fn new(c: &Coefficients, mean_sine: &[f64]) -> Self {
-        let air: Vec<f64> = mean_sine.iter().map(|x| 25.0 - 40.0 * x * x).collect();
-        let land: Vec<f64> = air
+        let rows = c
+            .rows
             .iter()
-            .zip(c.elevation_k.flat())
-            .map(|(t, lift)| t + 2.0 - lift)
-            .collect();
-        let water: Vec<f64> = air
-            .iter()
-            .map(|t| (t + 2.0).max(SEA_WATER_FREEZING_C))
-            .collect();
-        let enthalpy: Vec<f64> = water
-            .iter()
-            .zip(c.water_capacity.flat())
-            .map(|(t, capacity)| (t - SEA_WATER_FREEZING_C) * capacity)
-            .collect();
-        let freezing = Rows::new(air.len(), SEA_WATER_FREEZING_C);
+            .zip(mean_sine.chunks_exact(WIDTH))
+            .map(|(c, x)| {
+                let x = Lanes::load(x, 0);
+                let air = Lanes::splat(25.0) - x * x * 40.0;
+                let freezing = Lanes::splat(SEA_WATER_FREEZING_C);
+                let water = (air + 2.0).max(freezing);
+                StateRow {
+                    air: Level::new(air),
+                    land: Level::new(air + 2.0 - c.elevation_k),
+                    enthalpy: Level::new((water - freezing) / c.per_water_capacity),
+                    sub: Level::new(water),
+                    ice_surface: freezing,
+                    ice_surface_before: freezing,
+                }
+            });
         Self {
-            air: Levels::new(&air),
-            land: Levels::new(&land),
-            enthalpy: Levels::new(&enthalpy),
-            sub: Levels::new(&water),
-            ice_surface: freezing.clone(),
-            ice_surface_before: freezing,
+            rows: rows.collect(),
         }
     }
 
@@ -151,76 +174,72 @@ impl State {
             0.0
         };
         let mut heat = CompensatedSum::default();
-        for i in 0..c.bands {
-            let area = c.area_m2.flat()[i];
-            let ocean = c.ocean_area_m2.flat()[i];
-            for (capacity, levels) in [
-                (area * c.air_capacity, &self.air),
-                (area * c.land.flat()[i] * c.land_capacity, &self.land),
-                (ocean, &self.enthalpy),
-                (ocean * sub_on, &self.sub),
+        for (row, c_row) in self.rows.iter().zip(&c.rows) {
+            let ocean = c_row.ocean_area_m2;
+            for (capacity, level) in [
+                (c_row.area_m2 * c.air_capacity, &row.air),
+                (c_row.area_m2 * c_row.land * c.land_capacity, &row.land),
+                (ocean, &row.enthalpy),
+                (ocean * sub_on, &row.sub),
             ] {
-                levels
-                    .conserved(i)
-                    .into_iter()
-                    .for_each(|part| heat.add_product(capacity, part));
+                for k in 0..WIDTH {
+                    let parts = level.conserved(k);
+                    parts
+                        .into_iter()
+                        .for_each(|part| heat.add_product(capacity.0[k], part));
+                }
             }
         }
         heat
     }
 
-    fn all(&self) -> impl Iterator<Item = &Rows> {
-        [&self.air, &self.land, &self.enthalpy, &self.sub]
-            .into_iter()
-            .flat_map(Levels::rows)
-            .chain([&self.ice_surface, &self.ice_surface_before])
+    /// One field of all bands.
+    pub(super) fn field(&self, of: impl Fn(&StateRow) -> &Level) -> Vec<f64> {
+        self.rows.iter().flat_map(|row| of(row).now.0).collect()
+    }
+
+    /// Replaces the air temperature by a state at rest.
+    pub(super) fn rest_air(&mut self, air_c: &[f64]) {
+        for (row, air) in self.rows.iter_mut().zip(air_c.chunks_exact(WIDTH)) {
+            row.air = Level::new(Lanes::load(air, 0));
+        }
     }
 
     /// Number of values in a restart state of `bands` bands.
     pub(super) const fn len(bands: usize) -> usize {
-        (4 * LEVELS + 2) * bands
+        ROW * bands
     }
 
     pub(super) fn save(&self, into: &mut Vec<f64>) {
-        self.all()
-            .for_each(|rows| into.extend_from_slice(rows.flat()));
+        into.extend(
+            self.rows
+                .iter()
+                .flat_map(StateRow::lanes)
+                .flat_map(|lanes| lanes.0),
+        );
     }
 
     /// Takes the first [`State::len`] values of `from`.
     pub(super) fn restore(&mut self, from: &[f64]) {
-        let n = self.ice_surface.flat().len();
-        let Self {
-            air,
-            land,
-            enthalpy,
-            sub,
-            ice_surface,
-            ice_surface_before,
-        } = self;
-        let levels = [air, land, enthalpy, sub]
-            .into_iter()
-            .flat_map(Levels::rows_mut);
-        for (rows, values) in levels
-            .chain([ice_surface, ice_surface_before])
-            .zip(from.chunks(n))
-        {
-            rows.flat_mut().copy_from_slice(values);
+        let lanes = self.rows.iter_mut().flat_map(StateRow::lanes_mut);
+        for (lanes, values) in lanes.zip(from.chunks_exact(WIDTH)) {
+            *lanes = Lanes::load(values, 0);
         }
     }
 
     /// First field and band that is not finite.
     pub(super) fn broken(&self) -> Option<(&'static str, usize)> {
-        let fields = [
-            ("air temperature", &self.air.now),
-            ("land temperature", &self.land.now),
-            ("ocean enthalpy", &self.enthalpy.now),
-            ("seasonal thermocline temperature", &self.sub.now),
-        ];
-        fields.into_iter().find_map(|(name, rows)| {
-            rows.flat()
-                .iter()
-                .position(|v| !v.is_finite())
-                .map(|band| (name, band))
+        self.rows.iter().enumerate().find_map(|(r, row)| {
+            let fields = [
+                ("air temperature", row.air.now),
+                ("land temperature", row.land.now),
+                ("ocean enthalpy", row.enthalpy.now),
+                ("seasonal thermocline temperature", row.sub.now),
+            ];
+            fields.into_iter().find_map(|(name, lanes)| {
+                let lane = lanes.0.iter().position(|v| !v.is_finite())?;
+                Some((name, WIDTH * r + lane))
+            })
         })
     }
 }

@@ -13,67 +13,31 @@
 //! temperature takes one Newton step from its own extrapolation and is held at 0 degC while it
 //! melts. Fluxes in W m-2 per area of the surface they belong to, positive upward out of it.
 
-use super::coefficients::{Coefficients, LEAST_ICE_M, LEAST_LAND_SLOPE};
-use super::state::State;
-use crate::numerics::lanes::{Lanes, Rows};
+use super::coefficients::{BandRow, Coefficients, LEAST_ICE_M, LEAST_NEWTON_SHARE};
+use super::state::{State, StateRow};
+use super::work::{Work, WorkRow};
+use crate::numerics::lanes::{Lanes, WIDTH};
 use crate::physics::saturation::{Saturation, saturation};
 use crate::units::{CELSIUS_ZERO_K, SEA_ICE_LATENT_HEAT_J_M3, SEA_WATER_FREEZING_C};
-
-macro_rules! work_fields {
-    ($($(#[$doc:meta])* $field:ident),* $(,)?) => {
-        /// Values of one step, one per band; see the fields.
-        #[derive(Clone, Debug)]
-        pub(super) struct Work { $($(#[$doc])* pub $field: Rows),* }
-        impl Work {
-            pub(super) fn new(bands: usize) -> Self {
-                Self { $($field: Rows::new(bands, 0.0)),* }
-            }
-        }
-    };
-}
-
-work_fields! {
-    /// Extrapolated air temperature and the slope of humidity there.
-    air, air_humidity_slope, air_humidity,
-    /// Extrapolation of the air minus the level of the formula, and sunlight it absorbs.
-    air_lead, air_absorbed,
-    /// Land: flux to air F*, slopes F_s and F_a, emission to space, absorbed S* and S'.
-    land_flux, land_flux_slope, land_flux_air, land_emission, land_absorbed, land_absorbed_slope,
-    /// Land: residual and Newton slope.
-    land_residual, land_newton,
-    /// Snow cover of the land.
-    snow,
-    /// Ocean: flux to air X*, dX/dE, dX/dT_a.
-    ocean_flux, ocean_flux_enthalpy, ocean_flux_air,
-    /// Ocean: emission to space and slopes.
-    ocean_emission, ocean_emission_enthalpy, ocean_emission_air,
-    /// Ocean: absorbed sunlight and slope.
-    ocean_absorbed, ocean_absorbed_enthalpy,
-    /// Flux into the seasonal thermocline and slope.
-    sub_flux, sub_flux_enthalpy,
-    /// Ocean: residual and Newton slope.
-    ocean_residual, ocean_newton,
-    /// One where the water is open, zero where there is ice.
-    open_water,
-    /// Mixed-layer temperature, ice cover, ice surface temperature.
-    water_temperature, ice_cover, ice_surface,
-    /// Heat brought by ocean currents, W per m2 of ocean.
-    ocean_transport,
-    /// Sinking: weights, then rates (m3 s-1), of deep water and of all.
-    deep_sinking, sinking,
-    /// Solution of the air system, and convergence of the air's transport.
-    air_increment, air_convergence,
-    /// Diagonals and right-hand side of the air system.
-    lower, diagonal, upper, scratch, correction,
-    /// Moist static energy over c_p and its slope.
-    static_energy, static_energy_slope,
-}
 
 /// Sunlight of one step: insolation and zenith cosine of all bands.
 #[derive(Clone, Copy)]
 pub(super) struct Sunlight<'a> {
     pub insolation: &'a [f64],
     pub zenith: &'a [f64],
+}
+
+/// What land and ocean of a row see above them.
+#[derive(Clone, Copy)]
+struct Above {
+    air: Lanes,
+    humidity: Saturation,
+    insolation: Lanes,
+    /// Sunlight that reaches the surface before reflection.
+    light: Lanes,
+    water_albedo: Lanes,
+    /// Forcing of carbon dioxide that acts on the surface's own emission.
+    greenhouse: f64,
 }
 
 /// Bulk flux `R0 (T/288)^4 + c_s (T_s - T_a) + b c_L (q_s - r_a q_a)` and slopes.
@@ -84,21 +48,15 @@ struct Bulk {
 }
 
 #[inline(always)]
-fn bulk(
-    c: &Coefficients,
-    surface: Lanes,
-    lifted: Lanes,
-    wetness: f64,
-    air: Lanes,
-    q_air: Saturation,
-) -> Bulk {
+fn bulk(c: &Coefficients, surface: Lanes, lifted: Lanes, wetness: f64, above: &Above) -> Bulk {
     let kelvin = surface + CELSIUS_ZERO_K;
     let cubed = kelvin * kelvin * kelvin * c.radiative;
     let q = saturation(lifted);
+    let q_air = above.humidity;
     let latent = wetness * c.latent;
     Bulk {
         flux: cubed * kelvin
-            + (lifted - air) * c.sensible
+            + (lifted - above.air) * c.sensible
             + (q.humidity - q_air.humidity * c.air_humidity) * latent,
         slope: cubed * 4.0 + c.sensible + q.slope * latent,
         slope_air: q_air.slope * (latent * c.air_humidity) + c.sensible,
@@ -114,96 +72,82 @@ pub(super) fn evaluate(
     sun: Sunlight<'_>,
     greenhouse: f64,
 ) {
-    for r in 0..w.air.rows() {
-        let air = s.air.extrapolated(r);
-        let q_air = saturation(air);
-        w.air.set(r, air);
-        w.air_humidity.set(r, q_air.humidity);
-        w.air_humidity_slope.set(r, q_air.slope);
-        w.air_lead.set(r, s.air.lead(r));
-        let insolation = Lanes::load(sun.insolation, 4 * r);
-        let tilt = Lanes::splat(0.65) - Lanes::load(sun.zenith, 4 * r);
-        let water_albedo = c.water_albedo.at(r) + tilt * c.water_zenith;
-        let land = land(
-            c,
-            s,
-            w,
-            r,
-            (air, q_air),
-            (insolation, water_albedo),
+    let light = sun
+        .insolation
+        .chunks_exact(WIDTH)
+        .zip(sun.zenith.chunks_exact(WIDTH));
+    let greenhouse = if c.surface_emission_slope > 0.0 {
+        greenhouse
+    } else {
+        0.0
+    };
+    let rows = w.rows.iter_mut().zip(w.water_temperature.iter_mut());
+    for (((w, water), (b, s)), (insolation, zenith)) in
+        rows.zip(c.rows.iter().zip(&s.rows)).zip(light)
+    {
+        let insolation = Lanes::load(insolation, 0);
+        let lowness = Lanes::splat(0.65) - Lanes::load(zenith, 0);
+        let air = s.air.extrapolated();
+        let above = Above {
+            air,
+            humidity: saturation(air),
+            insolation,
+            light: insolation * (1.0 - c.air_share),
+            water_albedo: b.water_albedo + lowness * c.water_zenith,
             greenhouse,
-        );
-        let ocean = ocean(
-            c,
-            s,
-            w,
-            r,
-            (air, q_air),
-            (insolation, water_albedo),
-            greenhouse,
-        );
-        let absorbed = c.land.at(r) * land + c.ocean.at(r) * ocean;
-        w.air_absorbed.set(r, insolation * absorbed * c.air_share);
+        };
+        w.air = air;
+        w.air_humidity = above.humidity.humidity;
+        w.air_humidity_slope = above.humidity.slope;
+        w.air_lead = s.air.lead();
+        let land = land(c, b, s, w, &above);
+        let ocean = ocean(c, b, s, w, &above);
+        w.air_absorbed = above.insolation * (b.land * land + b.ocean * ocean) * c.air_share;
+        *water = w.water_temperature.0;
     }
+}
+
+/// Emission of a surface to space, where surfaces radiate.
+#[inline(always)]
+fn emission(c: &Coefficients, above: &Above, temperature: Lanes) -> Lanes {
+    temperature * c.surface_emission_slope + (c.surface_emission_offset - above.greenhouse)
 }
 
 /// Land of one row; returns its absorptance.
 #[inline(always)]
-fn land(
-    c: &Coefficients,
-    s: &State,
-    w: &mut Work,
-    r: usize,
-    (air, q_air): (Lanes, Saturation),
-    (insolation, water_albedo): (Lanes, Lanes),
-    greenhouse: f64,
-) -> Lanes {
-    let temperature = s.land.extrapolated(r);
+fn land(c: &Coefficients, b: &BandRow, s: &StateRow, w: &mut WorkRow, above: &Above) -> Lanes {
+    let one = Lanes::splat(1.0);
+    let temperature = s.land.extrapolated();
     let warmth = (temperature - c.snow_temperature) * c.snow_steepness;
-    let snow = Lanes::splat(1.0) / (warmth.exp() + 1.0);
-    let sheet = c.sheet.at(r);
-    let bare = water_albedo + c.land_excess;
-    let brightening = (c.snow_albedo.at(r) - bare) * (Lanes::splat(1.0) - sheet);
-    let albedo = bare * (Lanes::splat(1.0) - sheet) + brightening * snow + sheet * c.sheet_albedo;
-    let absorptance = Lanes::splat(1.0) - albedo;
-    let light = insolation * (1.0 - c.air_share);
-    let absorbed = light * absorptance;
-    let absorbed_slope = light * brightening * snow * (Lanes::splat(1.0) - snow) * c.snow_steepness;
+    let snow = one / (warmth.exp() + 1.0);
+    let bare = above.water_albedo + c.land_excess;
+    let brightening = (b.snow_albedo - bare) * (one - b.sheet);
+    let albedo = bare * (one - b.sheet) + brightening * snow + b.sheet * c.sheet_albedo;
+    let absorptance = one - albedo;
+    let absorbed = above.light * absorptance;
+    let absorbed_slope = above.light * brightening * snow * (one - snow) * c.snow_steepness;
 
     let f = bulk(
         c,
         temperature,
-        temperature + c.elevation_k.at(r),
+        temperature + b.elevation_k,
         c.land_wetness,
-        air,
-        q_air,
+        above,
     );
-    let emission = temperature * c.surface_emission_slope
-        + (c.surface_emission_offset - greenhouse * surface_share(c));
+    let emitted = emission(c, above, temperature);
     let storage = c.land_capacity / c.gamma_s;
     let newton = (f.slope + (storage + c.surface_emission_slope) - absorbed_slope)
-        .max(Lanes::splat(storage * LEAST_LAND_SLOPE));
-    w.land_residual
-        .set(r, absorbed - f.flux - emission - s.land.lead(r) * storage);
-    w.land_newton.set(r, newton);
-    w.land_flux.set(r, f.flux);
-    w.land_flux_slope.set(r, f.slope);
-    w.land_flux_air.set(r, f.slope_air);
-    w.land_emission.set(r, emission);
-    w.land_absorbed.set(r, absorbed);
-    w.land_absorbed_slope.set(r, absorbed_slope);
-    w.snow.set(r, snow);
+        .max(Lanes::splat(storage * LEAST_NEWTON_SHARE));
+    w.land_residual = absorbed - f.flux - emitted - s.land.lead() * storage;
+    w.land_per_newton = one / newton;
+    w.land_flux = f.flux;
+    w.land_flux_slope = f.slope;
+    w.land_flux_air = f.slope_air;
+    w.land_emission = emitted;
+    w.land_absorbed = absorbed;
+    w.land_absorbed_slope = absorbed_slope;
+    w.snow = snow;
     absorptance
-}
-
-/// Share of the greenhouse forcing that acts on surface emission: one or zero.
-#[inline(always)]
-fn surface_share(c: &Coefficients) -> f64 {
-    if c.surface_emission_slope > 0.0 {
-        1.0
-    } else {
-        0.0
-    }
 }
 
 /// What the ice of a row contributes.
@@ -218,132 +162,96 @@ struct Ice {
 
 /// Ocean of one row; returns its absorptance.
 #[inline(always)]
-fn ocean(
-    c: &Coefficients,
-    s: &State,
-    w: &mut Work,
-    r: usize,
-    (air, q_air): (Lanes, Saturation),
-    (insolation, water_albedo): (Lanes, Lanes),
-    greenhouse: f64,
-) -> Lanes {
+fn ocean(c: &Coefficients, b: &BandRow, s: &StateRow, w: &mut WorkRow, above: &Above) -> Lanes {
     let (zero, one) = (Lanes::splat(0.0), Lanes::splat(1.0));
-    let enthalpy = s.enthalpy.extrapolated(r);
+    let enthalpy = s.enthalpy.extrapolated();
     let open = enthalpy.at_least(zero);
-    let per_capacity = c.per_water_capacity.at(r);
-    let water = enthalpy.max(zero) * per_capacity + SEA_WATER_FREEZING_C;
-    let extrapolated_ice = (s.ice_surface.at(r) * 2.0 - s.ice_surface_before.at(r)).min(zero);
-    let skin = open.select(water, extrapolated_ice);
-    let f = bulk(c, skin, skin, 1.0, air, q_air);
-    let light = insolation * (1.0 - c.air_share);
-    let emit = |t: Lanes| {
-        t * c.surface_emission_slope + (c.surface_emission_offset - greenhouse * surface_share(c))
-    };
-    let ice_albedo = c.ice_albedo.at(r);
-    let ice_light = light * (one - ice_albedo);
-    let ice = ice(c, enthalpy, skin, &f, ice_light - emit(skin));
+    let water = enthalpy.max(zero) * b.per_water_capacity + SEA_WATER_FREEZING_C;
+    let skin = open.select(
+        water,
+        (s.ice_surface * 2.0 - s.ice_surface_before).min(zero),
+    );
+    let f = bulk(c, skin, skin, 1.0, above);
+    let gain = above.light * (one - b.ice_albedo) - emission(c, above, skin);
+    let ice = ice(c, enthalpy, skin, &f, gain);
     let cover = open.select(zero, ice.cover);
     let cover_enthalpy = open.select(zero, ice.cover_enthalpy);
     let clear = one - cover;
 
     let freezing = Lanes::splat(c.freezing_flux + c.sensible * SEA_WATER_FREEZING_C)
-        - air * c.sensible
-        - q_air.humidity * (c.latent * c.air_humidity);
+        - above.air * c.sensible
+        - above.humidity.humidity * (c.latent * c.air_humidity);
     let water_flux = open.select(f.flux, freezing);
-    let flux = clear * water_flux + cover * ice.flux;
-    let flux_enthalpy = open.select(
-        f.slope * per_capacity,
+    w.ocean_flux = clear * water_flux + cover * ice.flux;
+    w.ocean_flux_enthalpy = open.select(
+        f.slope * b.per_water_capacity,
         cover_enthalpy * (ice.flux - water_flux) + cover * f.slope * ice.surface_enthalpy,
     );
-    let flux_air = open.select(
+    w.ocean_flux_air = open.select(
         -f.slope_air,
         cover * f.slope * ice.surface_air - f.slope_air,
     );
-    let (water_emission, ice_emission) = (emit(water), emit(ice.surface));
+    let (from_water, from_ice) = (emission(c, above, water), emission(c, above, ice.surface));
     let slope = Lanes::splat(c.surface_emission_slope);
-    let emission_enthalpy = open.select(
-        slope * per_capacity,
-        cover_enthalpy * (ice_emission - water_emission) + cover * slope * ice.surface_enthalpy,
+    w.ocean_emission = clear * from_water + cover * from_ice;
+    w.ocean_emission_enthalpy = open.select(
+        slope * b.per_water_capacity,
+        cover_enthalpy * (from_ice - from_water) + cover * slope * ice.surface_enthalpy,
     );
-    let absorptance = clear * (one - water_albedo) + cover * (one - ice_albedo);
-    w.ocean_flux.set(r, flux);
-    w.ocean_flux_enthalpy.set(r, flux_enthalpy);
-    w.ocean_flux_air.set(r, flux_air);
-    w.ocean_emission
-        .set(r, clear * water_emission + cover * ice_emission);
-    w.ocean_emission_enthalpy.set(r, emission_enthalpy);
-    w.ocean_emission_air
-        .set(r, open.select(zero, cover * slope * ice.surface_air));
-    w.ocean_absorbed.set(r, light * absorptance);
-    w.ocean_absorbed_enthalpy
-        .set(r, cover_enthalpy * light * (water_albedo - ice_albedo));
-    w.open_water.set(r, open.select(one, zero));
-    w.water_temperature.set(r, water);
-    w.ice_cover.set(r, cover);
-    w.ice_surface.set(
-        r,
-        open.select(Lanes::splat(SEA_WATER_FREEZING_C), ice.surface),
-    );
-    store_sub_layer(c, s, w, r, open.select(per_capacity, zero));
-    close_ocean(c, s, w, r);
+    w.ocean_emission_air = open.select(zero, cover * slope * ice.surface_air);
+    let absorptance = clear * (one - above.water_albedo) + cover * (one - b.ice_albedo);
+    w.ocean_absorbed = above.light * absorptance;
+    w.ocean_absorbed_enthalpy = cover_enthalpy * above.light * (above.water_albedo - b.ice_albedo);
+    w.open_water = open.select(one, zero);
+    w.water_temperature = water;
+    w.ice_cover = cover;
+    w.ice_surface = open.select(Lanes::splat(SEA_WATER_FREEZING_C), ice.surface);
+    w.sub_flux = (water - (s.sub.now + s.sub.momentum())) * c.sub_exchange;
+    w.sub_flux_enthalpy = open.select(b.per_water_capacity, zero) * c.sub_exchange;
+    close_ocean(c, s, w);
     absorptance
 }
 
 /// Ice cover, conductance and surface temperature (one Newton step).
 #[inline(always)]
 fn ice(c: &Coefficients, enthalpy: Lanes, skin: Lanes, f: &Bulk, gain: Lanes) -> Ice {
+    const PER_LATENT: f64 = 1.0 / SEA_ICE_LATENT_HEAT_J_M3;
     let (zero, one) = (Lanes::splat(0.0), Lanes::splat(1.0));
-    let thickness = (-enthalpy).max(zero) * (1.0 / SEA_ICE_LATENT_HEAT_J_M3);
-    let held = thickness.max(Lanes::splat(LEAST_ICE_M));
-    let remaining = (held * (-1.0 / c.cover_thickness)).exp();
+    let thickness = ((-enthalpy).max(zero) * PER_LATENT).max(Lanes::splat(LEAST_ICE_M));
+    let remaining = (thickness * (-1.0 / c.cover_thickness)).exp();
     let cover = one - remaining;
-    let cover_enthalpy = remaining * (-1.0 / (SEA_ICE_LATENT_HEAT_J_M3 * c.cover_thickness));
-    let per_held = one / held;
-    let conductance = cover * per_held * c.conductivity;
-    let conductance_enthalpy = (conductance * (1.0 / SEA_ICE_LATENT_HEAT_J_M3)
-        + cover_enthalpy * c.conductivity)
-        * per_held;
-    let slope = conductance + f.slope + c.surface_emission_slope;
-    let per_slope = one / slope;
-    let lift = Lanes::splat(SEA_WATER_FREEZING_C);
-    let stepped = skin + (gain - f.flux + conductance * (lift - skin)) * per_slope;
+    let cover_enthalpy = remaining * (-PER_LATENT / c.cover_thickness);
+    let per_thickness = one / thickness;
+    let conductance = cover * per_thickness * c.conductivity;
+    let conductance_enthalpy =
+        (conductance * PER_LATENT + cover_enthalpy * c.conductivity) * per_thickness;
+    let per_slope = one / (conductance + f.slope + c.surface_emission_slope);
+    let freezing = Lanes::splat(SEA_WATER_FREEZING_C);
+    let stepped = skin + (gain - f.flux + conductance * (freezing - skin)) * per_slope;
     let melting = stepped.at_least(zero);
     let surface = melting.select(zero, stepped);
+    let by_enthalpy = conductance_enthalpy * (freezing - surface) * per_slope;
     Ice {
         cover,
         cover_enthalpy,
         surface,
-        surface_enthalpy: melting.select(zero, conductance_enthalpy * (lift - surface) * per_slope),
+        surface_enthalpy: melting.select(zero, by_enthalpy),
         surface_air: melting.select(zero, f.slope_air * per_slope),
         flux: f.flux + f.slope * (surface - skin),
     }
 }
 
-/// Flux into the seasonal thermocline, lambda' (`T_o` - base), implicit in both.
-#[inline(always)]
-fn store_sub_layer(c: &Coefficients, s: &State, w: &mut Work, r: usize, water_slope: Lanes) {
-    let base = s.sub.now.at(r) + s.sub.momentum(r);
-    w.sub_flux
-        .set(r, (w.water_temperature.at(r) - base) * c.sub_exchange);
-    w.sub_flux_enthalpy.set(r, water_slope * c.sub_exchange);
-}
-
 /// Residual (still without the ocean's transport) and Newton slope of the ocean.
 #[inline(always)]
-fn close_ocean(c: &Coefficients, s: &State, w: &mut Work, r: usize) {
+fn close_ocean(c: &Coefficients, s: &StateRow, w: &mut WorkRow) {
     let storage = 1.0 / c.gamma_s;
-    w.ocean_residual.set(
-        r,
-        w.ocean_absorbed.at(r)
-            - w.ocean_flux.at(r)
-            - w.ocean_emission.at(r)
-            - w.sub_flux.at(r)
-            - s.enthalpy.lead(r) * storage,
-    );
-    let newton = w.ocean_flux_enthalpy.at(r) + w.ocean_emission_enthalpy.at(r)
-        - w.ocean_absorbed_enthalpy.at(r)
-        + w.sub_flux_enthalpy.at(r)
+    w.ocean_residual = w.ocean_absorbed
+        - w.ocean_flux
+        - w.ocean_emission
+        - w.sub_flux
+        - s.enthalpy.lead() * storage;
+    let newton = w.ocean_flux_enthalpy + w.ocean_emission_enthalpy - w.ocean_absorbed_enthalpy
+        + w.sub_flux_enthalpy
         + storage;
-    w.ocean_newton
-        .set(r, newton.max(Lanes::splat(0.25 * storage)));
+    w.ocean_per_newton = Lanes::splat(1.0) / newton.max(Lanes::splat(LEAST_NEWTON_SHARE * storage));
 }

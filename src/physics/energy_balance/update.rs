@@ -4,12 +4,12 @@
 //! Increment = (7 d0 - 2 d1)/11 + (gamma/C) x (sum of fluxes at the new time): heat leaves one
 //! reservoir and enters the other with the same bits.
 
-use super::coefficients::Coefficients;
-use super::means::Means;
-use super::state::State;
-use super::surfaces::Work;
-use crate::numerics::lanes::Lanes;
-use crate::units::SEA_ICE_LATENT_HEAT_J_M3;
+use super::coefficients::{BandRow, Coefficients};
+use super::means::{Field, MeanRow, Means};
+use super::state::{State, StateRow};
+use super::work::{Work, WorkRow};
+use crate::numerics::lanes::{Lanes, WIDTH};
+use crate::units::{SEA_ICE_LATENT_HEAT_J_M3, SEA_WATER_FREEZING_C};
 
 /// Fluxes of one row at the new time, W m-2.
 struct Settled {
@@ -24,6 +24,7 @@ pub(super) fn advance(
     s: &mut State,
     w: &Work,
     means: &mut Means,
+    insolation: &[f64],
     greenhouse: f64,
 ) {
     let greenhouse = if c.air_emission_slope > 0.0 {
@@ -31,87 +32,100 @@ pub(super) fn advance(
     } else {
         0.0
     };
-    for r in 0..w.air.rows() {
-        let land = settle_land(c, s, w, means, r);
-        let ocean = settle_ocean(c, s, w, means, r);
-        let air = w.air.at(r) + w.air_increment.at(r);
-        let air_emission = c.air_emission_offset.at(r) + air * c.air_emission_slope - greenhouse;
-        let (land_share, ocean_share) = (c.land.at(r), c.ocean.at(r));
-        let input = w.air_absorbed.at(r) + land_share * land.to_air + ocean_share * ocean.to_air
-            - air_emission;
+    let solved = w
+        .air_increment
+        .iter()
+        .zip(w.air_convergence.iter())
+        .zip(w.brought.iter());
+    let light = insolation.chunks_exact(WIDTH);
+    let rows = w
+        .rows
+        .iter()
+        .zip(&c.rows)
+        .zip(s.rows.iter_mut().zip(&mut means.rows));
+    for ((((row, b), (s, m)), ((step, convergence), brought)), light) in rows.zip(solved).zip(light)
+    {
+        let land = settle_land(c, b, s, row, m, step);
+        let ocean = settle_ocean(c, b, s, row, m, step, brought);
+        let air = row.air + step;
+        let air_emission = b.air_emission_offset + air * c.air_emission_slope - greenhouse;
+        let input = row.air_absorbed + b.land * land.to_air + b.ocean * ocean.to_air - air_emission;
         let increment = if c.massless_air() {
-            air - s.air.now.at(r)
+            air - s.air.now
         } else {
-            s.air.momentum(r) + (input + w.air_convergence.at(r)) * (c.gamma_s / c.air_capacity)
+            s.air.momentum() + (input + convergence) * (c.gamma_s / c.air_capacity)
         };
-        let new = s.air.push(r, increment);
-        means.air_input.add(r, input);
-        means.absorbed_air.add(r, w.air_absorbed.at(r));
-        means.emitted.add(
-            r,
-            air_emission + land_share * land.emitted + ocean_share * ocean.emitted,
-        );
-        means.node.air.set(r, new);
+        m.set(Field::Air, s.air.push(increment));
+        m.set(Field::Insolation, Lanes::load(light, 0));
+        m.air_input += input;
+        m.absorbed_air.add(row.air_absorbed);
+        m.emitted
+            .add(air_emission + b.land * land.emitted + b.ocean * ocean.emitted);
     }
 }
 
 #[inline(always)]
-fn settle_land(c: &Coefficients, s: &mut State, w: &Work, means: &mut Means, r: usize) -> Settled {
-    let air = w.air_increment.at(r);
-    let step = (w.land_residual.at(r) + w.land_flux_air.at(r) * air) / w.land_newton.at(r);
-    let to_air = w.land_flux.at(r) + w.land_flux_slope.at(r) * step - w.land_flux_air.at(r) * air;
-    let emitted = w.land_emission.at(r) + step * c.surface_emission_slope;
-    let absorbed = w.land_absorbed.at(r) + w.land_absorbed_slope.at(r) * step;
+fn settle_land(
+    c: &Coefficients,
+    b: &BandRow,
+    s: &mut StateRow,
+    w: &WorkRow,
+    m: &mut MeanRow,
+    air: Lanes,
+) -> Settled {
+    let step = (w.land_residual + w.land_flux_air * air) * w.land_per_newton;
+    let to_air = w.land_flux + w.land_flux_slope * step - w.land_flux_air * air;
+    let emitted = w.land_emission + step * c.surface_emission_slope;
+    let absorbed = w.land_absorbed + w.land_absorbed_slope * step;
     let net = absorbed - to_air - emitted;
-    let new = s
-        .land
-        .push(r, s.land.momentum(r) + net * (c.gamma_s / c.land_capacity));
-    means.absorbed_land.add(r, c.land.at(r) * absorbed);
-    means.node.land.set(r, new);
-    means.node.snow.set(r, w.snow.at(r));
+    let increment = s.land.momentum() + net * (c.gamma_s / c.land_capacity);
+    m.set(Field::Land, s.land.push(increment));
+    m.set(Field::Snow, w.snow);
+    m.absorbed_land.add(b.land * absorbed);
     Settled { to_air, emitted }
 }
 
 #[inline(always)]
-fn settle_ocean(c: &Coefficients, s: &mut State, w: &Work, means: &mut Means, r: usize) -> Settled {
+fn settle_ocean(
+    c: &Coefficients,
+    b: &BandRow,
+    s: &mut StateRow,
+    w: &WorkRow,
+    m: &mut MeanRow,
+    air: Lanes,
+    brought: Lanes,
+) -> Settled {
     let zero = Lanes::splat(0.0);
-    let air = w.air_increment.at(r);
-    let through = w.ocean_flux_air.at(r) + w.ocean_emission_air.at(r);
-    let step = (w.ocean_residual.at(r) - through * air) / w.ocean_newton.at(r);
-    let to_air =
-        w.ocean_flux.at(r) + w.ocean_flux_enthalpy.at(r) * step + w.ocean_flux_air.at(r) * air;
-    let emitted = w.ocean_emission.at(r)
-        + w.ocean_emission_enthalpy.at(r) * step
-        + w.ocean_emission_air.at(r) * air;
-    let absorbed = w.ocean_absorbed.at(r) + w.ocean_absorbed_enthalpy.at(r) * step;
-    let stored = w.sub_flux.at(r) + w.sub_flux_enthalpy.at(r) * step;
+    let through = w.ocean_flux_air + w.ocean_emission_air;
+    let step = (w.ocean_residual - through * air) * w.ocean_per_newton;
+    let to_air = w.ocean_flux + w.ocean_flux_enthalpy * step + w.ocean_flux_air * air;
+    let emitted = w.ocean_emission + w.ocean_emission_enthalpy * step + w.ocean_emission_air * air;
+    let absorbed = w.ocean_absorbed + w.ocean_absorbed_enthalpy * step;
+    let stored = w.sub_flux + w.sub_flux_enthalpy * step;
     let gain = absorbed - to_air - emitted;
     // Where there is no ocean nothing would limit the ice: such a band keeps its state.
-    let exists = c.has_ocean.at(r);
-    let net = gain - stored + w.ocean_transport.at(r);
+    let net = gain - stored + brought;
     let enthalpy = s
         .enthalpy
-        .push(r, (s.enthalpy.momentum(r) + net * c.gamma_s) * exists);
-    let sub = s.sub.momentum(r) + stored * (c.gamma_s / c.sub_capacity);
-    s.sub.push(r, sub * exists);
-    s.ice_surface_before.set(r, s.ice_surface.at(r));
-    s.ice_surface.set(r, w.ice_surface.at(r));
+        .push((s.enthalpy.momentum() + net * c.gamma_s) * b.has_ocean);
+    let sub = s.sub.momentum() + stored * (c.gamma_s / c.sub_capacity);
+    s.sub.push(sub * b.has_ocean);
+    s.ice_surface_before = s.ice_surface;
+    s.ice_surface = w.ice_surface;
 
-    means.absorbed_ocean.add(r, c.ocean.at(r) * absorbed);
-    means.ocean_gain.add(r, gain);
-    means.gross_loss.add(r, (-gain).max(zero));
-    let water =
-        enthalpy.max(zero) * c.per_water_capacity.at(r) + crate::units::SEA_WATER_FREEZING_C;
-    let cover = w.ice_cover.at(r);
-    means.node.water.set(r, water);
-    means
-        .node
-        .ocean_surface
-        .set(r, water + (w.ice_surface.at(r) - water) * cover);
-    means.node.ice_cover.set(r, cover);
-    means
-        .node
-        .ice_thickness
-        .set(r, (-enthalpy).max(zero) * (1.0 / SEA_ICE_LATENT_HEAT_J_M3));
+    m.absorbed_ocean.add(b.ocean * absorbed);
+    m.ocean_gain += gain;
+    m.gross_loss += (-gain).max(zero);
+    let water = enthalpy.max(zero) * b.per_water_capacity + SEA_WATER_FREEZING_C;
+    m.set(Field::Water, water);
+    m.set(
+        Field::OceanSurface,
+        water + (w.ice_surface - water) * w.ice_cover,
+    );
+    m.set(Field::IceCover, w.ice_cover);
+    m.set(
+        Field::IceThickness,
+        (-enthalpy).max(zero) * (1.0 / SEA_ICE_LATENT_HEAT_J_M3),
+    );
     Settled { to_air, emitted }
 }
