@@ -4,5 +4,6 @@
 
 pub mod dispatch;
 pub mod lanes;
+pub mod profile;
 pub mod sum;
 pub mod tridiagonal;

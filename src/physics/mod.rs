@@ -5,7 +5,10 @@
 //! in [`budget::Ledger`].
 
 pub mod budget;
+pub mod equatorial_pacific;
 pub mod exchange;
+pub mod ocean_column;
+pub mod rain_belt;
 pub mod saturation;
 
 use crate::forcing::YearForcing;
