@@ -7,6 +7,8 @@
 pub mod budget;
 pub mod equatorial_pacific;
 pub mod exchange;
+#[cfg(test)]
+mod fixtures;
 pub mod ocean_column;
 pub mod rain_belt;
 pub mod saturation;

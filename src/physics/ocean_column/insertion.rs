@@ -139,7 +139,13 @@ mod tests {
             .collect();
         let (mut inflow, mut heat) = (vec![0.0; 5], vec![0.0; 5]);
         let mut levels = NeutralLevels::new(5);
-        insert(&mut levels, &profile, parcels.iter().copied(), 1.0, [&mut inflow, &mut heat]);
+        insert(
+            &mut levels,
+            &profile,
+            parcels.iter().copied(),
+            1.0,
+            [&mut inflow, &mut heat],
+        );
         let total: (f64, f64) = parcels
             .iter()
             .fold((0.0, 0.0), |s, p| (s.0 + p.0, s.1 + p.1));

@@ -14,7 +14,8 @@
 //! is an M-matrix: new temperatures lie between the old ones and those of the water that enters,
 //! whatever the step. Rounding in the solution of the linear system would show in the heat budget,
 //! so the temperatures are updated from the flows that belong to the solution, each of which
-//! leaves one level and enters another.
+//! leaves one level and enters another. What an update loses below the last digit of a temperature
+//! is carried to the next, or slow trends would stall.
 //!
 //! Interfaces with colder water above (density by temperature alone) get the convective
 //! diffusivity for the step. Source of the balance: Munk 1966 (Deep-Sea Res. 13:707); of kappa(z):
@@ -23,6 +24,7 @@
 use super::params::{AdvectionScheme, Mixing};
 use crate::grid::column::ColumnLevels;
 use crate::numerics::lanes::Lanes;
+use crate::numerics::sum::{CompensatedSum, compensated};
 use crate::numerics::tridiagonal;
 
 /// x / (e^x - 1) for x >= 0.
@@ -59,6 +61,14 @@ impl Face {
             above: smaller + (-flow).max(0.0),
         }
     }
+
+    /// The upward flow, written with the difference of temperatures so that strong mixing of
+    /// equal temperatures leaves no rounding error behind.
+    fn upward(&self, above_c: f64, below_c: f64) -> f64 {
+        let flow = self.below - self.above;
+        let upstream = if flow > 0.0 { below_c } else { above_c };
+        self.below.min(self.above) * (below_c - above_c) + flow * upstream
+    }
 }
 
 /// Diffusivity kappa(z) at depth `z_m`, m2 s-1.
@@ -78,10 +88,9 @@ pub struct Sources {
     pub inflow_heat: Vec<f64>,
     /// Water that leaves at the temperature of the level, m3 s-1, `[level]`.
     pub outflow: Vec<f64>,
-    /// Exchange of the top level with the mixed layer without net flow, m3 s-1.
-    pub surface_rate: f64,
-    /// Rate times mixed-layer temperature, m3 degC s-1.
-    pub surface_heat: f64,
+    /// Exchange of the top level with each mixed layer without net flow: rate, m3 s-1, and
+    /// temperature of that mixed layer, degC.
+    pub surface: Vec<(f64, f64)>,
 }
 
 impl Sources {
@@ -92,8 +101,7 @@ impl Sources {
             inflow: zero(),
             inflow_heat: zero(),
             outflow: zero(),
-            surface_rate: 0.0,
-            surface_heat: 0.0,
+            surface: Vec::new(),
         }
     }
 }
@@ -106,6 +114,7 @@ pub struct Column {
     conductance: Vec<f64>,
     convective: Vec<f64>,
     faces: Vec<Face>,
+    remainder: Vec<f64>,
     lower: Vec<f64>,
     diagonal: Vec<f64>,
     upper: Vec<f64>,
@@ -139,6 +148,7 @@ impl Column {
                 .map(|k| per_diffusivity(k) * convective_m2_s)
                 .collect(),
             faces: Vec::with_capacity(n),
+            remainder: zero(),
             lower: zero(),
             diagonal: zero(),
             upper: zero(),
@@ -149,7 +159,22 @@ impl Column {
 
     /// Heat content over rho c, m3 degC.
     pub fn content(&self, temperature: &[f64]) -> f64 {
-        crate::numerics::sum::compensated(self.volume.iter().zip(temperature).map(|(v, t)| v * t))
+        let held = self.volume.iter().zip(temperature);
+        let rest = self.volume.iter().zip(&self.remainder);
+        compensated(held.chain(rest).map(|(v, t)| v * t))
+    }
+
+    /// What the temperatures still owe to rounding, K, `[level]`; part of the state.
+    pub fn remainder(&self) -> &[f64] {
+        &self.remainder
+    }
+
+    /// Sets what [`Self::remainder`] gave.
+    ///
+    /// # Panics
+    /// When the length differs.
+    pub fn set_remainder(&mut self, remainder: &[f64]) {
+        self.remainder.copy_from_slice(remainder);
     }
 
     /// Weights of all interfaces for these flows and this stability.
@@ -182,8 +207,10 @@ impl Column {
             self.diagonal[k] = inertia + sources.outflow[k];
             self.solution[k] = inertia * t + sources.inflow_heat[k];
         }
-        self.diagonal[0] += sources.surface_rate;
-        self.solution[0] += sources.surface_heat;
+        for (rate, mixed_layer) in &sources.surface {
+            self.diagonal[0] += rate;
+            self.solution[0] += rate * mixed_layer;
+        }
         for (k, face) in self.faces.iter().enumerate() {
             self.diagonal[k] += face.above;
             self.upper[k] = -face.below;
@@ -209,14 +236,19 @@ impl Column {
         for k in 0..gain.len() {
             gain[k] = sources.inflow_heat[k] - sources.outflow[k] * t[k];
         }
-        gain[0] += sources.surface_heat - sources.surface_rate * t[0];
+        let top = t[0];
+        gain[0] += compensated(sources.surface.iter().map(|(r, m)| r * (m - top)));
         for (k, face) in self.faces.iter().enumerate() {
-            let upward = face.below * t[k + 1] - face.above * t[k];
+            let upward = face.upward(t[k], t[k + 1]);
             gain[k] += upward;
             gain[k + 1] -= upward;
         }
-        for ((value, gain), volume) in temperature.iter_mut().zip(gain).zip(&self.volume) {
-            *value += *gain * dt_s / volume;
+        for (k, value) in temperature.iter_mut().enumerate() {
+            let mut sum = CompensatedSum::from_parts([*value, self.remainder[k]]);
+            sum.add(gain[k] * dt_s / self.volume[k]);
+            *value = sum.value();
+            let [high, low] = sum.parts();
+            self.remainder[k] = (high - *value) + low;
         }
         &self.solution
     }

@@ -30,6 +30,8 @@ pub mod thermocline;
 mod variables;
 
 #[cfg(test)]
+mod kernel_tests;
+#[cfg(test)]
 mod tests;
 
 pub use params::Params;
@@ -110,8 +112,9 @@ impl OceanColumn {
         let area = patterns.column_area_m2;
         let column = Column::new(&levels, area, mix.advection, kappa, mix.convective_m2_s);
         let start = &params.initial;
-        let profile =
-            |z: &f64| start.bottom_c + (start.surface_c - start.bottom_c) * (-z / start.scale_m).exp();
+        let profile = |z: &f64| {
+            start.bottom_c + (start.surface_c - start.bottom_c) * (-z / start.scale_m).exp()
+        };
         let temperature: Vec<f64> = levels.middle_m().iter().map(profile).collect();
         let deep = params.sinking.reference_m3_s;
         let depth = thermocline::bounded_pycnocline_scale(&levels, &temperature);
@@ -179,8 +182,7 @@ impl OceanColumn {
     /// Flows out of the column this year, m3 s-1: through the top and to the Southern Ocean.
     fn outflows(&self, exchange: &Exchange) -> (f64, f64) {
         let water = compensated(exchange.sinking_volume_m3.iter().copied()) / YEAR_SECONDS;
-        let southern =
-            water * self.rates.southern / (self.rates.deep + self.rates.subtropical);
+        let southern = water * self.rates.southern / (self.rates.deep + self.rates.subtropical);
         (water - southern, southern)
     }
 
@@ -200,10 +202,17 @@ impl OceanColumn {
         self.sources.outflow[k] += (1.0 - below) * southern;
         self.sources.outflow[k + 1] += below * southern;
         let velocity = self.params.surface_exchange.velocity_m_s;
-        self.sources.surface_rate = velocity * self.patterns.exchange_area_m2.iter().sum::<f64>();
-        self.sources.surface_heat =
-            velocity * self.patterns.exchange_sum(&exchange.mixed_layer_temperature_c);
-        let steps = (slow_years / self.params.longest_substep_yr).ceil().max(1.0);
+        let areas = self.patterns.exchange_area_m2.iter();
+        let surface = areas.zip(&exchange.mixed_layer_temperature_c);
+        self.sources.surface.clear();
+        self.sources.surface.extend(
+            surface
+                .filter(|(area, _)| **area > 0.0)
+                .map(|(area, t)| (velocity * area, *t)),
+        );
+        let steps = (slow_years / self.params.longest_substep_yr)
+            .ceil()
+            .max(1.0);
         let dt = slow_years * YEAR_SECONDS / steps;
         let (mut sum_top, mut sum_source, mut step) = (0.0, 0.0, 0.0);
         while step < steps {
@@ -258,8 +267,7 @@ impl OceanColumn {
         let sinking = &self.params.sinking;
         let target = closure::target(sinking, &drivers);
         self.rates.deep = closure::relaxed(sinking, self.rates.deep, target);
-        self.rates.southern =
-            closure::southern(&self.params.upwelling, depth, self.rates.deep);
+        self.rates.southern = closure::southern(&self.params.upwelling, depth, self.rates.deep);
     }
 
     fn book(&mut self, exchange: &Exchange) {
@@ -400,7 +408,8 @@ impl Component for OceanColumn {
             b.sinking_c,
             b.low_latitude_c,
         ];
-        [&numbers[..], &self.temperature, &self.heat_w].concat()
+        let remainder = self.column.remainder();
+        [&numbers[..], &self.temperature, remainder, &self.heat_w].concat()
     }
 
     fn restore(&mut self, state: &[f64]) -> Result<(), PhysicsError> {
@@ -408,17 +417,24 @@ impl Component for OceanColumn {
         let fault = PhysicsError::RestartLength {
             component: NAME,
             found: state.len(),
-            needed: 10 + levels + bands,
+            needed: 10 + 2 * levels + bands,
         };
         let Some((&[deep, subtropical, southern, told, rest @ ..], profile)) =
             state.split_first_chunk::<10>()
         else {
             return Err(fault);
         };
-        if profile.len() != levels + bands {
+        if profile.len() != 2 * levels + bands {
             return Err(fault);
         }
-        let [slow_years, reservoir_j, received_j, given_j, sinking_c, low_latitude_c] = rest;
+        let [
+            slow_years,
+            reservoir_j,
+            received_j,
+            given_j,
+            sinking_c,
+            low_latitude_c,
+        ] = rest;
         self.rates = Rates {
             deep,
             subtropical,
@@ -434,7 +450,8 @@ impl Component for OceanColumn {
             low_latitude_c,
         };
         self.temperature.copy_from_slice(&profile[..levels]);
-        self.heat_w.copy_from_slice(&profile[levels..]);
+        self.column.set_remainder(&profile[levels..2 * levels]);
+        self.heat_w.copy_from_slice(&profile[2 * levels..]);
         Ok(())
     }
 }

@@ -227,7 +227,12 @@ impl Params {
         self.mixing.check(&mut r);
         let e = &self.surface_exchange;
         r.not_negative("surface_exchange.velocity_m_s", e.velocity_m_s);
-        within(&mut r, "surface_exchange.limit_deg", e.limit_deg, 5.0..=60.0);
+        within(
+            &mut r,
+            "surface_exchange.limit_deg",
+            e.limit_deg,
+            5.0..=60.0,
+        );
         r.positive("surface_exchange.width_deg", e.width_deg);
         self.upwelling.check(&mut r, self.levels.depth_m);
         self.sinking.check(&mut r);
@@ -237,7 +242,12 @@ impl Params {
 
 fn within(r: &mut Ranges, key: &str, value: f64, range: std::ops::RangeInclusive<f64>) {
     let allowed = range.contains(&value);
-    r.require(key, value, allowed, "is a latitude outside the range this key allows");
+    r.require(
+        key,
+        value,
+        allowed,
+        "is a latitude outside the range this key allows",
+    );
 }
 
 impl Levels {
@@ -293,14 +303,20 @@ impl Upwelling {
             "must be positive and above the bottom of the column",
         );
         r.not_negative("upwelling.southern_wind_m3_s", self.southern_wind_m3_s);
-        r.positive("upwelling.southern_eddy_depth_m", self.southern_eddy_depth_m);
+        r.positive(
+            "upwelling.southern_eddy_depth_m",
+            self.southern_eddy_depth_m,
+        );
     }
 }
 
 impl Sinking {
     fn check(&self, r: &mut Ranges) {
         r.positive("sinking.reference_m3_s", self.reference_m3_s);
-        r.positive("sinking.reference_gross_loss_w", self.reference_gross_loss_w);
+        r.positive(
+            "sinking.reference_gross_loss_w",
+            self.reference_gross_loss_w,
+        );
         r.positive("sinking.reference_net_loss_w", self.reference_net_loss_w);
         r.positive("sinking.reference_contrast_k", self.reference_contrast_k);
         r.positive("sinking.reference_depth_m", self.reference_depth_m);

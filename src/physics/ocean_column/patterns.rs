@@ -11,6 +11,7 @@
 //! ocean area equatorward of the limiting latitude. Units: m2. Source: definitions here.
 
 use super::params::Params;
+use crate::numerics::sum::compensated;
 use crate::physics::exchange::Surface;
 use crate::physics::{RangeError, Ranges, smooth_step};
 
@@ -80,7 +81,12 @@ impl Patterns {
         };
         let exchanging: f64 = patterns.exchange_area_m2.iter().sum();
         let limit = "leaves no ocean under this window";
-        ranges.require("surface_exchange.limit_deg", exchanging, exchanging > 0.0, limit);
+        ranges.require(
+            "surface_exchange.limit_deg",
+            exchanging,
+            exchanging > 0.0,
+            limit,
+        );
         ranges.finish().map(|()| patterns)
     }
 
@@ -104,5 +110,10 @@ fn normalised(ranges: &mut Ranges, key: &str, mut weights: Vec<f64>) -> Vec<f64>
     let sum: f64 = weights.iter().sum();
     ranges.require(key, sum, sum > 0.0, "leaves no ocean under this window");
     weights.iter_mut().for_each(|w| *w /= sum);
+    // The last rounding goes to the largest weight: heat handed out must sum to heat given.
+    let rest = 1.0 - compensated(weights.iter().copied());
+    if let Some(largest) = weights.iter_mut().max_by(|a, b| a.total_cmp(b)) {
+        *largest += rest;
+    }
     weights
 }

@@ -29,22 +29,63 @@ pub(super) fn declared() -> Vec<Variable> {
         Variable {
             axes: &[Axis::Depth],
             standard_name: Some("sea_water_potential_temperature"),
-            ..temperature("column_temperature", "temperature of the low-latitude ocean column")
+            ..temperature(
+                "column_temperature",
+                "temperature of the low-latitude ocean column",
+            )
         },
-        plain("isotherm_20c_depth", "m", "depth of the 20 degree C isotherm"),
+        plain(
+            "isotherm_20c_depth",
+            "m",
+            "depth of the 20 degree C isotherm",
+        ),
         plain(
             "relative_isotherm_depth",
             "m",
             "depth of the isotherm 5 K colder than the top of the column",
         ),
-        plain("pycnocline_depth", "m", "pycnocline scale: heat content over top-to-bottom contrast"),
-        plain("half_contrast_depth", "m", "depth where temperature is half-way from top to bottom"),
-        plain("warm_water_heat", "J m-2", "heat above the 20 degree C isotherm, counted from 20 degree C"),
-        plain("deep_sinking", "m3 s-1", "sinking of water in high latitudes"),
-        plain("subtropical_cell", "m3 s-1", "sinking of water in the wind-driven shallow cell"),
-        plain("southern_upwelling", "m3 s-1", "upwelling of deep water in the Southern Ocean"),
-        plain("overturning", "m3 s-1", "all water that passes through the column"),
-        temperature("deep_sinking_temperature", "temperature of the water that sinks in high latitudes"),
-        temperature("low_latitude_surface_temperature", "mixed-layer temperature above the column"),
+        plain(
+            "pycnocline_depth",
+            "m",
+            "pycnocline scale: heat content over top-to-bottom contrast",
+        ),
+        plain(
+            "half_contrast_depth",
+            "m",
+            "depth where temperature is half-way from top to bottom",
+        ),
+        plain(
+            "warm_water_heat",
+            "J m-2",
+            "heat above the 20 degree C isotherm, counted from 20 degree C",
+        ),
+        plain(
+            "deep_sinking",
+            "m3 s-1",
+            "sinking of water in high latitudes",
+        ),
+        plain(
+            "subtropical_cell",
+            "m3 s-1",
+            "sinking of water in the wind-driven shallow cell",
+        ),
+        plain(
+            "southern_upwelling",
+            "m3 s-1",
+            "upwelling of deep water in the Southern Ocean",
+        ),
+        plain(
+            "overturning",
+            "m3 s-1",
+            "all water that passes through the column",
+        ),
+        temperature(
+            "deep_sinking_temperature",
+            "temperature of the water that sinks in high latitudes",
+        ),
+        temperature(
+            "low_latitude_surface_temperature",
+            "mixed-layer temperature above the column",
+        ),
     ]
 }
