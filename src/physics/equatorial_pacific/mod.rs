@@ -169,7 +169,9 @@ impl EquatorialPacific {
                 limit: "leaves no ocean on the equator",
             }]);
         }
-        belt.iter_mut().for_each(|w| *w /= total);
+        for w in &mut belt {
+            *w /= total;
+        }
         let ocean: Vec<usize> = (0..belt.len())
             .filter(|i| surface.ocean_area_m2[*i] > 0.0)
             .collect();

@@ -127,11 +127,11 @@ pub struct Upwelling {
     pub southern_latitude_deg: f64,
     /// Its half-width (standard deviation), degrees, > 0. Tuned here.
     pub southern_width_deg: f64,
-    /// z_so, m, > 0: depth from which it comes. Tuned here.
+    /// `z_so`, m, > 0: depth from which it comes. Tuned here.
     pub southern_source_m: f64,
-    /// q_so0, m3 s-1, >= 0: its rate for a pycnocline of no depth (winds without eddies). Tuned here.
+    /// `q_so0`, m3 s-1, >= 0: its rate for a pycnocline of no depth (winds without eddies). Tuned here.
     pub southern_wind_m3_s: f64,
-    /// D_so, m, > 0: pycnocline depth at which eddies cancel the winds. Tuned here.
+    /// `D_so`, m, > 0: pycnocline depth at which eddies cancel the winds. Tuned here.
     pub southern_eddy_depth_m: f64,
 }
 

@@ -109,7 +109,9 @@ impl Patterns {
 fn normalised(ranges: &mut Ranges, key: &str, mut weights: Vec<f64>) -> Vec<f64> {
     let sum: f64 = weights.iter().sum();
     ranges.require(key, sum, sum > 0.0, "leaves no ocean under this window");
-    weights.iter_mut().for_each(|w| *w /= sum);
+    for w in &mut weights {
+        *w /= sum;
+    }
     // The last rounding goes to the largest weight: heat handed out must sum to heat given.
     let rest = 1.0 - compensated(weights.iter().copied());
     if let Some(largest) = weights.iter_mut().max_by(|a, b| a.total_cmp(b)) {

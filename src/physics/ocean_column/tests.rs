@@ -2,7 +2,8 @@
 
 use super::params::{AdvectionScheme, Closure, Loss, Preset};
 use super::*;
-use crate::physics::budget::Ledger;
+use crate::physics::Component;
+use crate::physics::budget::{Ledger, Quantity};
 use crate::physics::fixtures::{Noise, part, surface, year};
 
 const PART: &str = include_str!("../../../configs/parts/ocean_column.toml");

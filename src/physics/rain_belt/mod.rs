@@ -59,7 +59,9 @@ impl RainBelt {
         let pairs = share.iter().zip(bands.area_m2());
         let mut belt: Vec<f64> = pairs.map(|(s, a)| s * a).collect();
         let total: f64 = belt.iter().sum();
-        belt.iter_mut().for_each(|w| *w /= total);
+        for w in &mut belt {
+            *w /= total;
+        }
         let (from, to) = (params.contrast_from_deg, params.contrast_to_deg);
         let (south, north) = (
             bands.share_between(-to, -from),
