@@ -59,64 +59,47 @@ impl Params {
     /// When there is at least one.
     pub fn check(&self) -> Result<(), Vec<RangeError>> {
         let mut r = Ranges::default();
-        let mut within = |key: &str, value: f64, low: f64, high: f64, limit| {
-            r.require(key, value, (low..=high).contains(&value), limit);
-        };
         let most = self.largest_contrast_k;
-        within(
-            "half_width_deg",
-            self.half_width_deg,
-            1.0,
-            30.0,
-            "must lie between 1 and 30 degrees",
-        );
-        within(
-            "offset_k",
-            self.offset_k,
-            -10.0,
-            10.0,
-            "must lie between -10 and 10 K",
-        );
-        within(
-            "east_share",
-            self.east_share,
-            0.05,
-            0.95,
-            "must lie between 0.05 and 0.95",
-        );
-        within(
-            "largest_contrast_k",
-            most,
-            1.0,
-            40.0,
-            "must lie between 1 and 40 K",
-        );
-        within(
-            "initial_contrast_k",
-            self.initial_contrast_k,
-            0.0,
-            most,
-            "must lie between 0 and the largest contrast",
-        );
-        within(
-            "coast.efficiency",
-            self.coast.efficiency,
-            0.0,
-            1.0,
-            "must lie between 0 and 1",
-        );
-        let source = self.coast.source_depth_m;
-        within(
-            "coast.source_depth_m",
-            source,
-            10.0,
-            300.0,
-            "must lie between 10 and 300 m",
-        );
-        for latitude in &self.coast.coastal_latitudes_deg {
-            let key = "coast.coastal_latitudes_deg";
-            within(key, *latitude, -60.0, 60.0, "must lie between 60S and 60N");
+        for (key, value, [low, high], limit) in [
+            (
+                "half_width_deg",
+                self.half_width_deg,
+                [1.0, 30.0],
+                "must lie between 1 and 30 degrees",
+            ),
+            (
+                "offset_k",
+                self.offset_k,
+                [-10.0, 10.0],
+                "must lie between -10 and 10 K",
+            ),
+            (
+                "east_share",
+                self.east_share,
+                [0.05, 0.95],
+                "must lie between 0.05 and 0.95",
+            ),
+            (
+                "largest_contrast_k",
+                most,
+                [1.0, 40.0],
+                "must lie between 1 and 40 K",
+            ),
+            (
+                "initial_contrast_k",
+                self.initial_contrast_k,
+                [0.0, most],
+                "must lie between 0 and the largest contrast",
+            ),
+        ] {
+            r.require(key, value, low <= value && value <= high, limit);
         }
+        self.check_feedback(&mut r);
+        self.coast.check(&mut r);
+        r.finish()
+    }
+
+    fn check_feedback(&self, r: &mut Ranges) {
         r.not_negative("stress_base", self.stress_base);
         r.not_negative("stress_per_k", self.stress_per_k);
         let ordered = self.stress_limit >= self.stress_base && self.stress_limit.is_finite();
@@ -131,6 +114,25 @@ impl Params {
         r.not_negative("entrainment_efficiency", self.entrainment_efficiency);
         r.not_negative("upwelling_rate_s", self.upwelling_rate_s);
         r.positive("damping_rate_s", self.damping_rate_s);
-        r.finish()
+    }
+}
+
+impl Coast {
+    fn check(&self, r: &mut Ranges) {
+        r.fraction("coast.efficiency", self.efficiency);
+        r.require(
+            "coast.source_depth_m",
+            self.source_depth_m,
+            (10.0..=300.0).contains(&self.source_depth_m),
+            "must lie between 10 and 300 m",
+        );
+        for latitude in &self.coastal_latitudes_deg {
+            r.require(
+                "coast.coastal_latitudes_deg",
+                *latitude,
+                (-60.0..=60.0).contains(latitude),
+                "must lie between 60S and 60N",
+            );
+        }
     }
 }

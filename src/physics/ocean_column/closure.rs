@@ -18,6 +18,8 @@
 //! whatever number of years the column advances in it: its task is to damp the exchange between
 //! two models that meet once a year. Steady states do not depend on it.
 //!
+//! A year in which no deep water formed (its temperature does not exist) leaves the rate as it is.
+//!
 //! Southern Ocean: `q_so` = `q_so0` (1 - D/`D_so`), winds minus eddies (Gnanadesikan 1999), 0 to 0.9 q.
 
 use super::params::{Closure, Loss, Preset, Sinking, Upwelling};
@@ -86,6 +88,11 @@ pub struct Drivers {
     pub depth_m: f64,
 }
 
+/// The larger of two numbers; a NaN stays, so that a broken state is seen.
+fn at_least(value: f64, least: f64) -> f64 {
+    if value < least { least } else { value }
+}
+
 /// The rate at which water would sink in this state, m3 s-1.
 pub fn target(params: &Sinking, drivers: &Drivers) -> f64 {
     let e = params.closure.exponents();
@@ -93,9 +100,9 @@ pub fn target(params: &Sinking, drivers: &Drivers) -> f64 {
         Loss::GrossWinter => (drivers.gross_loss_w, params.reference_gross_loss_w),
         Loss::NetAnnual => (drivers.net_loss_w, params.reference_net_loss_w),
     };
-    let loss = loss.max(SMALLEST_LOSS_W) / reference;
-    let contrast = drivers.contrast_k.max(SMALLEST_CONTRAST_K) / params.reference_contrast_k;
-    let depth = drivers.depth_m.max(SMALLEST_DEPTH_M) / params.reference_depth_m;
+    let loss = at_least(loss, SMALLEST_LOSS_W) / reference;
+    let contrast = at_least(drivers.contrast_k, SMALLEST_CONTRAST_K) / params.reference_contrast_k;
+    let depth = at_least(drivers.depth_m, SMALLEST_DEPTH_M) / params.reference_depth_m;
     let ratio = loss.powf(e.n_loss) * contrast.powf(e.n_contrast) * depth.powf(e.n_depth);
     params.reference_m3_s * ratio.clamp(RATE_BOUNDS[0], RATE_BOUNDS[1])
 }
@@ -108,5 +115,5 @@ pub fn relaxed(params: &Sinking, rate: f64, target: f64) -> f64 {
 /// Water that returns through the Southern Ocean, m3 s-1.
 pub fn southern(params: &Upwelling, depth_m: f64, deep_sinking: f64) -> f64 {
     let rate = params.southern_wind_m3_s * (1.0 - depth_m / params.southern_eddy_depth_m);
-    rate.clamp(0.0, LARGEST_SOUTHERN_SHARE * deep_sinking)
+    rate.min(LARGEST_SOUTHERN_SHARE * deep_sinking).max(0.0)
 }

@@ -263,8 +263,10 @@ impl OceanColumn {
             depth_m: depth,
         };
         let sinking = &self.params.sinking;
-        let target = closure::target(sinking, &drivers);
-        self.rates.deep = closure::relaxed(sinking, self.rates.deep, target);
+        if self.books.sinking_c.is_finite() {
+            let target = closure::target(sinking, &drivers);
+            self.rates.deep = closure::relaxed(sinking, self.rates.deep, target);
+        }
         self.rates.southern = closure::southern(&self.params.upwelling, depth, self.rates.deep);
     }
 

@@ -15,6 +15,8 @@ use crate::numerics::sum::compensated;
 use crate::physics::exchange::Surface;
 use crate::physics::{RangeError, Ranges, smooth_step};
 
+const NO_OCEAN: &str = "leaves no ocean under this window";
+
 /// Areas and weights of all bands.
 #[derive(Clone, Debug)]
 pub struct Patterns {
@@ -38,55 +40,36 @@ impl Patterns {
     /// # Errors
     /// When there is no ocean under one of the windows.
     pub fn new(params: &Params, surface: &Surface) -> Result<Self, Vec<RangeError>> {
-        let latitude = surface.bands.centre_deg();
-        let under = |window: &dyn Fn(f64) -> f64| -> Vec<f64> {
-            let pairs = latitude.iter().zip(&surface.ocean_area_m2);
-            pairs
-                .map(|(lat, a)| if *a > 0.0 { a * window(*lat) } else { 0.0 })
-                .collect()
-        };
         let up = &params.upwelling;
         let bell = |distance: f64, width: f64| (-0.5 * (distance / width).powi(2)).exp();
         let edge = |lat: f64, limit: f64, width: f64| 1.0 - smooth_step(lat.abs(), limit, width);
         let exchange = &params.surface_exchange;
-        let inside = surface
-            .bands
-            .share_between(-params.area_limit_deg, params.area_limit_deg);
-        let area: Vec<f64> = inside
-            .iter()
-            .zip(&surface.ocean_area_m2)
-            .map(|(s, a)| s * a)
-            .collect();
-        let column_area_m2: f64 = area.iter().sum();
+        let limit = params.area_limit_deg;
+        let inside = surface.bands.share_between(-limit, limit);
+        let area = inside.iter().zip(&surface.ocean_area_m2);
+        let area: Vec<f64> = area.map(|(s, a)| s * a).collect();
+        let broad = under(surface, |lat| {
+            edge(lat, up.broad_limit_deg, up.broad_width_deg)
+        });
+        let equatorial = under(surface, |lat| bell(lat, up.equatorial_width_deg));
+        let southern = under(surface, |lat| {
+            bell(lat - up.southern_latitude_deg, up.southern_width_deg)
+        });
         let mut ranges = Ranges::default();
+        let r = &mut ranges;
         let patterns = Self {
-            column_area_m2,
-            area_share: normalised(&mut ranges, "area_limit_deg", area),
-            broad: normalised(
-                &mut ranges,
-                "upwelling.broad_limit_deg",
-                under(&|lat| edge(lat, up.broad_limit_deg, up.broad_width_deg)),
-            ),
-            equatorial: normalised(
-                &mut ranges,
-                "upwelling.equatorial_width_deg",
-                under(&|lat| bell(lat, up.equatorial_width_deg)),
-            ),
-            southern: normalised(
-                &mut ranges,
-                "upwelling.southern_latitude_deg",
-                under(&|lat| bell(lat - up.southern_latitude_deg, up.southern_width_deg)),
-            ),
-            exchange_area_m2: under(&|lat| edge(lat, exchange.limit_deg, exchange.width_deg)),
+            column_area_m2: area.iter().sum(),
+            area_share: normalised(r, "area_limit_deg", area),
+            broad: normalised(r, "upwelling.broad_limit_deg", broad),
+            equatorial: normalised(r, "upwelling.equatorial_width_deg", equatorial),
+            southern: normalised(r, "upwelling.southern_latitude_deg", southern),
+            exchange_area_m2: under(surface, |lat| {
+                edge(lat, exchange.limit_deg, exchange.width_deg)
+            }),
         };
         let exchanging: f64 = patterns.exchange_area_m2.iter().sum();
-        let limit = "leaves no ocean under this window";
-        ranges.require(
-            "surface_exchange.limit_deg",
-            exchanging,
-            exchanging > 0.0,
-            limit,
-        );
+        let key = "surface_exchange.limit_deg";
+        ranges.require(key, exchanging, exchanging > 0.0, NO_OCEAN);
         ranges.finish().map(|()| patterns)
     }
 
@@ -106,9 +89,21 @@ impl Patterns {
     }
 }
 
+/// Ocean area times window, exactly zero without ocean.
+fn under(surface: &Surface, window: impl Fn(f64) -> f64) -> Vec<f64> {
+    let pairs = surface
+        .bands
+        .centre_deg()
+        .iter()
+        .zip(&surface.ocean_area_m2);
+    pairs
+        .map(|(lat, a)| if *a > 0.0 { a * window(*lat) } else { 0.0 })
+        .collect()
+}
+
 fn normalised(ranges: &mut Ranges, key: &str, mut weights: Vec<f64>) -> Vec<f64> {
     let sum: f64 = weights.iter().sum();
-    ranges.require(key, sum, sum > 0.0, "leaves no ocean under this window");
+    ranges.require(key, sum, sum > 0.0, NO_OCEAN);
     for w in &mut weights {
         *w /= sum;
     }

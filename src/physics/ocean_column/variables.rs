@@ -25,15 +25,32 @@ fn temperature(name: &'static str, long_name: &'static str) -> Variable {
 
 /// All variables, in order.
 pub(super) fn declared() -> Vec<Variable> {
-    vec![
-        Variable {
-            axes: &[Axis::Depth],
-            standard_name: Some("sea_water_potential_temperature"),
-            ..temperature(
-                "column_temperature",
-                "temperature of the low-latitude ocean column",
-            )
-        },
+    let profile = Variable {
+        axes: &[Axis::Depth],
+        standard_name: Some("sea_water_potential_temperature"),
+        ..temperature(
+            "column_temperature",
+            "temperature of the low-latitude ocean column",
+        )
+    };
+    let mut all = vec![profile];
+    all.extend(depths());
+    all.extend(flows());
+    all.extend([
+        temperature(
+            "deep_sinking_temperature",
+            "temperature of the water that sinks in high latitudes",
+        ),
+        temperature(
+            "low_latitude_surface_temperature",
+            "mixed-layer temperature above the column",
+        ),
+    ]);
+    all
+}
+
+fn depths() -> [Variable; 5] {
+    [
         plain(
             "isotherm_20c_depth",
             "m",
@@ -59,6 +76,11 @@ pub(super) fn declared() -> Vec<Variable> {
             "J m-2",
             "heat above the 20 degree C isotherm, counted from 20 degree C",
         ),
+    ]
+}
+
+fn flows() -> [Variable; 4] {
+    [
         plain(
             "deep_sinking",
             "m3 s-1",
@@ -78,14 +100,6 @@ pub(super) fn declared() -> Vec<Variable> {
             "overturning",
             "m3 s-1",
             "all water that passes through the column",
-        ),
-        temperature(
-            "deep_sinking_temperature",
-            "temperature of the water that sinks in high latitudes",
-        ),
-        temperature(
-            "low_latitude_surface_temperature",
-            "mixed-layer temperature above the column",
         ),
     ]
 }
