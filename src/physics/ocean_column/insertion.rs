@@ -63,40 +63,58 @@ impl NeutralLevels {
     }
 }
 
-/// Adds parcels (`volume`, and `heat` = volume x temperature) to the water and heat that enter the
-/// levels, multiplied by `rate`. A parcel without volume goes to the top.
+/// Water that sinks together.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Parcel {
+    /// Volume, m3, or volume per time, m3 s-1.
+    pub volume: f64,
+    /// Volume times temperature, m3 degC, or per time.
+    pub heat: f64,
+    /// Temperature, degC; infinite (to the top) for heat without volume.
+    pub temperature_c: f64,
+}
+
+/// Collects the parcels that hold water or heat, multiplied by `rate`.
+pub fn gather(parcels: &mut Vec<Parcel>, volumes: &[f64], heats: &[f64], rate: f64) {
+    parcels.clear();
+    let pairs = volumes.iter().zip(heats);
+    let present = pairs.filter(|(volume, heat)| **volume != 0.0 || **heat != 0.0);
+    parcels.extend(present.map(|(volume, heat)| Parcel {
+        volume: rate * volume,
+        heat: rate * heat,
+        temperature_c: if *volume > 0.0 {
+            heat / volume
+        } else {
+            f64::INFINITY
+        },
+    }));
+}
+
+/// Water and heat that enter the levels when `parcels` sink into the profile `temperature_c`.
 pub fn insert(
     levels: &mut NeutralLevels,
     temperature_c: &[f64],
-    parcels: impl Iterator<Item = (f64, f64)>,
-    rate: f64,
+    parcels: &[Parcel],
     [inflow, inflow_heat]: [&mut [f64]; 2],
 ) {
     levels.set(temperature_c);
     inflow.fill(0.0);
     inflow_heat.fill(0.0);
-    for (volume, heat) in parcels {
-        if volume == 0.0 && heat == 0.0 {
-            continue;
-        }
-        let place = if volume > 0.0 {
-            levels.place(temperature_c, heat / volume)
-        } else {
-            Place {
-                level: 0,
-                share_above: 0.0,
-            }
-        };
+    for parcel in parcels {
+        let place = levels.place(temperature_c, parcel.temperature_c);
         let k = place.level;
         if place.share_above > 0.0 {
-            let (up_volume, up_heat) = (volume * place.share_above, heat * place.share_above);
-            inflow[k - 1] += rate * up_volume;
-            inflow_heat[k - 1] += rate * up_heat;
-            inflow[k] += rate * (volume - up_volume);
-            inflow_heat[k] += rate * (heat - up_heat);
+            let (volume, heat) = (
+                parcel.volume * place.share_above,
+                parcel.heat * place.share_above,
+            );
+            inflow[k - 1] += volume;
+            inflow_heat[k - 1] += heat;
+            inflow[k] += parcel.volume - volume;
+            inflow_heat[k] += parcel.heat - heat;
         } else {
-            inflow[k] += rate * volume;
-            inflow_heat[k] += rate * heat;
+            inflow[k] += parcel.volume;
+            inflow_heat[k] += parcel.heat;
         }
     }
 }
@@ -131,24 +149,21 @@ mod tests {
     #[test]
     fn conserves_volume_and_heat_of_parcels() {
         let profile = [25.0, 20.0, 10.0, 4.0, 2.0];
-        let parcels: Vec<(f64, f64)> = (0..400)
-            .map(|i| {
-                let t = -3.0 + 0.09 * f64::from(i);
-                (f64::from(i % 7), f64::from(i % 7) * t)
-            })
+        let volumes: Vec<f64> = (0..400).map(|i| f64::from(i % 7)).collect();
+        let pairs = volumes.iter().zip(0..400);
+        let heats: Vec<f64> = pairs
+            .map(|(v, i)| v * (-3.0 + 0.09 * f64::from(i)))
             .collect();
         let (mut inflow, mut heat) = (vec![0.0; 5], vec![0.0; 5]);
-        let mut levels = NeutralLevels::new(5);
+        let mut parcels = Vec::new();
+        gather(&mut parcels, &volumes, &heats, 1.0);
         insert(
-            &mut levels,
+            &mut NeutralLevels::new(5),
             &profile,
-            parcels.iter().copied(),
-            1.0,
+            &parcels,
             [&mut inflow, &mut heat],
         );
-        let total: (f64, f64) = parcels
-            .iter()
-            .fold((0.0, 0.0), |s, p| (s.0 + p.0, s.1 + p.1));
+        let total: (f64, f64) = (volumes.iter().sum(), heats.iter().sum());
         assert!((inflow.iter().sum::<f64>() / total.0 - 1.0).abs() < 1e-14);
         assert!((heat.iter().sum::<f64>() / total.1 - 1.0).abs() < 1e-14);
     }

@@ -42,7 +42,7 @@ use crate::numerics::sum::compensated;
 use crate::physics::exchange::{Exchange, Surface};
 use crate::physics::{PhysicsError, RangeError};
 use crate::units::{SEA_WATER_HEAT_CAPACITY_J_M3_K as HEAT_CAPACITY, YEAR_SECONDS};
-use insertion::NeutralLevels;
+use insertion::{NeutralLevels, Parcel};
 use mixing::{Column, Sources};
 use params::Evolution;
 use patterns::Patterns;
@@ -78,6 +78,7 @@ pub struct OceanColumn {
     patterns: Patterns,
     column: Column,
     neutral: NeutralLevels,
+    parcels: Vec<Parcel>,
     sources: Sources,
     /// Level above the southern source, and the weight of the one below it.
     source: (usize, f64),
@@ -124,6 +125,7 @@ impl OceanColumn {
             },
             source: source_level(&levels, params.upwelling.southern_source_m),
             neutral: NeutralLevels::new(levels.len()),
+            parcels: Vec::new(),
             sources: Sources::none(levels.len()),
             heat_w: vec![0.0; surface.bands.len()],
             told: false,
@@ -212,14 +214,18 @@ impl OceanColumn {
             .ceil()
             .max(1.0);
         let dt = slow_years * YEAR_SECONDS / steps;
+        insertion::gather(
+            &mut self.parcels,
+            &exchange.sinking_volume_m3,
+            &exchange.sinking_heat_m3_c,
+            1.0 / YEAR_SECONDS,
+        );
         let (mut sum_top, mut sum_source, mut step) = (0.0, 0.0, 0.0);
         while step < steps {
-            let volumes = exchange.sinking_volume_m3.iter().copied();
             insertion::insert(
                 &mut self.neutral,
                 &self.temperature,
-                volumes.zip(exchange.sinking_heat_m3_c.iter().copied()),
-                1.0 / YEAR_SECONDS,
+                &self.parcels,
                 [&mut self.sources.inflow, &mut self.sources.inflow_heat],
             );
             let implicit = self.column.step(&mut self.temperature, &self.sources, dt);
