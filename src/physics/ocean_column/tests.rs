@@ -107,7 +107,7 @@ fn residual_with_random_sinking(mut rig: Rig, seasonal_years: usize, slow_years:
 fn conserves_heat_for_a_thousand_years_of_random_sinking() {
     let synchronous = residual_with_random_sinking(Rig::new(&params()), 1000, 1.0);
     let accelerated = residual_with_random_sinking(Rig::new(&params()), 50, 20.0);
-    // Measured 1.4e-16 and 1.3e-15: the last digit of the content itself.
+    // Measured 1.5e-16 and 5e-16: the last digit of the content itself.
     assert!(synchronous < 1e-15, "{synchronous:e}");
     assert!(accelerated < 5e-15, "{accelerated:e}");
 }
@@ -153,7 +153,7 @@ fn converges_to_a_steady_state_that_does_not_depend_on_the_acceleration() {
     for (years, m) in [(1000, 20.0), (200, 100.0)] {
         let fast = Rig::new(&fixed).settle(years, m);
         let change = (fast.isotherm_20c_m - slow.isotherm_20c_m).abs();
-        assert!(change < 1e-2, "M = {m}: {change} m");
+        assert!(change < 1e-4, "M = {m}: {change} m");
     }
 }
 
@@ -169,15 +169,19 @@ fn analytic_steady_state_takes_in_as_much_heat_as_it_gives() {
 #[test]
 fn published_depth_and_rate_follow_bryan_1987_exponents() {
     // D ~ kappa^(1/3), q ~ kappa^(2/3) (Bryan 1987; remembered, the scaling confirmed by the abstract of Park
-    // & Bryan 2000). Stand-in for the mixed layer: uniform 26 degC, restored strongly. The level
-    // structure and the finite depth leave 1 % of the exponent.
+    // & Bryan 2000). Stand-in for the mixed layer: uniform 26 degC, restored strongly. In 4000 m the exponents
+    // come out 0.329 and 0.659, because the profile has not ended at the bottom (e^{-H/D} H/D = 2 %);
+    // in 12 km only half the top level is left, which adds to D: ln(1 + 0.5/345)/ln 8 = 7e-4 at most.
     let state = |factor: f64| {
         let mut p = params();
         p.mixing.upper_m2_s = 1e-5 * factor;
         p.mixing.deep_m2_s = 1e-5 * factor;
         p.mixing.near_surface_m2_s = 0.0;
-        p.levels.count = 80;
-        p.levels.first_m = 5.0;
+        p.levels.depth_m = 12_000.0;
+        p.levels.count = 160;
+        p.levels.first_m = 1.0;
+        // Water colder than what sinks would stay below it and warm by diffusion only.
+        p.initial.bottom_c = 4.0;
         p.surface_exchange.velocity_m_s = 1e-3;
         p.upwelling.southern_wind_m3_s = 0.0;
         p.sinking.subtropical_m3_s = 0.0;
@@ -186,18 +190,18 @@ fn published_depth_and_rate_follow_bryan_1987_exponents() {
         let mut rig = Rig::new(&p);
         rig.exchange.mixed_layer_temperature_c.fill(26.0);
         rig.spread_k = 0.0;
-        let depth = rig.settle(1500, 100.0).pycnocline_m;
+        let depth = rig.settle(1500, 200.0).pycnocline_m;
         (depth, rig.exchange.deep_sinking_m3_s)
     };
     let ((d1, q1), (d8, q8)) = (state(1.0), state(8.0));
     let exponent = |a: f64, b: f64| (b / a).ln() / 8_f64.ln();
     let found = (exponent(d1, d8), exponent(q1, q8));
     assert!(
-        (found.0 - 1.0 / 3.0).abs() < 0.01,
+        (found.0 - 1.0 / 3.0).abs() < 1e-3,
         "{found:?} {d1} {d8} {q1} {q8}"
     );
     assert!(
-        (found.1 - 2.0 / 3.0).abs() < 0.01,
+        (found.1 - 2.0 / 3.0).abs() < 1e-3,
         "{found:?} {d1} {d8} {q1} {q8}"
     );
 }
