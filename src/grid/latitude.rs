@@ -171,6 +171,17 @@ impl LatitudeBands {
             / total
     }
 
+    /// Share of each band's area that lies between two latitudes (degrees north), 0-1.
+    pub fn share_between(&self, south_deg: f64, north_deg: f64) -> Vec<f64> {
+        let limit = |deg: f64| deg.clamp(-90.0, 90.0).to_radians().sin();
+        let (south, north) = (limit(south_deg), limit(north_deg));
+        self.edge_sine
+            .windows(2)
+            .map(|e| (e[1].min(north) - e[0].max(south)).max(0.0) / (e[1] - e[0]))
+            .map(|share| share.min(1.0))
+            .collect()
+    }
+
     /// Field given on equally wide source bands in latitude, averaged conservatively onto these.
     ///
     /// `source[k]` holds from -90 + 180 k/K to -90 + 180 (k+1)/K degrees; weights are areas.
@@ -220,6 +231,16 @@ mod tests {
         let fine = LatitudeBands::new(144, Spacing::EqualSine).unwrap();
         let mean = fine.mean(&fine.remap_equal_latitude(&source));
         assert!((mean - bands.mean(&source)).abs() < 1e-9);
+    }
+
+    #[test]
+    fn analytic_shares_between_latitudes_add_up_to_the_zone() {
+        let bands = LatitudeBands::new(36, Spacing::EqualSine).unwrap();
+        let share = bands.share_between(-8.0, 47.0);
+        let zone = 2.0 * PI * EARTH_RADIUS_M * EARTH_RADIUS_M;
+        let zone = zone * (47_f64.to_radians().sin() + 8_f64.to_radians().sin());
+        let sum: f64 = share.iter().zip(bands.area_m2()).map(|(s, a)| s * a).sum();
+        assert!((sum / zone - 1.0).abs() < 1e-13);
     }
 
     #[test]

@@ -6,7 +6,12 @@
 
 pub mod budget;
 pub mod energy_balance;
+pub mod equatorial_pacific;
 pub mod exchange;
+#[cfg(test)]
+mod fixtures;
+pub mod ocean_column;
+pub mod rain_belt;
 pub mod saturation;
 pub mod surface;
 
@@ -128,6 +133,12 @@ macro_rules! components {
 components! {
     /// Air, land, ocean mixed layer and sea ice over the seasons.
     energy_balance: energy_balance::EnergyBalance,
+    /// Tropical ocean column.
+    ocean_column: ocean_column::OceanColumn,
+    /// West and east of the equatorial Pacific, and coastal upwelling.
+    equatorial_pacific: equatorial_pacific::EquatorialPacific,
+    /// Drive of the tropical rain belt.
+    rain_belt: rain_belt::RainBelt,
 }
 
 /// One part of the climate, advanced one seasonal year at a time.
