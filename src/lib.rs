@@ -1,6 +1,11 @@
 #![doc = include_str!("../README.md")]
 
+pub mod analysis;
+#[cfg(feature = "netcdf")]
+pub mod cli;
 pub mod config;
+#[cfg(feature = "netcdf")]
+pub mod experiment;
 pub mod forcing;
 pub mod grid;
 pub mod model;

@@ -1,2 +1,7 @@
-//! stub
-fn main() {}
+//! The program; all it does is in the library.
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    orbicline::cli::main()
+}

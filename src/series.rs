@@ -31,6 +31,15 @@ pub enum Scale {
     Plain,
 }
 
+/// What the numbers of a record stand for (CF 1.11 `cell_methods` over age).
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Statistic {
+    /// The mean over the record's interval.
+    Mean,
+    /// One instant, named in the variable's long name.
+    Point,
+}
+
 /// One variable of a run: a number, or an array over [`Axis`] values, for every record.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Variable {
@@ -46,6 +55,8 @@ pub struct Variable {
     pub standard_name: Option<&'static str>,
     /// How the numbers are to be read.
     pub scale: Scale,
+    /// What the numbers stand for.
+    pub statistic: Statistic,
 }
 
 /// One record: means over an interval of model time.

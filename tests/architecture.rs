@@ -10,8 +10,6 @@ mod names;
 #[path = "architecture/project.rs"]
 mod project;
 
-/// Crates in the manifest whose users are still being written. Must be empty in a release.
-const AWAITED: [&str; 3] = ["clap", "indicatif", "nalgebra"];
 
 /// The messages for planted sources.
 fn planted(files: &[(&str, &str)]) -> Vec<String> {

@@ -8,7 +8,7 @@
 use std::path::Path;
 
 use orbicline::output::{AxisValues, OutputError, Overwrite, RunFile, RunWriter, Schema};
-use orbicline::series::{Axis, Record, Scale, Variable};
+use orbicline::series::{Axis, Record, Scale, Statistic, Variable};
 
 const fn plain(
     name: &'static str,
@@ -23,6 +23,7 @@ const fn plain(
         long_name,
         standard_name: None,
         scale: Scale::Plain,
+        statistic: Statistic::Mean,
     }
 }
 

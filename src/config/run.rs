@@ -3,7 +3,7 @@
 //! The tables are those of the parts themselves; this module only composes them, finds where each
 //! offending key was written, and reads the table of carbon dioxide when one is named.
 
-use super::{ConfigError, Place, Tree};
+use super::{ConfigError, InputFile, Place, Tree, read_text};
 use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideError, CarbonDioxideSpec};
 use crate::forcing::drive::{Drive, DriveNumbers};
 use crate::grid::calendar::MonthWeights;
@@ -173,6 +173,20 @@ impl Experiment {
         self.run.build(&self.folder).map_err(|faults| BuildError {
             faults: faults.into_iter().map(|fault| self.placed(fault)).collect(),
         })
+    }
+
+    /// All files that define the run, with their hashes.
+    ///
+    /// # Errors
+    /// When the table of carbon dioxide cannot be read.
+    pub fn inputs(&self) -> Result<Vec<InputFile>, ConfigError> {
+        let mut files = self.tree.input_files().to_vec();
+        if let CarbonDioxideSpec::Table { path } = &self.run.co2 {
+            let path = self.folder.join(path);
+            let text = read_text(&path)?;
+            files.push(InputFile::new(&path, text.as_bytes()));
+        }
+        Ok(files)
     }
 
     fn placed(&self, fault: Fault) -> PlacedFault {

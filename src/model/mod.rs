@@ -171,21 +171,12 @@ impl Model {
         Ok(())
     }
 
-    /// Everything needed to go on bit for bit.
+    /// Everything needed to go on bit for bit; components that keep nothing have no part.
     pub fn restart(&self) -> Restart {
-        let parts = self
-            .components
-            .iter()
-            .map(|c| (c.name().to_owned(), c.save()));
-        let coupling = [
-            ("exchange", self.exchange.save()),
-            ("ledger", self.ledger.save()),
-        ];
-        Restart(
-            parts
-                .chain(coupling.map(|(name, values)| (name.to_owned(), values)))
-                .collect(),
-        )
+        let parts = self.components.iter().map(|c| (c.name().to_owned(), c.save()));
+        let coupling = [("exchange", self.exchange.save()), ("ledger", self.ledger.save())];
+        let all = parts.chain(coupling.map(|(name, values)| (name.to_owned(), values)));
+        Restart(all.filter(|(_, values)| !values.is_empty()).collect())
     }
 
     /// Restores what [`Model::restart`] gave into a model of the same configuration.
@@ -195,19 +186,15 @@ impl Model {
     pub fn restore<E: std::error::Error>(&mut self, state: &Restart) -> Result<(), RunError<E>> {
         let part = |name: &str| {
             let found = state.0.iter().find(|(n, _)| n == name);
-            found
-                .map(|(_, values)| values.as_slice())
-                .ok_or_else(|| missing(name))
+            found.map_or(&[][..], |(_, values)| values.as_slice())
         };
         for component in &mut self.components {
             let name = component.name();
-            component.restore(part(name)?).map_err(|_| missing(name))?;
+            component.restore(part(name)).map_err(|_| missing(name))?;
         }
-        self.exchange
-            .restore(part("exchange")?)
-            .ok_or_else(|| missing("exchange"))?;
-        self.ledger =
-            Ledger::restored(Quantity::Energy, part("ledger")?).ok_or_else(|| missing("ledger"))?;
+        self.exchange.restore(part("exchange")).ok_or_else(|| missing("exchange"))?;
+        self.ledger = Ledger::restored(Quantity::Energy, part("ledger"))
+            .ok_or_else(|| missing("ledger"))?;
         Ok(())
     }
 }

@@ -7,7 +7,7 @@ use super::clock::Plan;
 use crate::forcing::drive::{Drive, DriveError};
 use crate::physics::Component;
 use crate::physics::budget::Ledger;
-use crate::series::{Record, Scale, Variable};
+use crate::series::{Record, Scale, Statistic, Variable};
 
 /// Variables that the model itself adds in front of those of the components.
 pub fn model_variables() -> Vec<Variable> {
@@ -18,6 +18,7 @@ pub fn model_variables() -> Vec<Variable> {
         long_name,
         standard_name,
         scale: Scale::Plain,
+        statistic: Statistic::Point,
     };
     vec![
         scalar(

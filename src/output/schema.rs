@@ -10,7 +10,7 @@
 //!
 //! Sources: CF Conventions 1.11; UDUNITS-2 data base ("a", "ka", "Ma" are areas there).
 
-use crate::series::{Axis, Scale, Variable};
+use crate::series::{Axis, Scale, Statistic, Variable};
 
 use super::error::{OutputError, Result};
 
@@ -140,7 +140,11 @@ pub(crate) fn attributes(variable: &Variable) -> Vec<(&'static str, String)> {
         }
         Scale::Plain => {}
     }
-    list.push(("cell_methods", "age: mean".to_owned()));
+    let method = match variable.statistic {
+        Statistic::Mean => "age: mean",
+        Statistic::Point => "age: point",
+    };
+    list.push(("cell_methods", method.to_owned()));
     let auxiliary = |axis: &Axis| match axis {
         Axis::Month => Some("month_middle"),
         Axis::Hemisphere => Some("hemisphere_name"),

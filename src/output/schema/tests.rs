@@ -17,6 +17,7 @@ fn table() -> Schema {
             long_name: "invented temperature",
             standard_name: Some("air_temperature"),
             scale: Scale::Temperature,
+            statistic: Statistic::Mean,
         }],
         global: REQUIRED_GLOBAL
             .iter()

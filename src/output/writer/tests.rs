@@ -1,6 +1,6 @@
 use super::*;
 use crate::output::schema::{AxisValues, REQUIRED_GLOBAL};
-use crate::series::{Axis, Scale, Variable};
+use crate::series::{Axis, Scale, Statistic, Variable};
 
 /// Invented data: one number and one profile per record.
 fn invented() -> (Schema, Vec<Record>) {
@@ -11,6 +11,7 @@ fn invented() -> (Schema, Vec<Record>) {
         long_name: "invented",
         standard_name: None,
         scale: Scale::Plain,
+        statistic: Statistic::Mean,
     };
     let schema = Schema {
         axes: AxisValues {

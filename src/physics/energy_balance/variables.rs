@@ -1,7 +1,7 @@
 //! The variables that the energy balance contributes to a record, in the order in which
 //! [`super::report`] works them out.
 
-use crate::series::{Axis, Scale, Variable};
+use crate::series::{Axis, Scale, Statistic, Variable};
 
 const BY_MONTH: &[Axis] = &[Axis::Month, Axis::Latitude];
 
@@ -14,6 +14,7 @@ macro_rules! variable {
             long_name: $long,
             standard_name: $standard,
             scale: Scale::$scale,
+            statistic: Statistic::Mean,
         }
     };
 }

@@ -32,7 +32,7 @@ use crate::numerics::profile;
 use crate::physics::budget::{Account, Quantity};
 use crate::physics::exchange::{Exchange, Surface};
 use crate::physics::{Build, Component, PhysicsError, RangeError, Setting};
-use crate::series::{Axis, Scale, Variable};
+use crate::series::{Axis, Scale, Statistic, Variable};
 
 const NAME: &str = "equatorial_pacific";
 /// Step of the scan for solutions, K. Tuned here.
@@ -298,6 +298,7 @@ impl Component for EquatorialPacific {
             long_name,
             standard_name: None,
             scale,
+            statistic: Statistic::Mean,
         };
         let temperature = |name, words| one(name, "degC", words, Scale::Temperature);
         vec![

@@ -3,7 +3,7 @@
 //! The order is that of `OceanColumn::record`. Units follow UDUNITS; names follow CF where its table has
 //! one (it has none for the thermocline).
 
-use crate::series::{Axis, Scale, Variable};
+use crate::series::{Axis, Scale, Statistic, Variable};
 
 fn plain(name: &'static str, units: &'static str, long_name: &'static str) -> Variable {
     Variable {
@@ -13,6 +13,7 @@ fn plain(name: &'static str, units: &'static str, long_name: &'static str) -> Va
         long_name,
         standard_name: None,
         scale: Scale::Plain,
+        statistic: Statistic::Mean,
     }
 }
 

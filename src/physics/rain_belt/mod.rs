@@ -23,7 +23,7 @@ use crate::forcing::YearForcing;
 use crate::physics::budget::{Account, Quantity};
 use crate::physics::exchange::{Exchange, Surface};
 use crate::physics::{Build, Component, PhysicsError, RangeError, Setting};
-use crate::series::{Axis, Scale, Variable};
+use crate::series::{Axis, Scale, Statistic, Variable};
 use crate::units::EARTH_RADIUS_M;
 use std::f64::consts::PI;
 
@@ -191,6 +191,7 @@ impl Component for RainBelt {
             long_name,
             standard_name: None,
             scale: Scale::Plain,
+            statistic: Statistic::Mean,
         };
         let contrast = |name, axes, long_name| Variable {
             axes,

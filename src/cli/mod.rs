@@ -1,0 +1,57 @@
+//! The command line: the only part that prints.
+
+mod progress;
+mod run;
+
+use clap::{Parser, Subcommand};
+use std::io::Write;
+use std::process::ExitCode;
+
+/// How the command line is understood; see `orbicline --help`.
+#[derive(Debug, Parser)]
+#[command(
+    name = "orbicline",
+    version,
+    about,
+    max_term_width = 100,
+    arg_required_else_help = true
+)]
+struct Arguments {
+    #[command(subcommand)]
+    command: Command,
+}
+
+#[derive(Debug, Subcommand)]
+enum Command {
+    /// Run a transient climate into a NetCDF-4 file
+    Run(run::RunArguments),
+}
+
+/// Parses the arguments, does what they ask, prints an error if there is one.
+pub fn main() -> ExitCode {
+    let words: Vec<String> = std::env::args_os()
+        .map(|w| w.to_string_lossy().into_owned())
+        .collect();
+    let outcome = match Arguments::parse().command {
+        Command::Run(arguments) => run::run(&arguments, &words),
+    };
+    match outcome {
+        Ok(()) => ExitCode::SUCCESS,
+        Err(error) => {
+            // Nothing can be done when even standard error is closed.
+            let _ = writeln!(std::io::stderr(), "error: {error}");
+            ExitCode::FAILURE
+        }
+    }
+}
+
+/// What a command can end with.
+#[derive(Debug, thiserror::Error)]
+enum CliError {
+    #[error(transparent)]
+    Single(#[from] crate::experiment::single::SingleError),
+    #[error(transparent)]
+    Output(#[from] crate::output::OutputError),
+    #[error("cannot print: {0}")]
+    Print(#[from] std::io::Error),
+}

@@ -1,0 +1,96 @@
+//! Writes the file in a thread of its own, so that compression does not hold up the model.
+//!
+//! Records pass in order through a channel that holds a few; the bytes written are the same as
+//! without the thread. An error of the writer reaches the model at the next record.
+
+use crate::model::observer::Restart;
+use crate::output::OutputError;
+use crate::output::writer::RunWriter;
+use crate::series::Record;
+use std::path::PathBuf;
+use std::sync::mpsc::{SyncSender, sync_channel};
+use std::thread::JoinHandle;
+
+/// Records that may wait; a record is some ten kilobytes.
+const WAITING: usize = 16;
+
+/// Where records go.
+pub enum Sink {
+    /// Written by the caller's thread.
+    Direct(Box<RunWriter>),
+    /// Written by a thread of its own.
+    Background(Background),
+}
+
+/// A writer in a thread of its own.
+pub struct Background {
+    records: SyncSender<(Record, Restart)>,
+    writer: JoinHandle<Result<PathBuf, OutputError>>,
+}
+
+impl Background {
+    fn new(mut writer: RunWriter) -> Self {
+        let (records, incoming) = sync_channel::<(Record, Restart)>(WAITING);
+        let writer = std::thread::spawn(move || {
+            for (record, restart) in incoming {
+                writer.push(&record, &restart.0)?;
+            }
+            writer.finish()
+        });
+        Self { records, writer }
+    }
+
+    /// Waits for the thread and returns what it ended with.
+    fn join(self) -> Result<PathBuf, OutputError> {
+        drop(self.records);
+        self.writer
+            .join()
+            .unwrap_or_else(|panic| std::panic::resume_unwind(panic))
+    }
+}
+
+impl Sink {
+    /// A sink on its own thread when two threads or more may be used.
+    pub fn new(writer: RunWriter, threads: usize) -> Self {
+        if threads >= 2 {
+            Self::Background(Background::new(writer))
+        } else {
+            Self::Direct(Box::new(writer))
+        }
+    }
+
+    /// Hands over one record; a background sink that has failed is given back so that
+    /// [`Sink::finish`] can tell why.
+    ///
+    /// # Errors
+    /// When a direct writer fails.
+    pub fn push(&mut self, record: &Record, restart: Restart) -> Result<Delivery, OutputError> {
+        match self {
+            Self::Direct(writer) => writer.push(record, &restart.0).map(|()| Delivery::Taken),
+            Self::Background(thread) => Ok(match thread.records.send((record.clone(), restart)) {
+                Ok(()) => Delivery::Taken,
+                Err(_) => Delivery::WriterGone,
+            }),
+        }
+    }
+
+    /// Completes the file.
+    ///
+    /// # Errors
+    /// When it could not be written.
+    pub fn finish(self) -> Result<PathBuf, OutputError> {
+        match self {
+            Self::Direct(writer) => writer.finish(),
+            Self::Background(thread) => thread.join(),
+        }
+    }
+}
+
+/// What became of a record.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Delivery {
+    /// It is written or will be.
+    Taken,
+    /// The writer has stopped; finishing the sink gives its error.
+    WriterGone,
+}

@@ -1,0 +1,5 @@
+//! From a configuration to results: what the commands do, without printing.
+
+pub mod background;
+pub mod single;
+pub mod summary;
