@@ -10,7 +10,6 @@ mod names;
 #[path = "architecture/project.rs"]
 mod project;
 
-
 /// The messages for planted sources.
 fn planted(files: &[(&str, &str)]) -> Vec<String> {
     let owned = |(file, text): &(&str, &str)| ((*file).to_owned(), (*text).to_owned());

@@ -173,8 +173,14 @@ impl Model {
 
     /// Everything needed to go on bit for bit; components that keep nothing have no part.
     pub fn restart(&self) -> Restart {
-        let parts = self.components.iter().map(|c| (c.name().to_owned(), c.save()));
-        let coupling = [("exchange", self.exchange.save()), ("ledger", self.ledger.save())];
+        let parts = self
+            .components
+            .iter()
+            .map(|c| (c.name().to_owned(), c.save()));
+        let coupling = [
+            ("exchange", self.exchange.save()),
+            ("ledger", self.ledger.save()),
+        ];
         let all = parts.chain(coupling.map(|(name, values)| (name.to_owned(), values)));
         Restart(all.filter(|(_, values)| !values.is_empty()).collect())
     }
@@ -192,9 +198,11 @@ impl Model {
             let name = component.name();
             component.restore(part(name)).map_err(|_| missing(name))?;
         }
-        self.exchange.restore(part("exchange")).ok_or_else(|| missing("exchange"))?;
-        self.ledger = Ledger::restored(Quantity::Energy, part("ledger"))
-            .ok_or_else(|| missing("ledger"))?;
+        self.exchange
+            .restore(part("exchange"))
+            .ok_or_else(|| missing("exchange"))?;
+        self.ledger =
+            Ledger::restored(Quantity::Energy, part("ledger")).ok_or_else(|| missing("ledger"))?;
         Ok(())
     }
 }

@@ -6,6 +6,7 @@
 use super::coefficients::Coefficients;
 use super::state::StateRow;
 use super::work::Work;
+use crate::grid::calendar::Calendar;
 use crate::numerics::lanes::{Lanes, Rows, WIDTH};
 use crate::numerics::sum::CompensatedSum;
 use crate::units::SEA_WATER_FREEZING_C;
@@ -188,9 +189,23 @@ impl Means {
         self.deep_heat += edges.deep_heat;
     }
 
-    /// Monthly mean of a field in band `i`.
-    pub(super) fn monthly(&self, month: usize, field: Field, i: usize) -> f64 {
-        self.monthly[month * self.rows.len() + i / WIDTH][field as usize].0[i % WIDTH]
+    /// Monthly means of a field, `[month][band]`.
+    pub(super) fn monthly(&self, field: Field) -> impl Iterator<Item = f64> {
+        self.monthly
+            .iter()
+            .flat_map(move |row| row[field as usize].0)
+    }
+
+    /// Annual means of a field, one per band, each month counting by its length.
+    pub(super) fn annual(&self, field: Field) -> Vec<f64> {
+        let mut mean = vec![0.0; self.rows.len() * WIDTH];
+        let months = self.monthly.chunks_exact(self.rows.len());
+        for (rows, share) in months.zip(Calendar.month_shares()) {
+            for (mean, row) in mean.chunks_exact_mut(WIDTH).zip(rows) {
+                (Lanes::load(mean, 0) + row[field as usize] * share).store(mean, 0);
+            }
+        }
+        mean
     }
 
     /// Annual sum of a flux in band `i`.

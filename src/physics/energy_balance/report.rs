@@ -138,9 +138,9 @@ impl Report {
     fn tell(&self, c: &Coefficients, m: &Means, exchange: &mut Exchange) {
         let n = c.bands;
         let per_step = 1.0 / c.steps as f64;
-        for i in 0..n {
-            exchange.mixed_layer_temperature_c[i] = annual(m, Field::Water, i);
-            exchange.atmosphere_energy_input_w_m2[i] = m.sum(i, |row| row.air_input) * per_step;
+        exchange.mixed_layer_temperature_c = m.annual(Field::Water);
+        for (i, told) in exchange.atmosphere_energy_input_w_m2.iter_mut().enumerate() {
+            *told = m.sum(i, |row| row.air_input) * per_step;
         }
         for month in 0..12 {
             let row = month * n..(month + 1) * n;
@@ -171,41 +171,43 @@ impl Report {
 
     /// 2 m temperatures by month into the exchange.
     fn two_metre(&self, m: &Means, exchange: &mut Exchange) {
-        let (w, n) = (self.surface_weight, self.bands.land.len());
-        for k in 0..12 * n {
-            let (month, i) = (k / n, k % n);
-            let air = m.monthly(month, Field::Air, i);
-            let land = m.monthly(month, Field::Land, i);
-            let ocean = m.monthly(month, Field::OceanSurface, i);
-            exchange.land_air_2m_c[k] = w * land + (1.0 - w) * (air - self.bands.elevation_k[i]);
-            exchange.ocean_air_2m_c[k] = w * ocean + (1.0 - w) * air;
+        let w = self.surface_weight;
+        let surfaces = m.monthly(Field::Land).zip(m.monthly(Field::OceanSurface));
+        let told = exchange
+            .land_air_2m_c
+            .iter_mut()
+            .zip(&mut exchange.ocean_air_2m_c);
+        let lifts = self.bands.elevation_k.iter().cycle();
+        let above = m.monthly(Field::Air).zip(lifts);
+        for (((land, ocean), (air, lift)), (ground, water)) in told.zip(above).zip(surfaces) {
+            *land = w * ground + (1.0 - w) * (air - lift);
+            *ocean = w * water + (1.0 - w) * air;
         }
     }
 
     fn monthly(&mut self, m: &Means, exchange: &Exchange) {
         let b = &self.bands;
-        let n = b.land.len();
-        let over = |share: f64, value: f64| if share > 0.0 { value } else { f64::NAN };
         let values = &mut self.values;
-        let mut put = |value: &dyn Fn(usize, usize, usize) -> f64| {
-            values.extend((0..12 * n).map(|k| value(k / n, k, k % n)));
-        };
-        let (land, ocean) = (&exchange.land_air_2m_c, &exchange.ocean_air_2m_c);
-        put(&|month, _, i| m.monthly(month, Field::Insolation, i));
-        put(&|month, _, i| m.monthly(month, Field::Air, i));
-        put(&|month, _, i| over(b.land[i], m.monthly(month, Field::Land, i)));
-        put(&|month, _, i| over(b.ocean[i], m.monthly(month, Field::Water, i)));
-        put(&|_, k, i| b.land[i] * land[k] + b.ocean[i] * ocean[k]);
-        put(&|_, k, i| over(b.land[i], land[k]));
-        put(&|_, k, i| over(b.ocean[i], ocean[k]));
-        put(&|month, _, i| {
-            over(
-                b.land[i],
-                b.sheet[i] + (1.0 - b.sheet[i]) * m.monthly(month, Field::Snow, i),
-            )
-        });
-        put(&|month, _, i| over(b.ocean[i], m.monthly(month, Field::IceCover, i)));
-        put(&|month, _, i| over(b.ocean[i], m.monthly(month, Field::IceThickness, i)));
+        let (land, ocean) = (|| b.land.iter().cycle(), || b.ocean.iter().cycle());
+        let over = |(value, share): (f64, &f64)| if *share > 0.0 { value } else { f64::NAN };
+        let air_over = (&exchange.land_air_2m_c, &exchange.ocean_air_2m_c);
+        values.extend(m.monthly(Field::Insolation));
+        values.extend(m.monthly(Field::Air));
+        values.extend(m.monthly(Field::Land).zip(land()).map(over));
+        values.extend(m.monthly(Field::Water).zip(ocean()).map(over));
+        let both = air_over
+            .0
+            .iter()
+            .zip(land())
+            .zip(air_over.1.iter().zip(ocean()));
+        values.extend(both.map(|((land, f), (ocean, g))| f * land + g * ocean));
+        values.extend(air_over.0.iter().copied().zip(land()).map(over));
+        values.extend(air_over.1.iter().copied().zip(ocean()).map(over));
+        let covered = m.monthly(Field::Snow).zip(b.sheet.iter().cycle());
+        let covered = covered.map(|(snow, sheet)| sheet + (1.0 - sheet) * snow);
+        values.extend(covered.zip(land()).map(over));
+        values.extend(m.monthly(Field::IceCover).zip(ocean()).map(over));
+        values.extend(m.monthly(Field::IceThickness).zip(ocean()).map(over));
     }
 
     fn annual(&mut self, c: &Coefficients, m: &Means, exchange: &Exchange) {
@@ -249,11 +251,12 @@ impl Report {
     fn sums(&mut self, m: &Means, gain: &[f64], exchange: &Exchange) {
         let latitude = self.surface.bands.centre_deg();
         let area = &self.bands.ocean_area;
+        let cover = m.annual(Field::IceCover);
         let (mut ice, mut loss) = ([0.0; 2], [0.0; 2]);
         let mut tropics = 0.0;
         for i in 0..area.len() {
             let side = usize::from(latitude[i] > 0.0);
-            ice[side] += area[i] * annual(m, Field::IceCover, i);
+            ice[side] += area[i] * cover[i];
             let beyond = poleward_share(&self.surface, i, HIGH_LATITUDE_DEG);
             loss[side] -= beyond * area[i] * gain[i];
             tropics += (1.0 - poleward_share(&self.surface, i, TROPICS_DEG)) * area[i] * gain[i];
@@ -271,25 +274,16 @@ impl Report {
         let bands = &self.surface.bands;
         let n = bands.len();
         let two_metre = &self.values[4 * 12 * n..5 * 12 * n];
-        let shares = Calendar.month_shares();
         let temperature: f64 = two_metre
             .chunks(n)
-            .zip(shares)
+            .zip(Calendar.month_shares())
             .map(|(month, share)| share * bands.mean(month))
             .sum();
-        let incoming: Vec<f64> = (0..n).map(|i| annual(m, Field::Insolation, i)).collect();
+        let incoming = m.annual(Field::Insolation);
         let (taken, given) = (bands.mean(absorbed), bands.mean(emitted));
         let albedo = 1.0 - taken / bands.mean(&incoming);
         self.values.extend([temperature, taken, given, albedo]);
     }
-}
-
-/// Annual mean of a monthly field in band `i`.
-fn annual(m: &Means, field: Field, i: usize) -> f64 {
-    let shares = Calendar.month_shares();
-    (0..12)
-        .map(|month| shares[month] * m.monthly(month, field, i))
-        .sum()
 }
 
 /// Share of band `i`'s area poleward of `latitude_deg` in its hemisphere.
