@@ -97,7 +97,7 @@ impl CarbonDioxide {
     pub fn table(age_kyr: Vec<f64>, co2_ppm: Vec<f64>) -> Result<Self, CarbonDioxideError> {
         check(&age_kyr, &co2_ppm)?;
         for pair in age_kyr.windows(2) {
-            if !(pair[0] < pair[1]) {
+            if pair[0].partial_cmp(&pair[1]) != Some(std::cmp::Ordering::Less) {
                 return Err(CarbonDioxideError::Order {
                     first: pair[0],
                     second: pair[1],

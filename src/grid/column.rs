@@ -5,6 +5,7 @@
 //! first level has the thickness asked for.
 
 /// Levels from the surface (index 0) down.
+#[expect(clippy::struct_field_names, reason = "the unit belongs to every name")]
 #[derive(Clone, Debug, PartialEq)]
 pub struct ColumnLevels {
     edge_m: Vec<f64>,

@@ -88,7 +88,9 @@ pub(super) struct Records {
 impl Records {
     pub(super) fn new(components: &[Box<dyn Component>]) -> Self {
         let mut year = Vec::new();
-        components.iter().for_each(|c| c.record(&mut year));
+        for component in components {
+            component.record(&mut year);
+        }
         Self {
             sums: vec![0.0; year.len()],
             year,
@@ -99,7 +101,9 @@ impl Records {
     /// Adds the year just run.
     pub(super) fn add(&mut self, components: &[Box<dyn Component>]) {
         self.year.clear();
-        components.iter().for_each(|c| c.record(&mut self.year));
+        for component in components {
+            component.record(&mut self.year);
+        }
         if self.sums.len() != self.year.len() {
             self.sums.resize(self.year.len(), 0.0);
         }

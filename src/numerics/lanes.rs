@@ -115,18 +115,21 @@ impl Lanes {
     }
 
     /// The larger of two elements. A NaN in `self` stays, so that a broken state is seen.
+    #[must_use]
     #[inline(always)]
     pub fn max(self, other: Self) -> Self {
         other.at_least(self).select(other, self)
     }
 
     /// The smaller of two elements. A NaN in `self` stays, so that a broken state is seen.
+    #[must_use]
     #[inline(always)]
     pub fn min(self, other: Self) -> Self {
         self.at_least(other).select(other, self)
     }
 
     /// Square root of each element.
+    #[must_use]
     #[inline(always)]
     pub fn sqrt(self) -> Self {
         let a = self.0;
@@ -134,6 +137,7 @@ impl Lanes {
     }
 
     /// Absolute value of each element.
+    #[must_use]
     #[inline(always)]
     pub fn abs(self) -> Self {
         let a = self.0;
@@ -148,11 +152,12 @@ impl Lanes {
     }
 
     /// Exponential of each element; arguments are limited to [-700, 700].
+    #[must_use]
     #[inline(always)]
     pub fn exp(self) -> Self {
         // 1.5 * 2^52: adding it rounds to the nearest whole number, held in the low bits.
         const ROUND: f64 = 6_755_399_441_055_744.0;
-        const LN2_HIGH: f64 = 6.931_471_803_691_238_2e-1;
+        const LN2_HIGH: f64 = 6.931_471_803_691_238e-1;
         const LN2_LOW: f64 = 1.908_214_929_270_587_7e-10;
         let x = self.max(Self::splat(-700.0)).min(Self::splat(700.0));
         let shifted = x * std::f64::consts::LOG2_E + ROUND;
@@ -192,13 +197,13 @@ impl Rows {
 
     /// The rows, south to north.
     #[inline(always)]
-    pub fn iter(&self) -> impl Iterator<Item = Lanes> {
+    pub fn rows(&self) -> impl Iterator<Item = Lanes> {
         self.0.iter().map(|row| Lanes(*row))
     }
 
     /// The rows as arrays of four, to be changed.
     #[inline(always)]
-    pub fn iter_mut(&mut self) -> std::slice::IterMut<'_, [f64; WIDTH]> {
+    pub fn rows_mut(&mut self) -> std::slice::IterMut<'_, [f64; WIDTH]> {
         self.0.iter_mut()
     }
 

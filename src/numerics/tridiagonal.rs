@@ -72,9 +72,10 @@ impl Factored {
         let n = self.ratio.len();
         let rhs = &mut rhs[..n];
         let mut carried = 0.0;
-        for i in 0..n {
-            carried = (rhs[i] - self.lower[i] * carried) * self.inverse_pivot[i];
-            rhs[i] = carried;
+        let factors = self.lower.iter().zip(&self.inverse_pivot);
+        for (value, (lower, inverse_pivot)) in rhs.iter_mut().zip(factors) {
+            carried = (*value - lower * carried) * inverse_pivot;
+            *value = carried;
         }
         for i in (0..n.saturating_sub(1)).rev() {
             rhs[i] -= self.ratio[i] * rhs[i + 1];
@@ -86,7 +87,14 @@ impl Factored {
 mod tests {
     use super::*;
 
-    fn example() -> (Vec<f64>, Vec<f64>, Vec<f64>, Vec<f64>, Vec<f64>) {
+    /// Diagonals, a solution, and its right-hand side.
+    struct Example {
+        diagonals: [Vec<f64>; 3],
+        x: Vec<f64>,
+        rhs: Vec<f64>,
+    }
+
+    fn example() -> Example {
         let n = 9;
         let lower: Vec<f64> = (0..n).map(|i| -1.0 - 0.1 * i as f64).collect();
         let upper: Vec<f64> = (0..n).map(|i| -1.0 + 0.05 * i as f64).collect();
@@ -99,12 +107,20 @@ mod tests {
                 below + diagonal[i] * x[i] + above
             })
             .collect();
-        (lower, diagonal, upper, x, rhs)
+        Example {
+            diagonals: [lower, diagonal, upper],
+            x,
+            rhs,
+        }
     }
 
     #[test]
     fn analytic_both_solvers_return_the_known_solution() {
-        let (lower, diagonal, upper, x, rhs) = example();
+        let Example {
+            diagonals: [lower, diagonal, upper],
+            x,
+            rhs,
+        } = example();
         let mut once = rhs.clone();
         solve(
             &lower,

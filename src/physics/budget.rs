@@ -83,7 +83,9 @@ impl Ledger {
             let flows: Vec<CompensatedSum> = mine()
                 .flat_map(|a| a.from_outside.iter().map(|f| f.amount))
                 .collect();
-            flows.iter().for_each(|flow| self.outside.add_sum(*flow));
+            for flow in &flows {
+                self.outside.add_sum(*flow);
+            }
             self.throughput
                 .add(flows.iter().map(|f| f.value().max(0.0)).sum());
         }

@@ -4,14 +4,14 @@ use crate::energy_balance_set_up::{legendre, mean_legendre, one_surface, planet,
 use orbicline::grid::latitude::Spacing;
 use orbicline::physics::Setting;
 use orbicline::physics::energy_balance::EnergyBalance;
-use orbicline::physics::energy_balance::params::{Albedo, IceEdge, Params, Transport};
+use orbicline::physics::energy_balance::params::{Albedo, IceEdge, Params};
 
 /// Steady state under constant sunlight Q (1 + s2 P2).
 fn steady(p: &Params, setting: &Setting, q: f64, s2: f64) -> Vec<f64> {
     let mut model = EnergyBalance::new(p, setting).unwrap();
     let light = sunlight(setting, &[0, 2], |n, _| if n == 0 { q } else { q * s2 });
     run(&mut model, setting, &light, 400);
-    model.air_temperature_c().to_vec()
+    model.air_temperature_c().clone()
 }
 
 #[test]

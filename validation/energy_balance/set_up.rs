@@ -10,12 +10,12 @@ use orbicline::physics::exchange::{Exchange, Surface};
 use orbicline::physics::{Component, Setting};
 
 /// The set-up file of the one-surface model.
-pub fn one_surface() -> Params {
+pub(crate) fn one_surface() -> Params {
     toml::from_str(include_str!("one_surface.toml")).unwrap()
 }
 
 /// A planet with the same land fraction everywhere, at sea level.
-pub fn planet(bands: usize, spacing: Spacing, steps_per_year: usize, land: f64) -> Setting {
+pub(crate) fn planet(bands: usize, spacing: Spacing, steps_per_year: usize, land: f64) -> Setting {
     let bands = LatitudeBands::new(bands, spacing).unwrap();
     let n = bands.len();
     let surface = Surface {
@@ -32,7 +32,7 @@ pub fn planet(bands: usize, spacing: Spacing, steps_per_year: usize, land: f64) 
 }
 
 /// Mean over a band of the n-th Legendre polynomial, from (2n+1) P_n = P'_{n+1} - P'_{n-1}.
-pub fn mean_legendre(n: usize, low: f64, high: f64) -> f64 {
+pub(crate) fn mean_legendre(n: usize, low: f64, high: f64) -> f64 {
     if n == 0 {
         return 1.0;
     }
@@ -41,7 +41,7 @@ pub fn mean_legendre(n: usize, low: f64, high: f64) -> f64 {
 }
 
 /// P_n(x) by the three-term recurrence.
-pub fn legendre(n: usize, x: f64) -> f64 {
+pub(crate) fn legendre(n: usize, x: f64) -> f64 {
     let (mut below, mut here) = (1.0, x);
     if n == 0 {
         return below;
@@ -57,7 +57,11 @@ pub fn legendre(n: usize, x: f64) -> f64 {
 
 /// Sunlight S(x, t) as band means at the end of each step: `share(n, t)` is the n-th Legendre
 /// coefficient at time t (fraction of the year), W m-2.
-pub fn sunlight(setting: &Setting, modes: &[usize], share: impl Fn(usize, f64) -> f64) -> Vec<f64> {
+pub(crate) fn sunlight(
+    setting: &Setting,
+    modes: &[usize],
+    share: impl Fn(usize, f64) -> f64,
+) -> Vec<f64> {
     let edges = setting.surface.bands.edge_sine();
     let steps = setting.steps_per_year();
     (1..=steps)
@@ -79,7 +83,7 @@ pub fn sunlight(setting: &Setting, modes: &[usize], share: impl Fn(usize, f64) -
 }
 
 /// Runs `years` years of the same sunlight.
-pub fn run(
+pub(crate) fn run(
     model: &mut EnergyBalance,
     setting: &Setting,
     sunlight: &[f64],
@@ -91,7 +95,12 @@ pub fn run(
 }
 
 /// The same with a given exchange.
-pub fn run_on(model: &mut EnergyBalance, exchange: &mut Exchange, sunlight: &[f64], years: usize) {
+pub(crate) fn run_on(
+    model: &mut EnergyBalance,
+    exchange: &mut Exchange,
+    sunlight: &[f64],
+    years: usize,
+) {
     let zenith = vec![0.65; sunlight.len()];
     let orbit = Elements {
         eccentricity: 0.0,

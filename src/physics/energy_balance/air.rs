@@ -83,7 +83,7 @@ pub(super) fn assemble(c: &Coefficients, w: &mut Work, greenhouse: f64) {
     } else {
         0.0
     };
-    let system = w.air_increment.iter_mut().zip(w.diagonal.iter_mut());
+    let system = w.air_increment.rows_mut().zip(w.diagonal.rows_mut());
     for ((row, b), (rhs, diagonal)) in w.rows.iter().zip(&c.rows).zip(system) {
         let per_land = b.land * row.land_per_newton;
         let per_ocean = b.ocean * row.ocean_per_newton;
@@ -110,8 +110,8 @@ fn diffuse(c: &Coefficients, w: &mut Work, conductance: &[f64], moisture_k: f64,
     let n = c.bands;
     let fields = w
         .static_energy
-        .iter_mut()
-        .zip(w.static_energy_slope.iter_mut());
+        .rows_mut()
+        .zip(w.static_energy_slope.rows_mut());
     for (row, (energy, slope)) in w.rows.iter().zip(fields) {
         *energy = (row.air + row.air_humidity * moisture_k).0;
         *slope = (row.air_humidity_slope * moisture_k + 1.0).0;
@@ -126,8 +126,8 @@ fn diffuse(c: &Coefficients, w: &mut Work, conductance: &[f64], moisture_k: f64,
         w.air_increment.flat_mut(),
         w.scratch.flat_mut(),
     );
-    let moved = w.static_energy_slope.iter().zip(w.air_increment.iter());
-    for (energy, (slope, increment)) in w.static_energy.iter_mut().zip(moved) {
+    let moved = w.static_energy_slope.rows().zip(w.air_increment.rows());
+    for (energy, (slope, increment)) in w.static_energy.rows_mut().zip(moved) {
         *energy = (Lanes(*energy) + slope * increment).0;
     }
     edge_fluxes(conductance, w.static_energy.flat(), edge);
@@ -176,11 +176,11 @@ fn relax(c: &Coefficients, w: &mut Work, rate: f64, edge: &mut [f64]) {
     let area = &c.area_m2[..n];
     let total: f64 = area.iter().sum();
     let mean = |field: &[f64]| area.iter().zip(field).map(|(a, v)| a * v).sum::<f64>() / total;
-    for (row, air) in w.rows.iter().zip(w.static_energy.iter_mut()) {
+    for (row, air) in w.rows.iter().zip(w.static_energy.rows_mut()) {
         *air = row.air.0;
     }
     let mean_now = mean(w.static_energy.flat());
-    for (row, increment) in w.rows.iter().zip(w.air_increment.iter_mut()) {
+    for (row, increment) in w.rows.iter().zip(w.air_increment.rows_mut()) {
         *increment = (Lanes(*increment) + (Lanes::splat(mean_now) - row.air) * rate).0;
     }
     let (increment, diagonal) = (

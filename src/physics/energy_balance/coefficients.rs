@@ -1,7 +1,7 @@
 //! Parameters turned into the numbers the time step uses, one per band where they vary.
 //!
 //! Built once; nothing here changes during a run except the albedos of an ice-line set-up, which
-//! [`super::ice_line`] renews at each step.
+//! `ice_line` renews at each step.
 
 use super::params::{Albedo, Emitter, Params};
 use crate::grid::calendar::MonthWeights;

@@ -49,8 +49,8 @@ pub(super) fn transport(
 ) -> f64 {
     let deep_heat = sinking_rates(c, w, column);
     advect(c, w, column, edge_flux_w);
-    let rows = w.rows.iter_mut().zip(&c.rows).zip(w.brought.iter_mut());
-    for (((row, b), brought), correction) in rows.zip(w.correction.iter_mut()) {
+    let rows = w.rows.iter_mut().zip(&c.rows).zip(w.brought.rows_mut());
+    for (((row, b), brought), correction) in rows.zip(w.correction.rows_mut()) {
         let gained = Lanes(*brought) * b.per_ocean_area;
         *brought = gained.0;
         row.ocean_residual += gained;
@@ -63,7 +63,7 @@ pub(super) fn transport(
 #[inline(always)]
 fn sinking_rates(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>) -> f64 {
     let (mut deep_sum, mut shallow_sum) = (Lanes::splat(0.0), Lanes::splat(0.0));
-    for ((row, b), sinking) in w.rows.iter_mut().zip(&c.rows).zip(w.sinking.iter_mut()) {
+    for ((row, b), sinking) in w.rows.iter_mut().zip(&c.rows).zip(w.sinking.rows_mut()) {
         let loss = row.ocean_flux + row.ocean_emission - row.ocean_absorbed;
         let positive = (loss + (loss * loss + c.loss_smoothing_squared).sqrt()) * 0.5;
         let above_freezing = row.water_temperature - SEA_WATER_FREEZING_C;
@@ -78,7 +78,7 @@ fn sinking_rates(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>) -> f64 
     let deep_scale = per(column.deep_sinking_m3_s, deep_sum.sum());
     let shallow_scale = per(column.subtropical_sinking_m3_s, shallow_sum.sum());
     let mut deep_heat = Lanes::splat(0.0);
-    for (row, sinking) in w.rows.iter_mut().zip(w.sinking.iter_mut()) {
+    for (row, sinking) in w.rows.iter_mut().zip(w.sinking.rows_mut()) {
         row.deep_sinking = row.deep_sinking * deep_scale;
         deep_heat += row.deep_sinking * row.water_temperature;
         *sinking = (row.deep_sinking + Lanes(*sinking) * shallow_scale).0;
@@ -141,7 +141,7 @@ fn correct_gyres(c: &Coefficients, w: &mut Work, edge_flux_w: &mut [f64]) {
         edge[i + 1] += above;
         below = above;
     }
-    let fields = w.brought.iter_mut().zip(w.correction.iter());
+    let fields = w.brought.rows_mut().zip(w.correction.rows());
     for (row, (brought, gained)) in w.rows.iter_mut().zip(fields) {
         row.ocean_residual += gained;
         *brought = (Lanes(*brought) + gained).0;

@@ -176,9 +176,9 @@ impl Means {
     pub(super) fn count_step(&mut self, c: &Coefficients, w: &Work, k: usize, edges: &EdgeFluxes) {
         let month = c.months.month_of_step(k);
         let booked = self.sunk[month]
-            .iter_mut()
-            .zip(self.sunk_heat[month].iter_mut());
-        let sinking = w.sinking.iter().zip(w.water_temperature.iter());
+            .rows_mut()
+            .zip(self.sunk_heat[month].rows_mut());
+        let sinking = w.sinking.rows().zip(w.water_temperature.rows());
         for ((volume, heat), (rate, temperature)) in booked.zip(sinking) {
             let sunk = rate * c.step_s;
             *volume = (Lanes(*volume) + sunk).0;

@@ -14,8 +14,8 @@
 //! Units: SI, temperatures in degC, northward fluxes in W.
 //!
 //! Numerics: backward differences of third order, one Newton step from the extrapolated state,
-//! one tridiagonal solve a step ([`surfaces`], [`currents`], [`air`], [`update`] in this order);
-//! insolation is exact at the end of each step. Heat closes to round-off ([`state`]).
+//! one tridiagonal solve a step (`surfaces`, `currents`, `air`, `update` in this order);
+//! insolation is exact at the end of each step. Heat closes to round-off (`state`).
 //! Nothing here knows of other components: the ocean column is met in
 //! [`crate::physics::exchange`] only.
 

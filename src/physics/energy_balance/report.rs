@@ -125,7 +125,11 @@ impl Report {
             .iter()
             .for_each(|w| given.add_product(*w, YEAR_SECONDS));
         let mut sunk = CompensatedSum::default();
-        for heat in m.sunk_heat.iter().flat_map(|rows| rows.flat()) {
+        for heat in m
+            .sunk_heat
+            .iter()
+            .flat_map(crate::numerics::lanes::Rows::flat)
+        {
             sunk.add_product(*heat, -SEA_WATER_HEAT_CAPACITY_J_M3_K);
         }
         self.account.from_components = vec![

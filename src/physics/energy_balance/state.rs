@@ -183,10 +183,9 @@ impl State {
                 (ocean * sub_on, &row.sub),
             ] {
                 for k in 0..WIDTH {
-                    let parts = level.conserved(k);
-                    parts
-                        .into_iter()
-                        .for_each(|part| heat.add_product(capacity.0[k], part));
+                    for part in level.conserved(k) {
+                        heat.add_product(capacity.0[k], part);
+                    }
                 }
             }
         }

@@ -81,7 +81,7 @@ pub(super) fn evaluate(
     } else {
         0.0
     };
-    let rows = w.rows.iter_mut().zip(w.water_temperature.iter_mut());
+    let rows = w.rows.iter_mut().zip(w.water_temperature.rows_mut());
     for (((w, water), (b, s)), (insolation, zenith)) in
         rows.zip(c.rows.iter().zip(&s.rows)).zip(light)
     {

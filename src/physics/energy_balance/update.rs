@@ -34,9 +34,9 @@ pub(super) fn advance(
     };
     let solved = w
         .air_increment
-        .iter()
-        .zip(w.air_convergence.iter())
-        .zip(w.brought.iter());
+        .rows()
+        .zip(w.air_convergence.rows())
+        .zip(w.brought.rows());
     let light = insolation.chunks_exact(WIDTH);
     let rows = w
         .rows
