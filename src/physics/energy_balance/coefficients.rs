@@ -91,7 +91,8 @@ pub(super) struct Coefficients {
 
     /// Gyre conductance of each edge, W K-1, `bands + 1`.
     pub gyre_conductance: Vec<f64>,
-    pub gyre_factors: Factored,
+    /// Matrix of the implicit correction; none where explicit gyres are stable by far.
+    pub gyre_factors: Option<Factored>,
     pub loss_smoothing_squared: f64,
     pub per_convection_temperature: f64,
 }
@@ -349,8 +350,19 @@ fn gyre(p: &Params, surface: &Surface) -> Vec<f64> {
         .collect()
 }
 
+/// Explicit gyre diffusion is kept while gamma (`k_south` + `k_north`)/(C A) stays below this in
+/// every band: a tenth of what third-order differences bear, so that dropping the implicit
+/// correction changes nothing that counts (it is of the size of this number times the error of
+/// the extrapolation).
+const EXPLICIT_GYRE_LIMIT: f64 = 0.05;
+
 /// Matrix of the implicit correction of gyre diffusion, (C A/gamma - L) with constant entries.
-fn gyre_matrix(surface: &Surface, capacity: &[f64], conductance: &[f64], gamma_s: f64) -> Factored {
+fn gyre_matrix(
+    surface: &Surface,
+    capacity: &[f64],
+    conductance: &[f64],
+    gamma_s: f64,
+) -> Option<Factored> {
     let n = capacity.len();
     let area = surface.bands.area_m2();
     let lower: Vec<f64> = (0..n).map(|i| -conductance[i]).collect();
@@ -362,5 +374,10 @@ fn gyre_matrix(surface: &Surface, capacity: &[f64], conductance: &[f64], gamma_s
             capacity[i] * held / gamma_s + conductance[i] + conductance[i + 1]
         })
         .collect();
-    Factored::new(&lower, &diagonal, &upper)
+    let stiffness = (0..n).map(|i| {
+        let through = conductance[i] + conductance[i + 1];
+        through / (diagonal[i] - through)
+    });
+    (stiffness.fold(0.0, f64::max) > EXPLICIT_GYRE_LIMIT)
+        .then(|| Factored::new(&lower, &diagonal, &upper))
 }

@@ -14,12 +14,14 @@
 //! the exponential are choices of this model.
 //!
 //! Numerics: all evaluated at the extrapolated state; gyre diffusion is corrected implicitly with
-//! a constant matrix, (C A/gamma - L) delta = open-water residual, which keeps the order because
-//! delta is of the size of the extrapolation error.
+//! a constant matrix, (C A/gamma - L) delta = open-water residual, where they are stiff enough to
+//! need it (fine grids); the order is kept because delta is of the size of the extrapolation
+//! error.
 
 use super::coefficients::Coefficients;
 use super::work::Work;
 use crate::numerics::lanes::Lanes;
+use crate::numerics::tridiagonal::Factored;
 use crate::units::{SEA_WATER_FREEZING_C, SEA_WATER_HEAT_CAPACITY_J_M3_K};
 
 /// What the column told for this year.
@@ -49,14 +51,15 @@ pub(super) fn transport(
 ) -> f64 {
     let deep_heat = sinking_rates(c, w, column);
     advect(c, w, column, edge_flux_w);
-    let rows = w.rows.iter_mut().zip(&c.rows).zip(w.brought.rows_mut());
-    for (((row, b), brought), correction) in rows.zip(w.correction.rows_mut()) {
+    let rows = w.rows.iter_mut().zip(&c.rows);
+    for ((row, b), brought) in rows.zip(w.brought.rows_mut()) {
         let gained = Lanes(*brought) * b.per_ocean_area;
         *brought = gained.0;
         row.ocean_residual += gained;
-        *correction = (row.open_water * b.ocean_area_m2 * row.ocean_residual).0;
     }
-    correct_gyres(c, w, edge_flux_w);
+    if let Some(factors) = &c.gyre_factors {
+        correct_gyres(c, factors, w, edge_flux_w);
+    }
     deep_heat
 }
 
@@ -123,8 +126,11 @@ fn advect(c: &Coefficients, w: &mut Work, column: ColumnSide<'_>, edge_flux_w: &
 
 /// Solves for the correction and adds its fluxes; `correction` ends as heat gained, W m-2.
 #[inline(always)]
-fn correct_gyres(c: &Coefficients, w: &mut Work, edge_flux_w: &mut [f64]) {
-    c.gyre_factors.solve(w.correction.flat_mut());
+fn correct_gyres(c: &Coefficients, factors: &Factored, w: &mut Work, edge_flux_w: &mut [f64]) {
+    for ((row, b), correction) in w.rows.iter().zip(&c.rows).zip(w.correction.rows_mut()) {
+        *correction = (row.open_water * b.ocean_area_m2 * row.ocean_residual).0;
+    }
+    factors.solve(w.correction.flat_mut());
     let n = c.bands;
     let delta = &mut w.correction.flat_mut()[..n];
     let conductance = &c.gyre_conductance[..=n];
