@@ -1,0 +1,205 @@
+//! Sunlight against ice edge for diffusion with a sharp edge (North 1975): curve, folds and
+//! stability. Equations, sets and tolerances: README.md.
+
+use crate::csv::numbers;
+use crate::energy_balance_set_up::{
+    FEW_STEPS, at_latitude, largest, one_surface, planet, run, steady, sunlight,
+};
+use orbicline::grid::latitude::Spacing;
+use orbicline::physics::Setting;
+use orbicline::physics::energy_balance::EnergyBalance;
+use orbicline::physics::energy_balance::params::{Albedo, IceEdge, Params, Transport};
+
+/// Temperature of the edge, degC.
+const EDGE_C: f64 = -10.0;
+/// Albedo of ice.
+const ICE: f64 = 0.62;
+/// Sunlight at which the curve is run; the field is linear in it.
+const RUN_W_M2: f64 = 340.0;
+
+/// Numbers of one set.
+#[derive(Clone, Copy)]
+struct Set {
+    offset: f64,
+    slope: f64,
+    diffusivity: f64,
+    s2: f64,
+    free: [f64; 2],
+}
+
+const fn set(offset: f64, slope: f64, diffusivity: f64, s2: f64, free: [f64; 2]) -> Set {
+    Set {
+        offset,
+        slope,
+        diffusivity,
+        s2,
+        free,
+    }
+}
+
+const SETS: [Set; 4] = [
+    set(203.3, 2.09, 0.649, -0.477, [0.30, 0.0]),
+    set(210.0, 2.0, 0.60, -0.477, [0.30, 0.0]),
+    set(201.4, 1.45, 0.4495, -0.482, [0.303, 0.0779]),
+    set(210.0, 2.0, 0.30, -0.477, [0.30, 0.0]),
+];
+
+impl Set {
+    fn params(&self, edge: IceEdge) -> Params {
+        let mut p = one_surface();
+        p.longwave.offset_w_m2 = self.offset;
+        p.longwave.slope_w_m2_k = self.slope;
+        p.transport = Transport::Diffusion {
+            diffusivity_w_m2_k: self.diffusivity,
+            second_legendre_share: 0.0,
+            relative_humidity: 0.0,
+        };
+        p.albedo = Albedo::IceLine {
+            free: self.free[0],
+            free_second_legendre: self.free[1],
+            ice: ICE,
+            edge,
+        };
+        p
+    }
+
+    /// Sunlight that holds the edge at sin(latitude) x, and the field it holds there.
+    fn balance(&self, setting: &Setting, x: f64) -> (f64, Vec<f64>) {
+        let p = self.params(IceEdge::Prescribed { sine: x });
+        let (mut air, _) = steady(&p, setting, RUN_W_M2, self.s2);
+        let cold = self.offset / self.slope;
+        let edge_c = at_latitude(&air, x.asin().to_degrees());
+        let factor = (EDGE_C + cold) / (edge_c + cold);
+        air.iter_mut().for_each(|t| *t = (*t + cold) * factor - cold);
+        (RUN_W_M2 * factor, air)
+    }
+
+    fn sunlight_for(&self, setting: &Setting, x: f64) -> f64 {
+        self.balance(setting, x).0
+    }
+
+    /// Edge after `years` under sunlight q when it starts in balance at x.
+    fn edge_after(&self, setting: &Setting, q: f64, x: f64, years: usize) -> f64 {
+        let (_, air) = self.balance(setting, x);
+        let p = self.params(IceEdge::Temperature {
+            threshold_c: EDGE_C,
+        });
+        let mut model = EnergyBalance::new(&p, setting).unwrap();
+        model.set_air_temperature_c(&air);
+        let light = sunlight(setting, &[0, 2], |n, _| if n == 0 { q } else { q * self.s2 });
+        run(&mut model, setting, &light, years);
+        let [south, north] = model.ice_edge_sine().unwrap();
+        assert!((south - north).abs() < 1e-9, "{south} {north}");
+        north
+    }
+
+    /// Extremum of the curve between two places: quintic through six points about the extreme one
+    /// of a scan.
+    fn fold(&self, setting: &Setting, (low, high): (f64, f64), sign: f64) -> (f64, f64) {
+        let (mut low, mut high, mut points) = (low, high, Vec::new());
+        for count in [14, 8] {
+            let width = (high - low) / f64::from(count);
+            points = (0..=count)
+                .map(|k| low + width * f64::from(k))
+                .map(|x| (x, sign * self.sunlight_for(setting, x)))
+                .collect::<Vec<_>>();
+            let best = points.iter().max_by(|a, b| a.1.total_cmp(&b.1)).unwrap().0;
+            if count == 14 {
+                let reach = 0.018_f64.min(0.95 * (1.0 - best));
+                (low, high) = (best - reach, best + reach);
+            }
+        }
+        let fit = |x: f64| quartic_fit(&points, x);
+        while high - low > 1e-8 {
+            let third = (high - low) / 3.0;
+            if fit(low + third) > fit(high - third) {
+                high -= third;
+            } else {
+                low += third;
+            }
+        }
+        (low, sign * fit(low))
+    }
+}
+
+/// Value at x of the quartic that fits the points best.
+fn quartic_fit(points: &[(f64, f64)], x: f64) -> f64 {
+    let middle = points[points.len() / 2].0;
+    let half = points[points.len() - 1].0 - middle;
+    let power = |x: f64, k: usize| {
+        let k = i32::try_from(k).unwrap();
+        ((x - middle) / half).powi(k)
+    };
+    let matrix = nalgebra::DMatrix::from_fn(points.len(), 5, |i, k| power(points[i].0, k));
+    let values = nalgebra::DVector::from_fn(points.len(), |i, _| points[i].1);
+    let normal = matrix.transpose() * &matrix;
+    let fit = normal.lu().solve(&(matrix.transpose() * values)).unwrap();
+    (0..5).map(|k| fit[k] * power(x, k)).sum()
+}
+
+fn grid(bands: usize) -> Setting {
+    planet(bands, Spacing::EqualLatitude, FEW_STEPS, 0.0)
+}
+
+/// Largest difference from the exact curve for each set, W m-2.
+fn curve_errors(bands: usize) -> [f64; 4] {
+    let setting = grid(bands);
+    let table = numbers(include_str!("ice_line.csv"));
+    [0, 1, 2, 3].map(|s| {
+        largest(
+            table
+                .iter()
+                .map(|row| SETS[s].sunlight_for(&setting, row[0]) - row[1 + s]),
+        )
+    })
+}
+
+#[test]
+fn analytic_ice_edge_against_sunlight() {
+    let bands = [36, 144, 600, 1800];
+    let errors = bands.map(curve_errors);
+    eprintln!("{errors:?}");
+}
+
+#[test]
+fn analytic_folds_of_the_curve() {
+    let setting = grid(1800);
+    let large = [
+        (0.621_07, 310.0762),
+        (0.608_15, 323.2346),
+        (0.571_60, 310.3663),
+        (0.430_53, 320.9977),
+    ];
+    let small = [
+        (0.944_78, 317.8408),
+        (0.946_95, 332.6288),
+        (0.981_80, 331.7778),
+        (0.966_86, 371.1175),
+    ];
+    for (s, set) in SETS.iter().enumerate() {
+        let (x, q) = set.fold(&setting, (0.3, 0.8), -1.0);
+        let (x2, q2) = set.fold(&setting, (0.88, 0.999), 1.0);
+        eprintln!("{s} {x} {q} {x2} {q2} {} {} {} {}", x-large[s].0,q-large[s].1,x2-small[s].0,q2-small[s].1);
+    }
+}
+
+#[test]
+fn published_slope_stability_of_the_edge() {
+    let setting = grid(180);
+    let cases = [
+        (SETS[0], 313.958_527, 0.810_840, 0.462_354),
+        (SETS[3], 340.0, 0.725_513, 0.203_001),
+    ];
+    for (set, q, stable, unstable) in cases {
+        for start in [stable - 0.01, stable + 0.01, unstable - 0.01, unstable + 0.01] {
+            let t = std::time::Instant::now();
+            let trace: Vec<f64> = [1, 20, 100, 400].iter().map(|&y| set.edge_after(&setting, q, start, y)).collect();
+            eprintln!("{q} {start} {trace:?} {:?}", t.elapsed());
+        }
+    }
+    let set = SETS[0];
+    for (start, q) in [(0.66, 310.0762-0.4), (0.66, 310.0762+0.4), (0.93, 317.8408-0.4), (0.93,317.8408+0.4)] {
+            let trace: Vec<f64> = [1, 20, 100, 400].iter().map(|&y| set.edge_after(&setting, q, start, y)).collect();
+            eprintln!("{q} {start} {trace:?}");
+    }
+}
