@@ -70,7 +70,9 @@ impl Set {
         let cold = self.offset / self.slope;
         let edge_c = at_latitude(&air, x.asin().to_degrees());
         let factor = (EDGE_C + cold) / (edge_c + cold);
-        air.iter_mut().for_each(|t| *t = (*t + cold) * factor - cold);
+        for t in &mut air {
+            *t = (*t + cold) * factor - cold;
+        }
         (RUN_W_M2 * factor, air)
     }
 
@@ -86,7 +88,11 @@ impl Set {
         });
         let mut model = EnergyBalance::new(&p, setting).unwrap();
         model.set_air_temperature_c(&air);
-        let light = sunlight(setting, &[0, 2], |n, _| if n == 0 { q } else { q * self.s2 });
+        let light = sunlight(
+            setting,
+            &[0, 2],
+            |n, _| if n == 0 { q } else { q * self.s2 },
+        );
         run(&mut model, setting, &light, years);
         let [south, north] = model.ice_edge_sine().unwrap();
         assert!((south - north).abs() < 1e-9, "{south} {north}");
@@ -108,7 +114,7 @@ impl Set {
         };
         let mut x = top(&curve(low, high, 16));
         x = top(&curve(x - 0.008, (x + 0.008).min(0.9995), 16));
-        // The curve bends sharply near the pole, and rounding of place by the bands asks for room.
+        // The curve bends sharply near the pole; the error of the bands, rough in x, asks for room.
         let reach = 0.02 * (1.0 - x).sqrt();
         let points = curve(x - reach, x + reach, 8);
         let (mut low, mut high) = (x - reach, x + reach);
@@ -198,9 +204,8 @@ fn analytic_folds_of_the_curve() {
         let cases = [(large[s], (0.3, 0.8), -1.0), (small[s], (0.9, 0.995), 1.0)];
         for ((x_exact, q_exact), range, sign) in cases {
             let (x, q) = set.fold(&setting, range, sign);
-            eprintln!("fold {s} {x:.6} {:e} {q:.5} {:e}", x-x_exact, q-q_exact);
-            assert!((x - x_exact).abs() < 2e-4, "S{}: fold at {x:.6}", s + 1);
-            assert!((q - q_exact).abs() < 3e-4, "S{}: fold at {q:.5}", s + 1);
+            assert!((x - x_exact).abs() < 2e-5, "S{}: fold at {x:.6}", s + 1);
+            assert!((q - q_exact).abs() < 2e-4, "S{}: fold at {q:.5}", s + 1);
         }
     }
 }

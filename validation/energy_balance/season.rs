@@ -1,11 +1,9 @@
 //! Seasonal cycle and decay of single modes against closed forms. See README.md.
 
-use crate::energy_balance_set_up::{
-    amplitude, mode, one_surface, planet, run, sunlight,
-};
+use crate::energy_balance_set_up::{amplitude, mode, one_surface, planet, run, sunlight};
 use orbicline::grid::latitude::Spacing;
 use orbicline::physics::energy_balance::EnergyBalance;
-use orbicline::physics::energy_balance::params::{Params, Transport};
+use orbicline::physics::energy_balance::params::{Albedo, Params, Transport};
 use orbicline::units::{YEAR_DAYS, YEAR_SECONDS};
 use std::f64::consts::PI;
 
@@ -27,8 +25,7 @@ fn swinging() -> Params {
     };
     // omega C as in the listed numbers.
     p.air_heat_capacity_j_m2_k = 1025.0 * 3990.0 * 60.0 * YEAR_DAYS / LISTED_YEAR_DAYS;
-    if let orbicline::physics::energy_balance::params::Albedo::IceLine { free, .. } = &mut p.albedo
-    {
+    if let Albedo::IceLine { free, .. } = &mut p.albedo {
         *free = 0.30;
     }
     p

@@ -44,7 +44,7 @@ pub(crate) fn planet(bands: usize, spacing: Spacing, steps_per_year: usize, land
     }
 }
 
-/// P_n(x) by the three-term recurrence.
+/// `P_n(x)` by the three-term recurrence.
 pub(crate) fn legendre(n: usize, x: f64) -> f64 {
     let (mut below, mut here) = (1.0, x);
     if n == 0 {
@@ -60,7 +60,7 @@ pub(crate) fn legendre(n: usize, x: f64) -> f64 {
     here
 }
 
-/// Mean of P_n between two x, from (2n+1) P_n = P'_{n+1} - P'_{n-1}.
+/// Mean of `P_n` between two x, from `(2n+1) P_n = P'_{n+1} - P'_{n-1}`.
 pub(crate) fn mean_legendre(n: usize, low: f64, high: f64) -> f64 {
     if n == 0 {
         return 1.0;
@@ -69,7 +69,7 @@ pub(crate) fn mean_legendre(n: usize, low: f64, high: f64) -> f64 {
     (integral(high) - integral(low)) / (high - low)
 }
 
-/// Band means of P_n.
+/// Band means of `P_n`.
 pub(crate) fn mode(setting: &Setting, n: usize) -> Vec<f64> {
     let edges = setting.surface.bands.edge_sine();
     edges
@@ -78,7 +78,7 @@ pub(crate) fn mode(setting: &Setting, n: usize) -> Vec<f64> {
         .collect()
 }
 
-/// Amplitude of P_n in a field by least squares on the band means; exact for a single mode.
+/// Amplitude of `P_n` in a field by least squares on the band means; exact for a single mode.
 pub(crate) fn amplitude(setting: &Setting, field: &[f64], n: usize) -> f64 {
     let (mut field_by_mode, mut mode_squared) = (0.0, 0.0);
     let area = setting.surface.bands.area_m2();

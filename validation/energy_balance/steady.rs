@@ -134,8 +134,5 @@ fn summit(places: &[f64], values: &[f64]) -> (f64, f64) {
     let [a, b, c] = [values[top - 1], values[top], values[top + 1]];
     let shift = 0.5 * (a - c) / (a - 2.0 * b + c);
     let width = places[top + 1] - places[top];
-    (
-        places[top] + shift * width,
-        b - 0.25 * (a - c) * shift,
-    )
+    (places[top] + shift * width, b - 0.25 * (a - c) * shift)
 }

@@ -66,11 +66,9 @@ fn converges_third_order_in_steps_for_the_smooth_coupled_model() {
         let coarse = fields(steps);
         [0, 1, 2].map(|f| rms(&coarse[f], &fine[f]))
     });
-    eprintln!("{errors:?}");
     for (name, f) in [("air", 0), ("land", 1), ("water", 2)] {
         for (a, b) in [(0, 1), (2, 3)] {
             let order = (errors[a][f] / errors[b][f]).log2();
-            eprintln!("{name} {order}");
             assert!(order >= 2.9, "{name}: order {order:.3}, errors {errors:?}");
         }
     }

@@ -94,9 +94,15 @@ fn errors(steps: usize) -> Vec<(&'static str, [f64; 2])> {
     let second = exact(2, 0.0, Q * STEADY_2);
     vec![
         ("mean", steady(0).map(|t| (t - mean).abs())),
-        ("steady 2", [0, 1].map(|s| (steady(2)[s] - second[s].re).abs())),
+        (
+            "steady 2",
+            [0, 1].map(|s| (steady(2)[s] - second[s].re).abs()),
+        ),
         ("annual 1", swinging(1, exact(1, 1.0, Q * ANNUAL_1))),
-        ("semi-annual 2", swinging(2, exact(2, 2.0, Q * SEMI_ANNUAL_2))),
+        (
+            "semi-annual 2",
+            swinging(2, exact(2, 2.0, Q * SEMI_ANNUAL_2)),
+        ),
     ]
 }
 
@@ -115,7 +121,10 @@ fn converges_third_order_in_steps_for_two_surfaces() {
     for ((what, a), (_, b)) in coarse.iter().zip(&fine).skip(2) {
         for (surface, s) in [("land", 0), ("ocean", 1)] {
             let order = (a[s] / b[s]).log2();
-            assert!(order > 2.85, "{what}, {surface}: {a:?} {b:?} K, order {order}");
+            assert!(
+                order > 2.85,
+                "{what}, {surface}: {a:?} {b:?} K, order {order}"
+            );
         }
     }
 }
