@@ -8,6 +8,9 @@
 #[cfg(test)]
 mod csv;
 #[cfg(test)]
+#[path = "energy_balance/balance.rs"]
+mod energy_balance_balance;
+#[cfg(test)]
 #[path = "energy_balance/heat.rs"]
 mod energy_balance_heat;
 #[cfg(test)]
