@@ -59,6 +59,23 @@ fn convergence(setting: &Setting, field: &[f64], diffusivity: impl Fn(f64) -> f6
         .collect()
 }
 
+/// Convergence of the air's transport of moist static energy, W m-2.
+fn carried(p: &Params, setting: &Setting, air: &[f64]) -> Vec<f64> {
+    let Transport::Diffusion {
+        diffusivity_w_m2_k,
+        second_legendre_share,
+        relative_humidity,
+    } = p.transport
+    else {
+        panic!("diffusion expected")
+    };
+    let humid = |t: &f64| t + LATENT_K * relative_humidity * saturation_humidity(*t);
+    let energy: Vec<f64> = air.iter().map(humid).collect();
+    convergence(setting, &energy, |x| {
+        diffusivity_w_m2_k * (1.0 + second_legendre_share * (1.5 * x * x - 0.5))
+    })
+}
+
 /// Absorptances of water, land and ice in a band.
 fn absorptances(p: &Params, setting: &Setting, i: usize, land_c: f64) -> [f64; 3] {
     let Albedo::Surfaces {
@@ -132,19 +149,7 @@ fn imbalance(p: &Params) -> ([f64; 3], usize) {
     let (air, land) = (model.air_temperature_c(), model.land_temperature_c());
     let held = model.ocean_enthalpy_j_m2();
     let lift = p.lapse_rate_k_m * ELEVATION_M;
-    let Transport::Diffusion {
-        diffusivity_w_m2_k,
-        second_legendre_share,
-        relative_humidity,
-    } = p.transport
-    else {
-        panic!("diffusion expected")
-    };
-    let humid = |t: &f64| t + LATENT_K * relative_humidity * saturation_humidity(*t);
-    let energy: Vec<f64> = air.iter().map(humid).collect();
-    let brought = convergence(&setting, &energy, |x| {
-        diffusivity_w_m2_k * (1.0 + second_legendre_share * (1.5 * x * x - 0.5))
-    });
+    let brought = carried(p, &setting, air);
     let mut residual = [const { Vec::new() }; 3];
     let mut water = Vec::new();
     for i in 0..air.len() {

@@ -1,5 +1,5 @@
 //! Sunlight against ice edge for diffusion with a sharp edge (North 1975): curve, folds and
-//! stability. Equations, sets and tolerances: README.md.
+//! stability (slow: 10 s in all). Equations, sets and tolerances: README.md.
 
 use crate::csv::numbers;
 use crate::energy_balance_set_up::{
@@ -37,6 +37,8 @@ const fn set(offset: f64, slope: f64, diffusivity: f64, s2: f64, free: [f64; 2])
     }
 }
 
+/// S1 to S4: inputs of both sides; S1 after North & Coakley 1979, S3 after North 1975 (M), S2 and
+/// S4 chosen.
 const SETS: [Set; 4] = [
     set(203.3, 2.09, 0.649, -0.477, [0.30, 0.0]),
     set(210.0, 2.0, 0.60, -0.477, [0.30, 0.0]),
@@ -188,6 +190,7 @@ fn analytic_ice_edge_against_sunlight() {
 #[test]
 fn analytic_folds_of_the_curve() {
     let setting = grid(1800);
+    // Exact folds (C).
     let large = [
         (0.621_07, 310.0762),
         (0.608_15, 323.2346),
@@ -213,6 +216,7 @@ fn analytic_folds_of_the_curve() {
 #[test]
 fn analytic_edge_returns_where_the_curve_rises_and_departs_where_it_falls() {
     let setting = grid(180);
+    // Sunlight, stable and unstable edge (C).
     let cases = [
         (SETS[0], 313.958_527, 0.810_840, 0.462_354),
         (SETS[3], 340.0, 0.725_513, 0.203_001),

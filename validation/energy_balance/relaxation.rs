@@ -18,6 +18,7 @@ struct Set {
     threshold_c: f64,
 }
 
+/// Inputs of both sides, chosen.
 const LISTED: Set = Set {
     offset: 203.3,
     slope: 2.09,
@@ -25,6 +26,7 @@ const LISTED: Set = Set {
     albedo: [0.32, 0.62],
     threshold_c: -10.0,
 };
+/// Inputs of both sides, widely printed for Budyko 1969 (M).
 const SET_M: Set = Set {
     offset: 202.0,
     slope: 1.9,
@@ -110,6 +112,7 @@ fn polynomial(points: &[(f64, f64)], x: f64) -> f64 {
 #[test]
 fn analytic_sunlight_against_the_edge() {
     let setting = planet(BANDS, Spacing::EqualSine, FEW_STEPS, 0.0);
+    // C.
     for (x, exact) in [(0.95, 335.143_973), (0.8, 325.750_361)] {
         let q = LISTED.sunlight_for(&setting, edge_number(x));
         assert!((q - exact).abs() < 1e-6, "Q({x}) = {q:.7}, exact {exact}");
@@ -140,6 +143,7 @@ fn analytic_fold_of_the_relaxation_model() {
         }
     }
     let q = polynomial(points, low);
+    // C: minimum of the closed form.
     assert!((low - 0.660_498_8).abs() < 1e-6, "fold at {low:.7}");
     assert!((q - 323.113_981_4).abs() < 1e-6, "fold at Q = {q:.7}");
 }
@@ -148,6 +152,7 @@ fn analytic_fold_of_the_relaxation_model() {
 fn analytic_edge_temperatures_and_roots() {
     let setting = planet(BANDS, Spacing::EqualSine, FEW_STEPS, 0.0);
     let at = |j| SET_M.balance(&setting, 343.0, j);
+    // C, as the roots below.
     let listed = [
         (0.25, -9.880_498),
         (0.5, -5.407_654),

@@ -55,6 +55,7 @@ fn exact_response(n: usize, k: f64, share: f64) -> [f64; 2] {
 
 #[test]
 fn analytic_seasonal_amplitude_and_lag() {
+    // Listed numbers: C.
     let [re, im] = response(192, 1, 1.0, 0.796);
     let (size, lag) = (re.hypot(im), (-im).atan2(re).to_degrees());
     assert!((size - 3.873_15).abs() < 5e-5, "annual amplitude {size:.6}");
@@ -86,6 +87,7 @@ fn converges_third_order_in_steps_for_the_seasonal_cycle() {
 fn analytic_single_modes_decay_with_their_relaxation_times() {
     let setting = planet(288, Spacing::EqualSine, 96, 0.0);
     let dark = sunlight(&setting, &[0], |_, _| 0.0);
+    // Years of 365.25 days (C).
     let listed = [(0, 5.362_61), (1, 3.310_25), (2, 1.875_04), (4, 0.744_81)];
     for (n, tau) in listed {
         let mut model = EnergyBalance::new(&swinging(), &setting).unwrap();

@@ -84,6 +84,7 @@ fn analytic_three_mode_solution_and_its_transport() {
     let p = ice_free(0.319, 0.202);
     let setting = planet(576, Spacing::EqualLatitude, FEW_STEPS, 0.0);
     let (air, exchange) = steady(&p, &setting, 340.0, -0.477);
+    // All listed numbers: C.
     for (n, exact) in [(0, 16.646_92), (2, -28.369_73), (4, 1.118_00)] {
         let t = amplitude(&setting, &air, n);
         assert!((t - exact).abs() < 1e-3, "T{n} = {t:.5}, exact {exact}");

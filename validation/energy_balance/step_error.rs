@@ -1,4 +1,4 @@
-//! Error of the reference model in the number of seasonal steps. See README.md.
+//! Error of the reference model in the number of seasonal steps (slow: 6 s). See README.md.
 
 use crate::csv::orbit;
 use crate::energy_balance_set_up::{reference, run_with};
