@@ -8,11 +8,35 @@
 #[cfg(test)]
 mod csv;
 #[cfg(test)]
-#[path = "energy_balance/case.rs"]
-mod energy_balance;
+#[path = "energy_balance/balance.rs"]
+mod energy_balance_balance;
+#[cfg(test)]
+#[path = "energy_balance/heat.rs"]
+mod energy_balance_heat;
+#[cfg(test)]
+#[path = "energy_balance/ice_line.rs"]
+mod energy_balance_ice_line;
+#[cfg(test)]
+#[path = "energy_balance/relaxation.rs"]
+mod energy_balance_relaxation;
+#[cfg(test)]
+#[path = "energy_balance/season.rs"]
+mod energy_balance_season;
 #[cfg(test)]
 #[path = "energy_balance/set_up.rs"]
 mod energy_balance_set_up;
+#[cfg(test)]
+#[path = "energy_balance/steady.rs"]
+mod energy_balance_steady;
+#[cfg(test)]
+#[path = "energy_balance/step_error.rs"]
+mod energy_balance_step_error;
+#[cfg(test)]
+#[path = "energy_balance/time_order.rs"]
+mod energy_balance_time_order;
+#[cfg(test)]
+#[path = "energy_balance/two_surfaces.rs"]
+mod energy_balance_two_surfaces;
 #[cfg(test)]
 #[path = "insolation/closed_forms.rs"]
 mod insolation_closed_forms;
