@@ -46,3 +46,9 @@ mod insolation_tables;
 #[cfg(test)]
 #[path = "orbit/case.rs"]
 mod orbit;
+#[cfg(test)]
+#[path = "present_day/case.rs"]
+mod present_day;
+#[cfg(test)]
+#[path = "present_day/climate.rs"]
+mod present_day_climate;
