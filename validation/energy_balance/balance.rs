@@ -149,7 +149,7 @@ fn imbalance(p: &Params) -> ([f64; 3], usize) {
     let (air, land) = (model.air_temperature_c(), model.land_temperature_c());
     let held = model.ocean_enthalpy_j_m2();
     let lift = p.lapse_rate_k_m * ELEVATION_M;
-    let brought = carried(p, &setting, air);
+    let brought = carried(p, &setting, &air);
     let mut residual = [const { Vec::new() }; 3];
     let mut water = Vec::new();
     for i in 0..air.len() {

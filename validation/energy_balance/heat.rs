@@ -88,7 +88,8 @@ fn two_surfaces() -> Params {
 fn imbalance(mut running: Running, met: &mut BTreeSet<&'static str>) -> (f64, f64) {
     let sphere = 4.0 * PI * EARTH_RADIUS_M * EARTH_RADIUS_M;
     let (mut closed, mut broken) = (0.0_f64, f64::INFINITY);
-    let mut before = running.model.heat_j();
+    running.year();
+    let mut before = running.model.accounts().remove(0).stored;
     for _ in 0..30 {
         running.year();
         let account = running.model.accounts().remove(0);
@@ -99,16 +100,17 @@ fn imbalance(mut running: Running, met: &mut BTreeSet<&'static str>) -> (f64, f6
             .collect();
         let per = 1.0 / (sphere * YEAR_SECONDS);
         let residual = |left_out: Option<usize>| {
+            let mut rest = account.stored;
+            rest.add_sum(before.negated());
             let kept = flows.iter().enumerate();
-            let sum: f64 = kept
-                .filter(|(i, _)| Some(*i) != left_out)
-                .map(|(_, flow)| flow.amount)
-                .sum();
-            ((account.stored - before - sum) * per).abs()
+            for (_, flow) in kept.filter(|(i, _)| Some(*i) != left_out) {
+                rest.add_sum(flow.amount.negated());
+            }
+            (rest.value() * per).abs()
         };
         closed = closed.max(residual(None));
         for (i, flow) in flows.iter().enumerate() {
-            if flow.amount.abs() > 0.0 {
+            if flow.amount.value().abs() > 0.0 {
                 met.insert(flow.name);
                 broken = broken.min(residual(Some(i)));
             }

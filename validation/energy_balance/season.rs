@@ -41,7 +41,7 @@ fn response(steps: usize, n: usize, k: f64, share: f64) -> [f64; 2] {
             340.0 * share * (2.0 * PI * (k * t - delay)).cos()
         });
         run(&mut model, &setting, &light, 100);
-        amplitude(&setting, model.air_temperature_c(), n)
+        amplitude(&setting, &model.air_temperature_c(), n)
     })
 }
 
@@ -94,9 +94,9 @@ fn analytic_single_modes_decay_with_their_relaxation_times() {
         model.set_air_temperature_c(&mode(&setting, n));
         // The first year forgets the start at rest.
         run(&mut model, &setting, &dark, 1);
-        let before = amplitude(&setting, model.air_temperature_c(), n);
+        let before = amplitude(&setting, &model.air_temperature_c(), n);
         run(&mut model, &setting, &dark, 1);
-        let after = amplitude(&setting, model.air_temperature_c(), n);
+        let after = amplitude(&setting, &model.air_temperature_c(), n);
         let found = 1.0 / (before / after).ln();
         assert!(
             (found / tau - 1.0).abs() < 2e-5,

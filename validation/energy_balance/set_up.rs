@@ -200,7 +200,7 @@ pub(crate) fn steady(p: &Params, setting: &Setting, q: f64, s2: f64) -> (Vec<f64
     let mut model = EnergyBalance::new(&p, setting).unwrap();
     let light = sunlight(setting, &[0, 2], |n, _| if n == 0 { q } else { q * s2 });
     let exchange = run(&mut model, setting, &light, 1);
-    (model.air_temperature_c().to_vec(), exchange)
+    (model.air_temperature_c(), exchange)
 }
 
 /// Largest absolute value.

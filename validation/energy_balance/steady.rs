@@ -50,7 +50,8 @@ fn analytic_steady_state_does_not_depend_on_the_heat_capacity() {
     let mut model = EnergyBalance::new(&p, &setting).unwrap();
     let light = sunlight(&setting, &[0, 2], |n, _| if n == 0 { q } else { q * s2 });
     run(&mut model, &setting, &light, 200);
-    let apart = model.air_temperature_c().iter().zip(&at_once);
+    let air = model.air_temperature_c();
+    let apart = air.iter().zip(&at_once);
     let error = largest(apart.map(|(a, b)| a - b));
     assert!(error < 1e-9, "{error:e} K");
 }

@@ -51,8 +51,8 @@ fn course(steps: usize) -> Course {
             let (sun, zenith) = (&table.daily_mean_w_m2, &table.zenith_cosine);
             run_with(&mut model, &mut exchange, (sun, zenith), greenhouse, years);
         }
-        air.push(model.air_temperature_c().to_vec());
-        land.push(model.land_temperature_c().to_vec());
+        air.push(model.air_temperature_c());
+        land.push(model.land_temperature_c());
         annual_air = annual_mean_air(&model, bands.len());
     }
     Course {

@@ -47,8 +47,8 @@ fn fields(steps: usize) -> [Vec<f64>; 3] {
         run(&mut model, &setting, &light, 60);
         assert!(model.ocean_enthalpy_j_m2().iter().all(|e| *e > 0.0));
         let [air, land, water] = &mut all;
-        air.extend_from_slice(model.air_temperature_c());
-        land.extend_from_slice(model.land_temperature_c());
+        air.extend(model.air_temperature_c());
+        land.extend(model.land_temperature_c());
         water.extend(model.ocean_enthalpy_j_m2().iter().map(|e| e / 1e8));
     }
     all

@@ -74,7 +74,7 @@ fn fields(setting: &Setting, delay: f64) -> [Vec<f64>; 2] {
     assert!(held.iter().all(|e| *e > 0.0), "the ocean froze");
     let capacity = SEA_WATER_HEAT_CAPACITY_J_M3_K * DEPTH_M;
     let ocean = held.iter().map(|e| SEA_WATER_FREEZING_C + e / capacity);
-    [model.land_temperature_c().to_vec(), ocean.collect()]
+    [model.land_temperature_c(), ocean.collect()]
 }
 
 /// Errors of land and ocean, K: steady modes 0 and 2, annual mode 1, semi-annual mode 2.
