@@ -1,5 +1,9 @@
 //! The model's present day against observed tables, and how its thermocline answers the orbit; see the
 //! README of this folder.
+#![expect(
+    clippy::print_stdout,
+    reason = "the comparison is for people to read: cargo test -- --nocapture"
+)]
 
 use crate::csv;
 use crate::present_day_climate::{
@@ -44,8 +48,8 @@ fn observed_annual_temperature_by_latitude_and_better_than_two_modes() {
     println!("south  observed  model  two modes fitted  published");
     for b in 0..BANDS {
         println!(
-            "{:5} {:9.2} {:6.2} {:17.2} {:10.2}",
-            10 * b as i64 - 90,
+            "{:5.0} {:9.2} {:6.2} {:17.2} {:10.2}",
+            10.0 * b as f64 - 90.0,
             observed[b],
             model[b],
             fitted[b],
