@@ -123,7 +123,9 @@ impl Component for Spoiled {
 
     fn accounts(&self) -> Vec<Account> {
         let mut accounts = self.inner.accounts();
-        accounts.iter_mut().for_each(|a| self.spoil_account(a));
+        for account in &mut accounts {
+            self.spoil_account(account);
+        }
         match (self.fault, accounts.first().cloned()) {
             (Fault::BooksNothing, _) => accounts.clear(),
             (Fault::BooksUndeclared, Some(mut account)) => {
