@@ -1,0 +1,184 @@
+//! The program as its user meets it: what it prints, what it refuses, what is in its file.
+#![cfg(feature = "netcdf")]
+
+#[path = "cli/contents.rs"]
+mod contents;
+#[path = "cli/program.rs"]
+mod program;
+
+use orbicline::output::RunFile;
+use program::{Folder, Outcome, SHORT};
+
+#[test]
+fn a_run_ends_with_path_key_figures_and_two_lines_of_python() {
+    let folder = Folder::new();
+    let outcome = folder.orbicline(&["run", "short.toml", "--out", "short.nc"]);
+    assert!(outcome.ok, "{outcome:?}");
+    assert_eq!(outcome.err, "", "a progress bar without a terminal");
+    assert_eq!(outcome.out.lines().next(), Some("short.nc"));
+    for figure in [
+        "global air temperature at 2 m",
+        "depth of the 20 degC isotherm",
+        "deep sinking",
+        "eastern equatorial Pacific",
+        "70 records",
+        "M = 1 ",
+        "largest residual",
+    ] {
+        assert!(
+            outcome.out.contains(figure),
+            "no {figure} in\n{}",
+            outcome.out
+        );
+    }
+    let last: Vec<_> = outcome.out.lines().rev().take(2).collect();
+    let python = [
+        "  run = xarray.open_dataset(\"short.nc\")",
+        "  import xarray",
+    ];
+    assert_eq!(last, python);
+    contents::check(&folder.path("short.nc"));
+}
+
+#[test]
+fn the_key_figures_are_means_of_the_file() {
+    let folder = Folder::new();
+    let outcome = folder.orbicline(&["run", "short.toml", "--out", "short.nc"]);
+    let file = RunFile::open(&folder.path("short.nc")).expect("a file");
+    for (words, variable, factor) in [
+        (
+            "global air temperature at 2 m",
+            "global_air_temperature_2m",
+            1.0,
+        ),
+        ("deep sinking", "deep_sinking", 1e-6),
+        ("west minus east", "west_east_contrast", 1.0),
+    ] {
+        let values = file.series(variable).expect("a series").values;
+        let mean = factor * values.iter().sum::<f64>() / 70.0;
+        let line = outcome
+            .out
+            .lines()
+            .find(|l| l.starts_with(words))
+            .expect("a line");
+        let printed = line[words.len()..].split_whitespace().next();
+        assert_eq!(printed, Some(format!("{mean:.3}").as_str()), "{line}");
+    }
+}
+
+#[test]
+fn quiet_prints_nothing_and_the_default_output_carries_the_name_of_the_configuration() {
+    let folder = Folder::new();
+    let outcome = folder.orbicline(&["run", "short.toml", "--quiet"]);
+    assert!(outcome.ok, "{outcome:?}");
+    assert_eq!((outcome.out.as_str(), outcome.err.as_str()), ("", ""));
+    assert!(folder.path("out/short.nc").exists());
+}
+
+#[test]
+fn an_existing_file_is_left_as_it_is_unless_overwriting_is_allowed() {
+    let folder = Folder::new();
+    folder.write("there.nc", "somebody's work");
+    let refused = folder.orbicline(&["run", "short.toml", "--out", "there.nc"]);
+    refused.says(&["there.nc", "exists already"]);
+    assert_eq!(folder.read("there.nc"), b"somebody's work");
+    assert_eq!(
+        folder.files(),
+        ["short.toml", "there.nc"],
+        "something was left behind"
+    );
+    let words = [
+        "run",
+        "short.toml",
+        "--out",
+        "there.nc",
+        "--overwrite",
+        "--quiet",
+    ];
+    assert!(folder.orbicline(&words).ok);
+    assert!(RunFile::open(&folder.path("there.nc")).is_ok());
+    assert_eq!(
+        folder.files(),
+        ["short.toml", "there.nc"],
+        "segments were left behind"
+    );
+}
+
+fn refused(folder: &Folder, words: &[&str]) -> Outcome {
+    let all = [&["run"], words, &["--out", "never.nc"]].concat();
+    let outcome = folder.orbicline(&all);
+    assert!(
+        !folder.path("never.nc").exists(),
+        "a file in spite of {words:?}"
+    );
+    outcome
+}
+
+#[test]
+fn an_unknown_key_is_answered_with_the_nearest() {
+    let folder = Folder::new();
+    let edit = "physics.ocean_column.mixing.uper_m2_s=1e-5";
+    let outcome = refused(&folder, &["short.toml", "--set", edit]);
+    outcome.says(&["--set physics", "`physics.ocean_column.mixing.upper_m2_s`"]);
+    let outcome = refused(&folder, &["short.toml", "--set", "orbit.obliquity"]);
+    outcome.says(&["key.path=value"]);
+    folder.write("misspelt.toml", &format!("{SHORT}\n[grid]\nband = 72\n"));
+    let outcome = refused(&folder, &["misspelt.toml"]);
+    outcome.says(&["misspelt.toml:", "band", "bands"]);
+}
+
+#[test]
+fn all_values_out_of_range_are_told_at_once_each_with_its_line() {
+    let folder = Folder::new();
+    let text = format!(
+        "{SHORT}\n[grid]\nsteps_per_year = 3\n[insolation]\nsolar_constant_w_m2 = -1.0\n\
+         [physics.energy_balance.albedo]\nwater = 1.7\n[physics.ocean_column.mixing]\n\
+         upper_m2_s = -1e-5\n[physics.equatorial_pacific]\ntilt_m = -60.0\n\
+         [co2]\nco2_ppm = 0.0\n"
+    );
+    folder.write("wrong.toml", &text);
+    let line = |key: &str| {
+        let found = text.lines().position(|l| l.starts_with(key));
+        format!("wrong.toml:{}: ", found.expect("the key") + 1)
+    };
+    let outcome = refused(&folder, &["wrong.toml"]);
+    for (key, path) in [
+        ("steps_per_year", "grid.steps_per_year = 3"),
+        ("solar_constant", "insolation.solar_constant_w_m2 = -1"),
+        ("water", "physics.energy_balance.albedo.water = 1.7"),
+        (
+            "upper_m2_s",
+            "physics.ocean_column.mixing.upper_m2_s = -0.00001",
+        ),
+        ("tilt_m", "physics.equatorial_pacific.tilt_m = -60"),
+    ] {
+        outcome.says(&[&format!("{}{path}", line(key))]);
+    }
+    // A fault of a whole table is told with the line of the table.
+    outcome.says(&[&format!("{}co2: 0 ppm", line("[co2]"))]);
+    assert_eq!(outcome.err.trim().lines().count(), 6, "{}", outcome.err);
+}
+
+#[test]
+fn a_value_of_the_command_line_is_told_as_such() {
+    let folder = Folder::new();
+    let edit = "insolation.refresh_every_yr=0";
+    let outcome = refused(&folder, &["short.toml", "--set", edit]);
+    outcome.says(&[
+        "--set insolation.refresh_every_yr=0: ",
+        "between 1 and 1000",
+    ]);
+}
+
+#[test]
+fn a_missing_file_or_wrong_word_is_an_error_that_names_it() {
+    let folder = Folder::new();
+    refused(&folder, &["nothing.toml"]).says(&["nothing.toml", "cannot be read"]);
+    folder.write("lonely.toml", "extends = \"nowhere.toml\"\n");
+    refused(&folder, &["lonely.toml"]).says(&["nowhere.toml", "lonely.toml:1"]);
+    refused(&folder, &["short.toml", "--threads", "0"]).says(&["--threads"]);
+    refused(&folder, &["short.toml", "--thread", "2"]).says(&["--threads"]);
+    folder.orbicline(&["walk"]).says(&["walk"]);
+    let help = folder.orbicline(&["run", "--help"]);
+    assert!(help.ok && help.out.contains("--overwrite"), "{help:?}");
+}
