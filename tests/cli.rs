@@ -154,9 +154,19 @@ fn all_values_out_of_range_are_told_at_once_each_with_its_line() {
     ] {
         outcome.says(&[&format!("{}{path}", line(key))]);
     }
-    // A fault of a whole table is told with the line of the table.
-    outcome.says(&[&format!("{}co2: 0 ppm", line("[co2]"))]);
+    outcome.says(&[&format!("{}co2: 0 ppm", line("co2_ppm"))]);
     assert_eq!(outcome.err.trim().lines().count(), 6, "{}", outcome.err);
+}
+
+#[test]
+fn faults_of_the_grid_do_not_hide_those_of_the_physics() {
+    let folder = Folder::new();
+    let edits = ["grid.bands=37", "physics.energy_balance.albedo.snow=2"];
+    let outcome = refused(
+        &folder,
+        &["short.toml", "--set", edits[0], "--set", edits[1]],
+    );
+    outcome.says(&["37 latitude bands", "albedo.snow = 2"]);
 }
 
 #[test]

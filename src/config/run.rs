@@ -198,6 +198,9 @@ impl Experiment {
             Fault::Plan(PlanError::Zero { key }) => key,
             Fault::Plan(PlanError::Multiple { .. }) => "time.record_every_yr",
             Fault::Orbit(_) => "orbit",
+            Fault::CarbonDioxide(CarbonDioxideError::NotPositive { age_kyr: None, .. }) => {
+                "co2.co2_ppm"
+            }
             Fault::CarbonDioxide(_) => "co2",
             Fault::Table(_) => "co2.path",
         };
@@ -239,6 +242,9 @@ impl RunSpec {
         self.check_ages(orbit.as_ref(), co2.as_ref(), &mut faults);
         let setting = self.setting(&mut faults);
         let mut exchange = Exchange::new(setting.as_ref().map_or(0, |s| s.surface.bands.len()));
+        if setting.is_none() {
+            faults.take_all(self.physics.check(), Fault::Range);
+        }
         let components = setting
             .as_ref()
             .and_then(|s| faults.take_all(self.physics.build(s, &mut exchange), Fault::Range));

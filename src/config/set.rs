@@ -51,8 +51,17 @@ pub(super) fn unknown(table: &Table, key: &str, place: &Place) -> ConfigError {
     ConfigError::SetUnknown {
         assignment,
         key: key.to_owned(),
-        nearest: nearest(key, paths.iter().map(String::as_str)),
+        nearest: nearest_path(key, &paths),
     }
+}
+
+/// The most similar path; one that ends in the same key wins, since keys are forgotten less often
+/// than the tables around them.
+fn nearest_path(key: &str, paths: &[String]) -> Option<String> {
+    let last = |path: &str| path.rsplit('.').next().unwrap_or_default().to_owned();
+    let namesakes = paths.iter().filter(|path| last(path) == last(key));
+    nearest(key, namesakes.map(String::as_str))
+        .or_else(|| nearest(key, paths.iter().map(String::as_str)))
 }
 
 fn collect(path: &str, table: &Table, paths: &mut Vec<String>) {
@@ -86,6 +95,13 @@ mod tests {
         let (key, value) = parse("a.b = { kind = \"x=y\" }").unwrap();
         assert_eq!(key, "a.b");
         assert_eq!(value["kind"].as_str(), Some("x=y"));
+    }
+
+    #[test]
+    fn a_forgotten_table_is_offered_before_a_similar_word() {
+        let paths = ["ocean.levels.count", "ocean.sinking.closure.preset"].map(str::to_owned);
+        let offered = nearest_path("ocean.closure.preset", &paths);
+        assert_eq!(offered.as_deref(), Some("ocean.sinking.closure.preset"));
     }
 
     #[test]

@@ -8,6 +8,10 @@ use crate::output::OutputError;
 use crate::output::reader::RunFile;
 use std::path::Path;
 
+/// Least range of obliquity (degrees) and of climatic precession for which a response is told:
+/// a quarter of what a whole cycle brings. Below it a slope would extrapolate.
+const LEAST_RANGE: [f64; 2] = [0.5, 0.01];
+
 /// Precession in the responses: from perihelion in June to perihelion in December at e = 0.05.
 const PRECESSION_SWING: f64 = 0.1;
 
@@ -123,17 +127,13 @@ fn figure(
     orbit: [&[f64]; 3],
 ) -> KeyFigure {
     let finite: Vec<f64> = values.iter().copied().filter(|v| v.is_finite()).collect();
-    let range = finite
-        .iter()
-        .fold([f64::INFINITY, f64::NEG_INFINITY], |r, v| {
-            [r[0].min(*v), r[1].max(*v)]
-        });
+    let range = extremes(&finite);
     // Too few records for a fit is not a fault of the run: there is then no response to tell.
     let fit = regression::fit(values, &orbit).ok();
     let slope = |k: usize, swing: f64| {
-        fit.as_ref()
-            .map(|f| f.slopes[k] * swing)
-            .filter(|v| v.is_finite() && *v != 0.0)
+        let [low, high] = extremes(orbit[k]);
+        let fit = fit.as_ref().filter(|_| high - low >= LEAST_RANGE[k])?;
+        Some(fit.slopes[k] * swing).filter(|v| v.is_finite())
     };
     KeyFigure {
         name,
@@ -144,4 +144,11 @@ fn figure(
         // Climatic precession is +e when perihelion falls in December and -e in June.
         december_to_june: slope(1, -PRECESSION_SWING),
     }
+}
+
+fn extremes(values: &[f64]) -> [f64; 2] {
+    let wider = |[low, high]: [f64; 2], v: &f64| [low.min(*v), high.max(*v)];
+    values
+        .iter()
+        .fold([f64::INFINITY, f64::NEG_INFINITY], wider)
 }

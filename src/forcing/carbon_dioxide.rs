@@ -39,12 +39,12 @@ pub enum CarbonDioxideSpec {
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum CarbonDioxideError {
     /// A concentration that is not positive.
-    #[error("co2: {value} ppm at {age_kyr} kyr is not a concentration: it must be positive")]
+    #[error("co2: {value} ppm{} is not a concentration: it must be positive", at(*age_kyr))]
     NotPositive {
         /// The value.
         value: f64,
-        /// Its age, kyr.
-        age_kyr: f64,
+        /// Its age, kyr, in a table.
+        age_kyr: Option<f64>,
     },
     /// Ages out of order.
     #[error(
@@ -83,7 +83,7 @@ impl CarbonDioxide {
     /// # Errors
     /// When it is not positive.
     pub fn constant(co2_ppm: f64) -> Result<Self, CarbonDioxideError> {
-        check(&[f64::NAN], &[co2_ppm])?;
+        check(None, co2_ppm)?;
         Ok(Self {
             age_kyr: Vec::new(),
             co2_ppm: vec![co2_ppm],
@@ -95,7 +95,9 @@ impl CarbonDioxide {
     /// # Errors
     /// When ages do not increase or a concentration is not positive.
     pub fn table(age_kyr: Vec<f64>, co2_ppm: Vec<f64>) -> Result<Self, CarbonDioxideError> {
-        check(&age_kyr, &co2_ppm)?;
+        for (age, ppm) in age_kyr.iter().zip(&co2_ppm) {
+            check(Some(*age), *ppm)?;
+        }
         for pair in age_kyr.windows(2) {
             if pair[0].partial_cmp(&pair[1]) != Some(std::cmp::Ordering::Less) {
                 return Err(CarbonDioxideError::Order {
@@ -127,13 +129,17 @@ impl CarbonDioxide {
     }
 }
 
-fn check(age_kyr: &[f64], co2_ppm: &[f64]) -> Result<(), CarbonDioxideError> {
-    for (&age_kyr, &value) in age_kyr.iter().zip(co2_ppm) {
-        if !(value > 0.0 && value.is_finite()) {
-            return Err(CarbonDioxideError::NotPositive { value, age_kyr });
-        }
+fn check(age_kyr: Option<f64>, value: f64) -> Result<(), CarbonDioxideError> {
+    if value > 0.0 && value.is_finite() {
+        return Ok(());
     }
-    Ok(())
+    Err(CarbonDioxideError::NotPositive { value, age_kyr })
+}
+
+fn at(age_kyr: Option<f64>) -> String {
+    age_kyr
+        .map(|age| format!(" at {age} kyr"))
+        .unwrap_or_default()
 }
 
 #[cfg(test)]

@@ -138,9 +138,23 @@ impl Model {
         plan: &Plan,
         observer: &mut O,
     ) -> Result<(), RunError<O::Error>> {
-        let mut records = Records::new(&self.components);
         self.open_ledger();
-        for year in 0..plan.seasonal_years() {
+        self.run_from(plan, 0, observer)
+    }
+
+    /// Goes on with a plan of which `done` seasonal years have been run, up to the end of a record,
+    /// from the state after them; the ledger stays open.
+    ///
+    /// # Errors
+    /// As [`Model::run`].
+    pub fn run_from<O: Observer>(
+        &mut self,
+        plan: &Plan,
+        done: u64,
+        observer: &mut O,
+    ) -> Result<(), RunError<O::Error>> {
+        let mut records = Records::new(&self.components);
+        for year in done..plan.seasonal_years() {
             let passed = plan.middle_yr(year);
             let forcing = self
                 .drive

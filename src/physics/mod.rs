@@ -83,6 +83,12 @@ pub trait Build: Component + Sized + 'static {
     /// The table.
     type Params: Clone + PartialEq + std::fmt::Debug + Serialize + DeserializeOwned;
 
+    /// Checks every parameter that can be checked without a grid.
+    ///
+    /// # Errors
+    /// Every parameter out of range, with keys below the component's own table.
+    fn check(params: &Self::Params) -> Result<(), Vec<RangeError>>;
+
     /// Builds the component and writes into `exchange` what the others need in the first year.
     ///
     /// # Errors
@@ -106,6 +112,18 @@ macro_rules! components {
         }
 
         impl PhysicsSpec {
+            /// Checks every table as far as it can be without a grid.
+            ///
+            /// # Errors
+            /// Every parameter out of range in any of them, keys starting at `physics`.
+            pub fn check(&self) -> Result<(), Vec<RangeError>> {
+                let mut violations = Vec::new();
+                $(if let Some(Err(found)) = self.$name.as_ref().map(<$type>::check) {
+                    violations.extend(below(stringify!($name), found));
+                })*
+                if violations.is_empty() { Ok(()) } else { Err(violations) }
+            }
+
             /// Builds all components that have a table, in the order of the list.
             ///
             /// # Errors
@@ -118,16 +136,21 @@ macro_rules! components {
                 $(if let Some(params) = &self.$name {
                     match <$type>::build(params, setting, exchange) {
                         Ok(component) => built.push(Box::new(component)),
-                        Err(found) => violations.extend(found.into_iter().map(|mut v| {
-                            v.key = format!("physics.{}.{}", stringify!($name), v.key);
-                            v
-                        })),
+                        Err(found) => violations.extend(below(stringify!($name), found)),
                     }
                 })*
                 if violations.is_empty() { Ok(built) } else { Err(violations) }
             }
         }
     };
+}
+
+/// Puts the keys of violations below the table of their component.
+fn below(component: &str, violations: Vec<RangeError>) -> impl Iterator<Item = RangeError> {
+    violations.into_iter().map(move |mut violation| {
+        violation.key = format!("physics.{component}.{}", violation.key);
+        violation
+    })
 }
 
 components! {

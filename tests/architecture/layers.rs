@@ -231,7 +231,7 @@ fn wrong(module: &[String], found: &Found, components: &BTreeSet<String>) -> Opt
         }
         [outside, ..] => {
             let (_, users) = CRATES.iter().find(|(name, _)| name == outside)?;
-            (!users.contains(&from) && !found.test_only).then(|| {
+            (!users.contains(&from) && !test_only(module, found)).then(|| {
                 format!(
                     "`{from}` uses the crate `{outside}`; only {} may",
                     users.join(", ")
@@ -242,10 +242,17 @@ fn wrong(module: &[String], found: &Found, components: &BTreeSet<String>) -> Opt
     }
 }
 
+/// Whether this is compiled for tests only: inside a `#[cfg(test)]` module, or in a file that holds
+/// nothing else by its name.
+fn test_only(module: &[String], found: &Found) -> bool {
+    let in_test_file = |part: &String| part == "fixtures" || part.ends_with("tests");
+    found.test_only || module.iter().any(in_test_file)
+}
+
 fn wrong_files(module: &[String], found: &Found) -> Option<String> {
     let from = module.first().map_or("", String::as_str);
     let allowed = FILE_USERS.contains(&from) || module.iter().any(|part| part == "tables");
-    (!allowed && !found.test_only).then(|| {
+    (!allowed && !test_only(module, found)).then(|| {
         let users = FILE_USERS.join(", ");
         format!("`{from}` uses `std::fs`; only {users} and modules named `tables` may")
     })

@@ -61,7 +61,7 @@ const SIDES: &[&str] = &["age", "hemisphere"];
 
 /// Attributes and what must be in them.
 const ATTRIBUTES: [(&str, &str); 7] = [
-    ("configuration", "diffusivity_w_m2_k = 0.287"),
+    ("configuration", "thickness_m = 100.0"),
     ("orbicline_version", env!("CARGO_PKG_VERSION")),
     ("orbicline_commit", ""),
     ("input_sha256", "reference.toml"),

@@ -125,6 +125,10 @@ impl EnergyBalance {
 impl Build for EnergyBalance {
     type Params = Params;
 
+    fn check(params: &Params) -> Result<(), Vec<RangeError>> {
+        params.check()
+    }
+
     fn build(
         params: &Params,
         setting: &Setting,

@@ -245,6 +245,10 @@ fn nothing() -> Equator {
 impl Build for EquatorialPacific {
     type Params = Params;
 
+    fn check(params: &Params) -> Result<(), Vec<RangeError>> {
+        params.check()
+    }
+
     fn build(
         params: &Params,
         setting: &Setting,

@@ -16,6 +16,10 @@ use crate::series::Variable;
 impl Build for OceanColumn {
     type Params = Params;
 
+    fn check(params: &Params) -> Result<(), Vec<RangeError>> {
+        params.check()
+    }
+
     fn build(
         params: &Params,
         setting: &Setting,

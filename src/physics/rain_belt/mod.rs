@@ -141,6 +141,10 @@ pub fn energy_flux_equator_deg(transport_w: f64, input_w_m2: f64, smallest_w_m2:
 impl Build for RainBelt {
     type Params = Params;
 
+    fn check(params: &Params) -> Result<(), Vec<RangeError>> {
+        params.check()
+    }
+
     fn build(
         params: &Params,
         setting: &Setting,
