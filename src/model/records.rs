@@ -9,7 +9,8 @@ use crate::physics::Component;
 use crate::physics::budget::Ledger;
 use crate::series::{Record, Scale, Statistic, Variable};
 
-/// Variables that the model itself adds in front of those of the components.
+/// Variables that the model itself adds (orbit and carbon dioxide of the middle of the record, the
+/// ledger at its end) in front of those of the components.
 pub fn model_variables() -> Vec<Variable> {
     let scalar = |name, units, long_name, standard_name| Variable {
         name,
@@ -21,58 +22,48 @@ pub fn model_variables() -> Vec<Variable> {
         statistic: Statistic::Point,
     };
     vec![
-        scalar(
-            "eccentricity",
-            "1",
-            "eccentricity of the orbit, middle of the record",
-            None,
-        ),
-        scalar(
-            "obliquity",
-            "degree",
-            "obliquity of the ecliptic, middle of the record",
-            None,
-        ),
+        scalar("eccentricity", "1", "eccentricity of the orbit", None),
+        scalar("obliquity", "degree", "obliquity of the ecliptic", None),
         scalar(
             "perihelion_longitude",
             "degree",
-            "heliocentric longitude of perihelion from the moving March equinox (102.9 today; the sun is then seen 180 degrees further), middle of the record",
+            "heliocentric longitude of perihelion from the moving equinox (102.9 today)",
             None,
         ),
         scalar(
             "climatic_precession",
             "1",
-            "eccentricity times the sine of the heliocentric longitude of perihelion, middle of the record",
+            "climatic precession e sin(perihelion)",
             None,
         ),
         scalar(
             "co2",
             "1e-6",
-            "mole fraction of carbon dioxide in dry air, middle of the record",
+            "mole fraction of carbon dioxide in dry air",
             Some("mole_fraction_of_carbon_dioxide_in_air"),
         ),
         scalar(
             "co2_forcing",
             "W m-2",
-            "radiative forcing of carbon dioxide against its reference, middle of the record",
+            "radiative forcing of carbon dioxide",
             None,
         ),
         scalar(
             "heat_residual",
             "J",
-            "heat on the planet beyond what it held at the start and received since, end of the record",
+            "heat unaccounted for since the start",
             None,
         ),
         scalar(
             "heat_residual_over_throughput",
             "1",
-            "the same over all sunlight absorbed since the start, end of the record",
+            "heat unaccounted for over all sunlight absorbed since the start",
             None,
         ),
         scalar(
             "heat_change",
             "J",
-            "change of the heat on the planet since the start, end of the record",
+            "change of the heat on the planet since the start",
             None,
         ),
     ]

@@ -2,7 +2,7 @@
 //!
 //! Segments and the merged file are made by the same code, so they differ only in the number of
 //! records. Format facts: CF 1.11 as listed in [`super::schema`]; records lie in chunks of
-//! [`CHUNK`] along `age`, written whole; a restart state is a list of numbers with a dimension
+//! [`CHUNK`] along `age`, written whole; the restart state is one list of numbers with a dimension
 //! of its own, bit for bit.
 
 use std::path::Path;
@@ -10,7 +10,7 @@ use std::path::Path;
 use super::error::Result;
 use super::netcdf4::{Definition, Kind, Length, Missing, NetCdfFile, Values, VariableId, narrow};
 use super::schema::{
-    self, AGE, AGE_BOUNDS, BOUNDS, CONVENTIONS, Content, Coordinate, RESTART_PREFIX, Schema,
+    self, AGE, AGE_BOUNDS, BOUNDS, CONVENTIONS, Content, Coordinate, RESTART, RESTART_PARTS, Schema,
 };
 use crate::series::Record;
 
@@ -120,25 +120,32 @@ impl Layout {
         Ok(())
     }
 
-    /// Adds the restart state and finishes the file.
+    /// Adds the restart state, all parts in one variable, and finishes the file.
     pub(crate) fn finish(mut self, restart: &[(String, Vec<f64>)]) -> Result<()> {
-        for (component, state) in restart {
-            let name = format!("{RESTART_PREFIX}{component}");
-            let dimension = format!("{name}_index");
-            self.file
-                .dimension(&dimension, Length::Fixed(state.len()))?;
-            self.file.without_coordinate(&dimension)?;
+        if !restart.is_empty() {
+            let all: Vec<f64> = restart
+                .iter()
+                .flat_map(|(_, state)| state.iter().copied())
+                .collect();
+            let index = format!("{RESTART}_index");
+            self.file.dimension(&index, Length::Fixed(all.len()))?;
+            self.file.without_coordinate(&index)?;
             let id = self.file.define(&Definition {
-                name: &name,
+                name: RESTART,
                 kind: Kind::F64,
-                dimensions: &[&dimension],
+                dimensions: &[&index],
                 records_per_chunk: None,
                 missing: Missing::Never,
             })?;
-            let long_name = format!("state of {component} after the last record, to restart from");
-            self.file.text(Some(id), "long_name", &long_name)?;
+            let parts: Vec<String> = restart
+                .iter()
+                .map(|(name, state)| format!("{name}:{}", state.len()))
+                .collect();
+            let long_name = "state of the model after the last record, to restart from";
+            self.file.text(Some(id), "long_name", long_name)?;
             self.file.text(Some(id), "units", "1")?;
-            self.file.write(id, Values::F64(state))?;
+            self.file.text(Some(id), RESTART_PARTS, &parts.join(" "))?;
+            self.file.write(id, Values::F64(&all))?;
         }
         self.file.close()
     }

@@ -17,7 +17,7 @@ use ndarray::ArrayD;
 use super::error::{OutputError, Result, hdf5_at};
 use super::layout::{Block, Restart};
 use super::netcdf4::read_text;
-use super::schema::{AGE, AGE_BOUNDS, RESTART_PREFIX, Schema};
+use super::schema::{AGE, AGE_BOUNDS, RESTART, RESTART_PARTS, Schema};
 use crate::series::TimeSeries;
 
 /// A run file opened for reading.
@@ -65,9 +65,7 @@ impl RunFile {
     /// Names of all variables and coordinates, in the order of the file, without restart states.
     pub fn variables(&self) -> Vec<&str> {
         let names = self.names.iter().map(String::as_str);
-        names
-            .filter(|name| !name.starts_with(RESTART_PREFIX))
-            .collect()
+        names.filter(|name| *name != RESTART).collect()
     }
 
     /// Names of a variable's dimensions, slowest first.
@@ -162,13 +160,35 @@ impl RunFile {
     /// If a state cannot be read.
     pub fn restart(&self) -> Result<Vec<(String, Vec<f64>)>> {
         let mut states = Restart::new();
-        for name in &self.names {
-            if let Some(component) = name.strip_prefix(RESTART_PREFIX) {
-                let state = self.array(name)?.into_raw_vec_and_offset().0;
-                states.push((component.to_owned(), state));
-            }
+        if !self.names.iter().any(|name| name == RESTART) {
+            return Ok(states);
         }
-        Ok(states)
+        let all = self.array(RESTART)?.into_raw_vec_and_offset().0;
+        let parts = self.attribute(RESTART, RESTART_PARTS)?;
+        let mut rest = all.as_slice();
+        for part in parts.split_whitespace() {
+            let split = part.split_once(':').and_then(|(name, length)| {
+                let (state, others) = rest.split_at_checked(length.parse().ok()?)?;
+                Some((name, state, others))
+            });
+            let (name, state, others) = split.ok_or_else(|| self.broken_restart(all.len()))?;
+            states.push((name.to_owned(), state.to_vec()));
+            rest = others;
+        }
+        if rest.is_empty() {
+            Ok(states)
+        } else {
+            Err(self.broken_restart(all.len()))
+        }
+    }
+
+    fn broken_restart(&self, length: usize) -> OutputError {
+        OutputError::Shape {
+            path: self.path.clone(),
+            variable: RESTART.to_owned(),
+            shape: vec![length],
+            needed: "the sum of the lengths in its attribute `parts`",
+        }
     }
 
     /// All records, checked against the table.

@@ -32,8 +32,10 @@ pub const REQUIRED_GLOBAL: [&str; 6] = [
     "references",
     "comment",
 ];
-/// Start of the names of restart variables.
-pub const RESTART_PREFIX: &str = "restart_";
+/// Variable that holds the state to restart from.
+pub const RESTART: &str = "restart_state";
+/// Its attribute that names the parts in order, as `name:length` separated by blanks.
+pub const RESTART_PARTS: &str = "parts";
 /// Dimension and coordinate variable of the records.
 pub const AGE: &str = "age";
 /// Ends of the records' intervals.

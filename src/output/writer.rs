@@ -211,8 +211,6 @@ impl RunWriter {
         for (i, (component, state)) in restart.iter().enumerate() {
             let problem = if check::name("restart", component).is_err() {
                 "the name must begin with a letter and hold letters, digits and underscores only"
-            } else if component.ends_with("_index") {
-                "the name must not end in _index, which names dimensions"
             } else if state.is_empty() {
                 "the state is empty; leave components without state out"
             } else if restart[..i].iter().any(|(other, _)| other == component) {

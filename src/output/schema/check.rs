@@ -7,9 +7,7 @@ use std::collections::BTreeSet;
 
 use super::super::error::Result;
 use super::super::netcdf4::MAX_TEXT;
-use super::{
-    AGE, AGE_BOUNDS, AxisValues, REQUIRED_GLOBAL, RESTART_PREFIX, Schema, dimension, wrong,
-};
+use super::{AGE, AGE_BOUNDS, AxisValues, REQUIRED_GLOBAL, RESTART, Schema, dimension, wrong};
 use crate::series::{Scale, Variable};
 
 /// Units that some readers silently turn into time differences.
@@ -105,7 +103,7 @@ pub(super) fn variables(schema: &Schema) -> Result<()> {
     for variable in &schema.variables {
         let item = format!("variable `{}`", variable.name);
         name(&item, variable.name)?;
-        if !taken.insert(variable.name) || variable.name.starts_with(RESTART_PREFIX) {
+        if !taken.insert(variable.name) || variable.name.starts_with(RESTART) {
             return Err(wrong(
                 item,
                 "the name is taken or reserved; rename the variable",

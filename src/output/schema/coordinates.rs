@@ -137,7 +137,7 @@ fn cells(edges: &[f64]) -> Content {
 
 fn latitude(axes: &AxisValues, list: &mut Vec<Coordinate>) {
     let edges = &axes.latitude_edges_deg;
-    let mut attributes = latitude_attributes("latitude of the middle of the band");
+    let mut attributes = latitude_attributes("latitude");
     attributes.extend(text(&[("axis", "Y"), ("bounds", "lat_bnds")]));
     list.push(coordinate("lat", &["lat"], middles(edges), attributes));
     list.push(coordinate(
@@ -146,7 +146,7 @@ fn latitude(axes: &AxisValues, list: &mut Vec<Coordinate>) {
         cells(edges),
         Vec::new(),
     ));
-    let attributes = latitude_attributes("latitude of the edge between bands");
+    let attributes = latitude_attributes("latitude of band edges");
     let values = Content::Numbers(edges.clone());
     list.push(coordinate("lat_edge", &["lat_edge"], values, attributes));
 }
@@ -181,7 +181,7 @@ fn month(axes: &AxisValues, list: &mut Vec<Coordinate>) {
 fn depth(axes: &AxisValues, list: &mut Vec<Coordinate>) {
     let edges = &axes.depth_edges_m;
     let attributes = text(&[
-        ("long_name", "depth of the middle of the level"),
+        ("long_name", "depth"),
         ("standard_name", "depth"),
         ("units", "m"),
         ("positive", "down"),
