@@ -4,7 +4,7 @@
 //! memory). C is constant, linear in time, or a table of age and concentration interpolated
 //! linearly. Ages outside what was given are an error, never extrapolated.
 
-use crate::numerics::interpolate::linear;
+use crate::numerics::profile;
 use serde::{Deserialize, Serialize};
 
 /// Carbon dioxide in a configuration.
@@ -125,7 +125,7 @@ impl CarbonDioxide {
                 oldest,
             });
         }
-        Ok(linear(&self.age_kyr, &self.co2_ppm, age_kyr))
+        Ok(profile::value(&self.age_kyr, &self.co2_ppm, age_kyr))
     }
 }
 

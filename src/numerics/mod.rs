@@ -3,7 +3,6 @@
 //! Everything here works on plain numbers and slices; units are the caller's business.
 
 pub mod dispatch;
-pub mod interpolate;
 pub mod lanes;
 pub mod profile;
 pub mod sum;

@@ -6,6 +6,7 @@
 use super::params::{Albedo, Emitter, Params};
 use crate::grid::calendar::MonthWeights;
 use crate::numerics::lanes::{Lanes, WIDTH};
+use crate::numerics::profile;
 use crate::numerics::tridiagonal::Factored;
 use crate::physics::exchange::Surface;
 use crate::physics::{Setting, saturation::saturation_humidity, smooth_step};
@@ -314,9 +315,7 @@ fn mixed_layer_depth(p: &Params, latitude_deg: &[f64]) -> Vec<f64> {
     let m = &p.mixed_layer;
     latitude_deg
         .iter()
-        .map(|lat| {
-            m.depth_scale * crate::numerics::interpolate::linear(&m.latitude_deg, &m.depth_m, *lat)
-        })
+        .map(|lat| m.depth_scale * profile::value(&m.latitude_deg, &m.depth_m, *lat))
         .collect()
 }
 
