@@ -17,7 +17,7 @@ pub enum TableError {
         source: csv::Error,
     },
     /// A column is missing.
-    #[error("{path}: no column `{column}` among: {present}")]
+    #[error("{path}: no column `{column}` among: {present} (columns are separated by commas)")]
     Column {
         /// The file.
         path: PathBuf,
@@ -25,6 +25,14 @@ pub enum TableError {
         column: String,
         /// Columns there.
         present: String,
+    },
+    /// A column is there twice.
+    #[error("{path}: column `{column}` is there twice")]
+    Twice {
+        /// The file.
+        path: PathBuf,
+        /// The column.
+        column: String,
     },
     /// A cell is not a number.
     #[error("{path}, line {line}: `{text}` in column `{column}` is not a number")]
@@ -61,6 +69,14 @@ pub fn read_columns(path: &Path, columns: &[&str]) -> Result<Vec<Vec<f64>>, Tabl
         .from_path(path)
         .map_err(failed)?;
     let header = reader.headers().map_err(failed)?.clone();
+    for column in columns {
+        if header.iter().filter(|name| name == column).count() > 1 {
+            return Err(TableError::Twice {
+                path: path.to_owned(),
+                column: (*column).to_owned(),
+            });
+        }
+    }
     let position = |column: &&str| {
         header
             .iter()

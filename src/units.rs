@@ -11,8 +11,6 @@ pub const CELSIUS_ZERO_K: f64 = 273.15;
 pub const YEAR_DAYS: f64 = 365.2422;
 /// Length of the year, s.
 pub const YEAR_SECONDS: f64 = YEAR_DAYS * 86_400.0;
-/// One sverdrup, m3 s-1.
-pub const SVERDRUP_M3_S: f64 = 1.0e6;
 /// One petawatt, W.
 pub const PETAWATT_W: f64 = 1.0e15;
 /// Density of sea water times its specific heat, J m-3 K-1: 1025 kg m-3 x 3990 J kg-1 K-1

@@ -192,3 +192,47 @@ fn a_missing_file_or_wrong_word_is_an_error_that_names_it() {
     let help = folder.orbicline(&["run", "--help"]);
     assert!(help.ok && help.out.contains("--overwrite"), "{help:?}");
 }
+
+/// A table of carbon dioxide that rises beyond bearing in the middle of the short run.
+const DEADLY: &str = "age_kyr,co2_ppm\n9,100000\n10.05,100000\n10.06,353\n11,353\n";
+
+#[test]
+fn a_run_that_fails_leaves_an_earlier_file_as_it_was() {
+    let folder = Folder::new();
+    folder.write("deadly.csv", DEADLY);
+    for threads in ["1", "2"] {
+        folder.write("kept.nc", "an earlier result");
+        let mut words = vec!["run", "short.toml", "--out", "kept.nc", "--overwrite"];
+        words.extend(["--threads", threads]);
+        words.extend(["--set", "co2={kind=\"table\",path=\"deadly.csv\"}"]);
+        words.extend(["--set", "co2_forcing.co2_forcing_w_m2=500"]);
+        let outcome = folder.orbicline(&words);
+        outcome.says(&["energy_balance", "of the run", "kyr before 1950"]);
+        assert_eq!(
+            folder.read("kept.nc"),
+            b"an earlier result",
+            "{threads} threads"
+        );
+    }
+}
+
+#[test]
+fn steps_too_long_for_a_cold_planet_are_refused_and_not_believed() {
+    let folder = Folder::new();
+    let edits = [
+        "co2.co2_ppm=20",
+        "grid.steps_per_year=32",
+        "time.spin_up.seasonal_yr=60",
+    ];
+    let mut words = vec!["short.toml"];
+    words.extend(edits.iter().flat_map(|edit| ["--set", *edit]));
+    let outcome = refused(&folder, &words);
+    outcome.says(&["energy_balance", "spin-up", "grid.steps_per_year"]);
+}
+
+#[test]
+fn an_age_beyond_the_orbit_is_told_where_it_was_given() {
+    let folder = Folder::new();
+    let outcome = refused(&folder, &["short.toml", "--set", "time.start_kyr=1200"]);
+    outcome.says(&["--set time.start_kyr=1200: ", "within 1000 kyr"]);
+}

@@ -312,9 +312,42 @@ fn records_that_do_not_fit_are_errors() {
         .push(&record(2, size), &[("a b".to_owned(), vec![1.0])])
         .unwrap_err();
     assert!(matches!(error, OutputError::Restart { .. }), "{error}");
+    drop(writer);
     let empty = RunWriter::create(&path, schema(), Overwrite::Refuse).unwrap();
     assert!(matches!(
         empty.finish().unwrap_err(),
         OutputError::Empty { .. }
     ));
+}
+
+#[test]
+fn an_output_in_use_is_refused_to_a_second_writer() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("run.nc");
+    let first = RunWriter::create(&path, schema(), Overwrite::Replace).unwrap();
+    let second = RunWriter::create(&path, schema(), Overwrite::Replace).unwrap_err();
+    assert!(
+        second.to_string().contains("another run is writing it"),
+        "{second}"
+    );
+    drop(first);
+    RunWriter::create(&path, schema(), Overwrite::Replace).unwrap();
+    assert_eq!(
+        std::fs::read_dir(folder.path()).unwrap().count(),
+        0,
+        "the lock is gone"
+    );
+}
+
+#[cfg(unix)]
+#[test]
+fn a_link_is_not_replaced() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("link.nc");
+    std::os::unix::fs::symlink(folder.path().join("elsewhere.nc"), &path).unwrap();
+    let refused = RunWriter::create(&path, schema(), Overwrite::Replace).unwrap_err();
+    assert!(
+        refused.to_string().contains("not a regular file"),
+        "{refused}"
+    );
 }

@@ -37,6 +37,8 @@ pub fn main() -> ExitCode {
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,
+        // Whoever read the output has seen enough; the file is complete.
+        Err(CliError::Print(e)) if e.kind() == std::io::ErrorKind::BrokenPipe => ExitCode::SUCCESS,
         Err(error) => {
             // Nothing can be done when even standard error is closed.
             let _ = writeln!(std::io::stderr(), "error: {error}");

@@ -70,11 +70,22 @@ pub(super) fn run(arguments: &RunArguments, words: &[String]) -> Result<(), CliE
 fn print(file: &Path, summary: &Summary) -> Result<(), std::io::Error> {
     let mut out = std::io::stdout().lock();
     let [old, young] = summary.ages_kyr;
+    let [least, most] = summary.co2_ppm;
+    let records = if summary.records == 1 {
+        "record"
+    } else {
+        "records"
+    };
     writeln!(out, "{}", file.display())?;
     writeln!(
         out,
-        "{} records, {old:.1} to {young:.1} kyr before 1950; M = {} (years of orbit and ocean column per seasonal year)",
-        summary.records, summary.slow_years
+        "{} {records}, {old:.3} to {young:.3} kyr before 1950; carbon dioxide {least:.0} to {most:.0} ppm",
+        summary.records
+    )?;
+    writeln!(
+        out,
+        "M = {} (years of orbit and ocean column per seasonal year)",
+        summary.slow_years
     )?;
     writeln!(
         out,
@@ -82,22 +93,21 @@ fn print(file: &Path, summary: &Summary) -> Result<(), std::io::Error> {
         summary.heat_residual
     )?;
     writeln!(out)?;
-    writeln!(
-        out,
-        "{:<33} {:>9} {:>19} {:>12} {:>14}",
-        "", "mean", "range", "per degree", "Dec to June"
+    row(
+        &mut out,
+        ["", "mean", "range", "per degree", "Dec to June", ""],
     )?;
-    writeln!(
-        out,
-        "{:<33} {:>9} {:>19} {:>12} {:>14}",
-        "", "", "", "of tilt", "perihelion*"
-    )?;
+    row(&mut out, ["", "", "", "of tilt*", "perihelion*", ""])?;
     for figure in &summary.figures {
         line(&mut out, figure)?;
     }
     writeln!(
         out,
-        "* at eccentricity 0.05; slopes of a least-squares fit on tilt, precession and eccentricity"
+        "* slopes of a least-squares fit on tilt, precession (at eccentricity 0.05) and eccentricity;"
+    )?;
+    writeln!(
+        out,
+        "  told for runs of two tilt cycles or more with constant carbon dioxide"
     )?;
     writeln!(out)?;
     writeln!(out, "Open it in Python:")?;
@@ -112,14 +122,26 @@ fn print(file: &Path, summary: &Summary) -> Result<(), std::io::Error> {
 fn line(out: &mut impl Write, figure: &KeyFigure) -> Result<(), std::io::Error> {
     let signed = |value: Option<f64>| value.map_or_else(|| "-".to_owned(), |v| format!("{v:+.3}"));
     let [low, high] = figure.range;
-    writeln!(
-        out,
-        "{:<33} {:>9.3} {:>19} {:>12} {:>14}  {}",
-        figure.name,
-        figure.mean,
-        format!("{low:.3} to {high:.3}"),
+    let (mean, range) = if figure.mean.is_finite() {
+        (
+            format!("{:.3}", figure.mean),
+            format!("{low:.3} to {high:.3}"),
+        )
+    } else {
+        ("none".to_owned(), "-".to_owned())
+    };
+    let (tilt, perihelion) = (
         signed(figure.per_degree_tilt),
         signed(figure.december_to_june),
-        figure.unit
+    );
+    row(
+        out,
+        [figure.name, &mean, &range, &tilt, &perihelion, figure.unit],
     )
+}
+
+fn row(out: &mut impl Write, cells: [&str; 6]) -> Result<(), std::io::Error> {
+    let [name, mean, range, tilt, perihelion, unit] = cells;
+    let text = format!("{name:<33} {mean:>9} {range:>21} {tilt:>11} {perihelion:>12}  {unit}");
+    writeln!(out, "{}", text.trim_end())
 }

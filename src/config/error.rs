@@ -77,7 +77,7 @@ pub enum ConfigError {
         chain: Vec<PathBuf>,
     },
     /// An edit without `=` or without a key.
-    #[error("--set {assignment}: expected `key.path=value`, such as `--set time.years=500`")]
+    #[error("--set {assignment}: expected `key.path=value`, such as `--set time.end_kyr=100`")]
     SetForm {
         /// The edit.
         assignment: String,

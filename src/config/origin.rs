@@ -109,8 +109,16 @@ impl Origins {
         self.places.get(path)
     }
 
-    /// Where this key, or else the nearest table above it, was written.
+    /// Where this key, or else the nearest table above it, was written. For a table, an edit of the
+    /// command line below it is the likeliest cause and wins.
     pub(super) fn nearest(&self, path: &str) -> Option<&Place> {
+        let below = format!("{path}.");
+        let edited = |(key, place): &(&String, &Place)| {
+            key.starts_with(&below) && matches!(place, Place::CommandLine { .. })
+        };
+        if let Some((_, place)) = self.places.iter().find(edited) {
+            return Some(place);
+        }
         let mut path = path;
         loop {
             if let Some(place) = self.places.get(path) {

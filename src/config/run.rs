@@ -22,6 +22,10 @@ use std::path::{Path, PathBuf};
 /// nothing is gained.
 const STEPS_LIMIT: (usize, usize) = (24, 5000);
 
+/// Most latitude bands of a run: with 360, 72 steps a year break down in the narrow polar bands
+/// (measured; 288 are fine).
+const MOST_BANDS: usize = 288;
+
 /// Everything that defines a run.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
@@ -99,6 +103,14 @@ pub enum Fault {
     /// The table of carbon dioxide.
     #[error("co2.path: {0}")]
     Table(TableError),
+    /// A part that needs another.
+    #[error("{key} needs {needs}: add its table, or `extends` a file that has it")]
+    Needs {
+        /// The part.
+        key: &'static str,
+        /// What it needs.
+        needs: &'static str,
+    },
     /// Insolation bands or months.
     #[error("grid: {0}")]
     Grid(String),
@@ -195,8 +207,18 @@ impl Experiment {
             Fault::Bands(_) => "grid.bands",
             Fault::Grid(_) => "grid",
             Fault::Plan(PlanError::Backwards { .. }) => "time.start_kyr",
-            Fault::Plan(PlanError::Zero { key }) => key,
+            Fault::Plan(PlanError::Zero { key } | PlanError::Pace { key, .. })
+            | Fault::Needs { key, .. } => key,
             Fault::Plan(PlanError::Multiple { .. }) => "time.record_every_yr",
+            Fault::Orbit(OrbitError::AgeOutOfRange { age_kyr, .. })
+            | Fault::CarbonDioxide(CarbonDioxideError::OutOfRange { age_kyr, .. }) => {
+                let started = age_kyr.to_bits() == self.run.time.start_kyr.to_bits();
+                if started {
+                    "time.start_kyr"
+                } else {
+                    "time.end_kyr"
+                }
+            }
             Fault::Orbit(_) => "orbit",
             Fault::CarbonDioxide(CarbonDioxideError::NotPositive { age_kyr: None, .. }) => {
                 "co2.co2_ppm"
@@ -237,6 +259,7 @@ impl RunSpec {
         let mut faults = Faults(Vec::new());
         let plan = faults.take_all(Plan::new(&self.time), Fault::Plan);
         faults.take_all(self.check_numbers(), Fault::Range);
+        faults.0.extend(self.check_needs());
         let orbit = faults.take_all(Orbit::build(&self.orbit), Fault::Orbit);
         let co2 = self.carbon_dioxide(folder, &mut faults);
         self.check_ages(orbit.as_ref(), co2.as_ref(), &mut faults);
@@ -258,6 +281,7 @@ impl RunSpec {
             refresh_yr: self.insolation.refresh_every_yr,
             co2_reference_ppm: self.co2_forcing.co2_reference_ppm,
             co2_forcing_w_m2: self.co2_forcing.co2_forcing_w_m2,
+            end_kyr: self.time.end_kyr,
         };
         let edges = setting.surface.bands.edge_sine();
         let drive = Drive::new(orbit, co2, numbers, edges, setting.steps_per_year());
@@ -273,9 +297,13 @@ impl RunSpec {
 
     fn check_numbers(&self) -> Result<(), Vec<RangeError>> {
         let mut r = Ranges::default();
-        r.positive(
+        let sun = self.insolation.solar_constant_w_m2;
+        let limit = "must lie between 500 and 3000 W m-2";
+        r.require(
             "insolation.solar_constant_w_m2",
-            self.insolation.solar_constant_w_m2,
+            sun,
+            (500.0..=3000.0).contains(&sun),
+            limit,
         );
         let refresh = self.insolation.refresh_every_yr;
         let limit = "must lie between 1 and 1000 years";
@@ -293,6 +321,9 @@ impl RunSpec {
             "co2_forcing.co2_forcing_w_m2",
             self.co2_forcing.co2_forcing_w_m2,
         );
+        let bands = self.grid.bands;
+        let limit = "more than 288 bands need steps shorter than a day near the poles";
+        r.require("grid.bands", bands as f64, bands <= MOST_BANDS, limit);
         let steps = self.grid.steps_per_year;
         let usable = (STEPS_LIMIT.0..=STEPS_LIMIT.1).contains(&steps);
         r.require(
@@ -301,15 +332,27 @@ impl RunSpec {
             usable,
             "must lie between 24 and 5000",
         );
-        let needed =
-            "the energy balance must be there: add its table or `extends` a file that has it";
-        r.require(
-            "physics.energy_balance",
-            f64::NAN,
-            self.physics.energy_balance.is_some(),
-            needed,
-        );
         r.finish()
+    }
+
+    fn check_needs(&self) -> Vec<Fault> {
+        let p = &self.physics;
+        let wanted = [
+            (
+                "physics",
+                "physics.energy_balance",
+                p.energy_balance.is_some(),
+            ),
+            (
+                "physics.equatorial_pacific",
+                "physics.ocean_column",
+                p.equatorial_pacific.is_none() || p.ocean_column.is_some(),
+            ),
+        ];
+        let missing = wanted.into_iter().filter(|(.., there)| !there);
+        missing
+            .map(|(key, needs, _)| Fault::Needs { key, needs })
+            .collect()
     }
 
     fn carbon_dioxide(&self, folder: &Path, faults: &mut Faults) -> Option<CarbonDioxide> {

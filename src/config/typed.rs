@@ -58,8 +58,24 @@ fn explain(table: &Table, origins: &Origins, path: &str, message: &str) -> Confi
     ConfigError::Value {
         place: place(origins, &path),
         key: path,
-        message,
+        message: plain(&message),
     }
+}
+
+/// The reader's message in words of the user instead of the program's types.
+fn plain(message: &str) -> String {
+    let Some((found, expected)) = message.split_once(", expected ") else {
+        return message.to_owned();
+    };
+    let expected = match expected {
+        "f64" => "a number",
+        "u32" | "u64" | "usize" => "a whole number, not negative",
+        tagged if tagged.starts_with("internally tagged enum") => {
+            "a table with a `kind`, such as {kind=\"...\"} (in quotes on the command line)"
+        }
+        other => other,
+    };
+    format!("{found}, expected {expected}")
 }
 
 /// The value that a message about a whole table means. For a table with a `kind` the reader names

@@ -22,27 +22,39 @@ pub enum Sink {
     Background(Background),
 }
 
-/// A writer in a thread of its own.
+/// What the writer's thread is told.
+enum Message {
+    /// One more record, and the state behind it.
+    Record(Box<(Record, Restart)>),
+    /// The run is complete: merge the segments into the file.
+    Complete,
+}
+
+/// A writer in a thread of its own. Only when told that the run is complete does it touch the
+/// output; a run that fails leaves its segments and the output as it was.
 pub struct Background {
-    records: SyncSender<(Record, Restart)>,
-    writer: JoinHandle<Result<PathBuf, OutputError>>,
+    messages: SyncSender<Message>,
+    writer: JoinHandle<Result<Option<PathBuf>, OutputError>>,
 }
 
 impl Background {
     fn new(mut writer: RunWriter) -> Self {
-        let (records, incoming) = sync_channel::<(Record, Restart)>(WAITING);
+        let (messages, incoming) = sync_channel(WAITING);
         let writer = std::thread::spawn(move || {
-            for (record, restart) in incoming {
-                writer.push(&record, &restart.0)?;
+            for message in incoming {
+                match message {
+                    Message::Record(both) => writer.push(&both.0, &both.1.0)?,
+                    Message::Complete => return writer.finish().map(Some),
+                }
             }
-            writer.finish()
+            Ok(None)
         });
-        Self { records, writer }
+        Self { messages, writer }
     }
 
-    /// Waits for the thread and returns what it ended with.
-    fn join(self) -> Result<PathBuf, OutputError> {
-        drop(self.records);
+    /// Waits for the thread and returns what it ended with: the path of a completed file.
+    fn join(self) -> Result<Option<PathBuf>, OutputError> {
+        drop(self.messages);
         self.writer
             .join()
             .unwrap_or_else(|panic| std::panic::resume_unwind(panic))
@@ -67,10 +79,15 @@ impl Sink {
     pub fn push(&mut self, record: &Record, restart: Restart) -> Result<Delivery, OutputError> {
         match self {
             Self::Direct(writer) => writer.push(record, &restart.0).map(|()| Delivery::Taken),
-            Self::Background(thread) => Ok(match thread.records.send((record.clone(), restart)) {
-                Ok(()) => Delivery::Taken,
-                Err(_) => Delivery::WriterGone,
-            }),
+            Self::Background(thread) => Ok(
+                match thread
+                    .messages
+                    .send(Message::Record(Box::new((record.clone(), restart))))
+                {
+                    Ok(()) => Delivery::Taken,
+                    Err(_) => Delivery::WriterGone,
+                },
+            ),
         }
     }
 
@@ -78,10 +95,25 @@ impl Sink {
     ///
     /// # Errors
     /// When it could not be written.
-    pub fn finish(self) -> Result<PathBuf, OutputError> {
+    pub fn finish(self) -> Result<Option<PathBuf>, OutputError> {
         match self {
-            Self::Direct(writer) => writer.finish(),
-            Self::Background(thread) => thread.join(),
+            Self::Direct(writer) => writer.finish().map(Some),
+            Self::Background(thread) => {
+                // A writer that is gone gives its own error below.
+                let _ = thread.messages.send(Message::Complete);
+                thread.join()
+            }
+        }
+    }
+
+    /// Gives up: what is in segments stays, the output is left as it was.
+    ///
+    /// # Errors
+    /// When a record handed over before could not be written.
+    pub fn give_up(self) -> Result<(), OutputError> {
+        match self {
+            Self::Direct(_) => Ok(()),
+            Self::Background(thread) => thread.join().map(|_| ()),
         }
     }
 }

@@ -85,17 +85,17 @@ pub fn run(
     match outcome {
         Ok(()) => {
             progress.completing();
-            Ok(sink.finish()?)
+            let path = sink.finish()?;
+            path.ok_or_else(|| SingleError::Run("the writer stopped before the end".to_owned()))
         }
-        Err(RunError::Observer(Stopped::Writer(error))) => Err(error.into()),
-        Err(RunError::Observer(Stopped::WriterGone)) => match sink.finish() {
-            Err(error) => Err(error.into()),
-            Ok(path) => Err(SingleError::Run(format!(
-                "{}: the writer stopped early",
-                path.display()
-            ))),
-        },
-        Err(other) => Err(told(other)),
+        Err(error) => {
+            // The writer's own error, if it has one, is the cause and not the consequence.
+            sink.give_up()?;
+            Err(match error {
+                RunError::Observer(Stopped::Writer(error)) => error.into(),
+                other => told(other),
+            })
+        }
     }
 }
 

@@ -1,16 +1,23 @@
 //! Key figures of a finished run, read back from its file.
 //!
 //! The response of a quantity to tilt and to precession is the least-squares slope on obliquity,
-//! climatic precession and eccentricity together. It describes this run; it is not a test.
+//! climatic precession and eccentricity together, over the whole run. It describes this run; it is
+//! not a test. It is told only where it can mean something: carbon dioxide constant, at least two
+//! cycles of obliquity, and the element in question truly varying.
 
 use crate::analysis::regression;
 use crate::output::OutputError;
 use crate::output::reader::RunFile;
 use std::path::Path;
 
-/// Least range of obliquity (degrees) and of climatic precession for which a response is told:
-/// a quarter of what a whole cycle brings. Below it a slope would extrapolate.
-const LEAST_RANGE: [f64; 2] = [0.5, 0.01];
+/// Least range of obliquity (degrees) for which a response to it is told: a quarter of what a
+/// cycle brings.
+const LEAST_OBLIQUITY_DEG: f64 = 0.5;
+/// The same for climatic precession, which must also pass through zero: with perihelion held it
+/// only follows the eccentricity.
+const LEAST_PRECESSION: f64 = 0.02;
+/// Shortest run for which responses are told, kyr: two cycles of obliquity.
+const LEAST_SPAN_KYR: f64 = 82.0;
 
 /// Precession in the responses: from perihelion in June to perihelion in December at e = 0.05.
 const PRECESSION_SWING: f64 = 0.1;
@@ -39,6 +46,8 @@ pub struct Summary {
     pub records: usize,
     /// Oldest and youngest age, kyr before 1950.
     pub ages_kyr: [f64; 2],
+    /// Smallest and largest carbon dioxide, ppm.
+    pub co2_ppm: [f64; 2],
     /// Years of orbit and column in one seasonal year.
     pub slow_years: String,
     /// Largest residual of the heat ledger over its throughput.
@@ -94,6 +103,17 @@ pub fn summarise(path: &Path) -> Result<Summary, OutputError> {
     let precession = file.series("climatic_precession")?.values;
     let eccentricity = file.series("eccentricity")?.values;
     let residual = file.series("heat_residual_over_throughput")?.values;
+    let co2 = extremes(&file.series("co2")?.values);
+    let ages = ends(&obliquity.age_kyr);
+    let orbit = Orbit {
+        told: Told {
+            co2: co2[1] - co2[0] < 1e-6 * co2[1],
+            span: ages[0] - ages[1] >= LEAST_SPAN_KYR,
+        },
+        obliquity: obliquity.values,
+        precession,
+        eccentricity,
+    };
     let present = file.variables();
     let mut figures = Vec::new();
     for (variable, name, unit, factor) in FIGURES {
@@ -104,46 +124,73 @@ pub fn summarise(path: &Path) -> Result<Summary, OutputError> {
                 .iter()
                 .map(|v| v * factor)
                 .collect();
-            figures.push(figure(
-                (name, unit),
-                &values,
-                [&obliquity.values, &precession, &eccentricity],
-            ));
+            figures.push(figure((name, unit), &values, &orbit));
         }
     }
-    let ends = |ages: &[f64]| [ages.first(), ages.last()].map(|a| a.copied().unwrap_or(f64::NAN));
     Ok(Summary {
         records: obliquity.age_kyr.len(),
-        ages_kyr: ends(&obliquity.age_kyr),
+        ages_kyr: ages,
+        co2_ppm: co2,
         slow_years: file.global("slow_years_per_seasonal_year")?,
         heat_residual: residual.iter().fold(0.0, |a: f64, b| a.max(b.abs())),
         figures,
     })
 }
 
-fn figure(
-    (name, unit): (&'static str, &'static str),
-    values: &[f64],
-    orbit: [&[f64]; 3],
-) -> KeyFigure {
+/// The orbit of a run, and whether responses to it are told.
+struct Orbit {
+    told: Told,
+    obliquity: Vec<f64>,
+    precession: Vec<f64>,
+    eccentricity: Vec<f64>,
+}
+
+/// What a response needs.
+#[derive(Clone, Copy)]
+struct Told {
+    /// Carbon dioxide is constant.
+    co2: bool,
+    /// The run is long enough.
+    span: bool,
+}
+
+impl Orbit {
+    fn obliquity_told(&self) -> bool {
+        let [low, high] = extremes(&self.obliquity);
+        self.told.co2 && self.told.span && high - low >= LEAST_OBLIQUITY_DEG
+    }
+
+    fn precession_told(&self) -> bool {
+        let [low, high] = extremes(&self.precession);
+        let turns = low < 0.0 && high > 0.0;
+        self.told.co2 && self.told.span && turns && high - low >= LEAST_PRECESSION
+    }
+}
+
+fn figure((name, unit): (&'static str, &'static str), values: &[f64], orbit: &Orbit) -> KeyFigure {
     let finite: Vec<f64> = values.iter().copied().filter(|v| v.is_finite()).collect();
-    let range = extremes(&finite);
+    let elements: [&[f64]; 3] = [&orbit.obliquity, &orbit.precession, &orbit.eccentricity];
     // Too few records for a fit is not a fault of the run: there is then no response to tell.
-    let fit = regression::fit(values, &orbit).ok();
+    let fit = regression::fit(values, &elements).ok();
     let slope = |k: usize, swing: f64| {
-        let [low, high] = extremes(orbit[k]);
-        let fit = fit.as_ref().filter(|_| high - low >= LEAST_RANGE[k])?;
-        Some(fit.slopes[k] * swing).filter(|v| v.is_finite())
+        fit.as_ref()
+            .map(|fit| fit.slopes[k] * swing)
+            .filter(|v| v.is_finite())
     };
     KeyFigure {
         name,
         unit,
         mean: finite.iter().sum::<f64>() / finite.len() as f64,
-        range,
-        per_degree_tilt: slope(0, 1.0),
+        range: extremes(&finite),
+        per_degree_tilt: slope(0, 1.0).filter(|_| orbit.obliquity_told()),
         // Climatic precession is +e when perihelion falls in December and -e in June.
-        december_to_june: slope(1, -PRECESSION_SWING),
+        december_to_june: slope(1, -PRECESSION_SWING).filter(|_| orbit.precession_told()),
     }
+}
+
+/// First and last of some ages.
+fn ends(ages: &[f64]) -> [f64; 2] {
+    [ages.first(), ages.last()].map(|age| age.copied().unwrap_or(f64::NAN))
 }
 
 fn extremes(values: &[f64]) -> [f64; 2] {

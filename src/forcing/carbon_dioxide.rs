@@ -7,6 +7,10 @@
 use crate::numerics::profile;
 use serde::{Deserialize, Serialize};
 
+/// Concentrations that can be meant, ppm: below are fractions given by mistake, above is no
+/// atmosphere that a logarithmic forcing describes.
+const CONCENTRATIONS_PPM: std::ops::RangeInclusive<f64> = 1.0..=1.0e5;
+
 /// Carbon dioxide in a configuration.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(tag = "kind", rename_all = "snake_case", deny_unknown_fields)]
@@ -39,7 +43,7 @@ pub enum CarbonDioxideSpec {
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum CarbonDioxideError {
     /// A concentration that is not positive.
-    #[error("co2: {value} ppm{} is not a concentration: it must be positive", at(*age_kyr))]
+    #[error("co2: {value} ppm{} is not a concentration in ppm: it must lie between 1 and 100000", at(*age_kyr))]
     NotPositive {
         /// The value.
         value: f64,
@@ -130,7 +134,7 @@ impl CarbonDioxide {
 }
 
 fn check(age_kyr: Option<f64>, value: f64) -> Result<(), CarbonDioxideError> {
-    if value > 0.0 && value.is_finite() {
+    if CONCENTRATIONS_PPM.contains(&value) {
         return Ok(());
     }
     Err(CarbonDioxideError::NotPositive { value, age_kyr })

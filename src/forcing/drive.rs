@@ -21,6 +21,7 @@ pub struct Drive {
     co2_reference_ppm: f64,
     co2_forcing_w_m2: f64,
     refresh_yr: f64,
+    end_kyr: f64,
     table: InsolationTable,
     table_interval: Option<i64>,
     table_orbit: Option<Elements>,
@@ -37,6 +38,8 @@ pub struct DriveNumbers {
     pub co2_reference_ppm: f64,
     /// k in k ln(C/C_ref), W m-2.
     pub co2_forcing_w_m2: f64,
+    /// Youngest age of the run, kyr before 1950: no table looks beyond it.
+    pub end_kyr: f64,
 }
 
 /// Why there is no forcing for an age.
@@ -69,6 +72,7 @@ impl Drive {
             co2_reference_ppm: numbers.co2_reference_ppm,
             co2_forcing_w_m2: numbers.co2_forcing_w_m2,
             refresh_yr: numbers.refresh_yr,
+            end_kyr: numbers.end_kyr,
             table: InsolationTable::new(edge_sine, steps)?,
             table_interval: None,
             table_orbit: None,
@@ -118,7 +122,9 @@ impl Drive {
             Some(orbit) if self.table_interval == Some(interval) => orbit,
             _ => {
                 let middle_yr = (interval as f64 + 0.5) * self.refresh_yr;
-                let orbit = self.orbit.at(start_kyr - middle_yr / 1000.0)?;
+                let orbit = self
+                    .orbit
+                    .at((start_kyr - middle_yr / 1000.0).max(self.end_kyr))?;
                 self.renew(orbit);
                 self.table_interval = Some(interval);
                 orbit

@@ -62,7 +62,11 @@ impl LatitudeBands {
         let fraction = |j: usize| 2.0 * j as f64 / bands as f64 - 1.0;
         let (edge_sine, edge_deg): (Vec<f64>, Vec<f64>) = (0..=bands)
             .map(|j| match spacing {
-                Spacing::EqualLatitude => ((fraction(j) * PI / 2.0).sin(), fraction(j) * 90.0),
+                Spacing::EqualLatitude => {
+                    // Degrees first: 5-degree bands then have exact edges.
+                    let degrees = 180.0 * j as f64 / bands as f64 - 90.0;
+                    (degrees.to_radians().sin(), degrees)
+                }
                 Spacing::EqualSine => (fraction(j), fraction(j).asin().to_degrees()),
             })
             .unzip();

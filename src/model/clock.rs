@@ -18,6 +18,10 @@ pub struct TimeSpec {
     pub spin_up: SpinUp,
 }
 
+/// Most years that slow components may advance in one seasonal year; beyond some hundred the
+/// coupling by annual means is wrong anyway.
+const LARGEST_PACE_YR: f64 = 1000.0;
+
 /// Years at the start with the forcing held; not part of the run.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
@@ -46,6 +50,14 @@ pub enum PlanError {
     Zero {
         /// The key.
         key: &'static str,
+    },
+    /// A pace that cannot be meant.
+    #[error("{key} = {value} is out of range: must lie between 1 and 1000 years")]
+    Pace {
+        /// The key.
+        key: &'static str,
+        /// Its value.
+        value: f64,
     },
     /// Lengths that do not divide.
     #[error("{what} ({long} years) must be a multiple of {unit} ({short} years)")]
@@ -87,7 +99,7 @@ impl Plan {
             ("time.slow_years_per_seasonal_year", f64::from(slow)),
             (
                 "time.spin_up.seasonal_yr + settling_yr",
-                f64::from(spec.spin_up.seasonal_yr + spec.spin_up.settling_yr),
+                f64::from(spec.spin_up.seasonal_yr) + f64::from(spec.spin_up.settling_yr),
             ),
             (
                 "time.spin_up.slow_years_per_seasonal_year",
@@ -96,6 +108,17 @@ impl Plan {
         ] {
             if !(value >= 1.0 && value.is_finite()) {
                 wrong.push(PlanError::Zero { key });
+            }
+        }
+        for (key, value) in [
+            ("time.slow_years_per_seasonal_year", f64::from(slow)),
+            (
+                "time.spin_up.slow_years_per_seasonal_year",
+                spec.spin_up.slow_years_per_seasonal_year,
+            ),
+        ] {
+            if value > LARGEST_PACE_YR {
+                wrong.push(PlanError::Pace { key, value });
             }
         }
         if !wrong.is_empty() {

@@ -27,13 +27,14 @@ pub enum RunError<E: std::error::Error + 'static> {
     Drive(#[from] DriveError),
     /// The physics broke down.
     #[error(
-        "at {age_kyr:.3} kyr before 1950 (year {year} of the run): {source}; smaller steps (grid.steps_per_year) or the change that led here are the first things to look at"
+        "at {age_kyr:.3} kyr before 1950 ({}): {source}; look first at the change that led here and at grid.steps_per_year",
+        when(*year)
     )]
     Physics {
         /// Age, kyr before 1950.
         age_kyr: f64,
-        /// Years since the start of the run.
-        year: f64,
+        /// Years since the start of the run; none while the forcing is held (spin-up).
+        year: Option<f64>,
         /// What broke.
         source: PhysicsError,
     },
@@ -105,7 +106,7 @@ impl Model {
         )
         .map_err(|source| RunError::Physics {
             age_kyr,
-            year: 0.0,
+            year: None,
             source,
         })
     }
@@ -122,9 +123,12 @@ impl Model {
         for _ in 0..spin_up.seasonal_yr {
             self.held_year(age_kyr, spin_up.slow_years_per_seasonal_year)?;
         }
-        // Years at the pace of the run let what was accelerated settle.
+        // Years with nothing accelerated let what was accelerated settle.
         for _ in 0..spin_up.settling_yr {
             self.held_year(age_kyr, 1.0)?;
+        }
+        for component in &mut self.components {
+            component.begin_run();
         }
         Ok(())
     }
@@ -168,7 +172,7 @@ impl Model {
             )
             .map_err(|source| RunError::Physics {
                 age_kyr,
-                year: passed,
+                year: Some(passed),
                 source,
             })?;
             records.add(&self.components);
@@ -219,6 +223,13 @@ impl Model {
             Ledger::restored(Quantity::Energy, part("ledger")).ok_or_else(|| missing("ledger"))?;
         Ok(())
     }
+}
+
+fn when(year: Option<f64>) -> String {
+    year.map_or_else(
+        || "spin-up".to_owned(),
+        |year| format!("year {year} of the run"),
+    )
 }
 
 fn missing<E: std::error::Error>(what: &str) -> RunError<E> {

@@ -45,25 +45,25 @@ pub fn model_variables() -> Vec<Variable> {
         scalar(
             "co2_forcing",
             "W m-2",
-            "radiative forcing of carbon dioxide",
+            "radiative forcing of carbon dioxide against co2_forcing.co2_reference_ppm of the configuration",
             None,
         ),
         scalar(
             "heat_residual",
             "J",
-            "heat unaccounted for since the start",
+            "heat unaccounted for since the end of the first year",
             None,
         ),
         scalar(
             "heat_residual_over_throughput",
             "1",
-            "heat unaccounted for over all sunlight absorbed since the start",
+            "heat unaccounted for over all sunlight absorbed since then",
             None,
         ),
         scalar(
             "heat_change",
             "J",
-            "change of the heat on the planet since the start",
+            "change of the heat on the planet since the end of the first year",
             None,
         ),
     ]

@@ -10,7 +10,7 @@ use std::path::{Path, PathBuf};
 #[derive(Debug, thiserror::Error)]
 pub enum OutputError {
     /// The output exists and overwriting was not asked for.
-    #[error("{path} exists already: choose another output or allow overwriting")]
+    #[error("{path} exists already: choose another output or allow overwriting (--overwrite)")]
     Exists {
         /// The output.
         path: PathBuf,

@@ -5,7 +5,7 @@
 //! a file with the final name is complete: a killed run loses at most the records since its last
 //! segment. Each segment is a NetCDF-4 file of its own, with the restart state.
 
-use std::fs::{self, File, OpenOptions};
+use std::fs::{self, File, OpenOptions, TryLockError};
 use std::path::{Path, PathBuf};
 
 use super::error::{OutputError, Result, io_at};
@@ -103,10 +103,42 @@ pub(crate) fn prepare(output: &Path) -> Result<()> {
     }
     let folder = folder(output);
     fs::create_dir_all(folder).map_err(io_at(folder, "create the folder"))?;
-    let probe = suffixed(output, ".probe");
-    let created = OpenOptions::new().write(true).create_new(true).open(&probe);
-    drop(created.map_err(io_at(&probe, "create a file in the output folder:"))?);
-    fs::remove_file(&probe).map_err(io_at(&probe, "delete"))
+    Ok(())
+}
+
+/// Holds an output for one run. The lock is the system's, so it ends with the process; the empty
+/// file that carries it may stay behind after a kill and means nothing then.
+#[derive(Debug)]
+pub(crate) struct Lock {
+    file: File,
+    path: PathBuf,
+}
+
+/// Takes the output, which also shows before hours of computing that files can be created there.
+pub(crate) fn lock(output: &Path) -> Result<Lock> {
+    let path = suffixed(output, ".lock");
+    let file = OpenOptions::new()
+        .write(true)
+        .create(true)
+        .truncate(false)
+        .open(&path);
+    let file = file.map_err(io_at(&path, "create a file in the output folder:"))?;
+    match file.try_lock() {
+        Ok(()) => Ok(Lock { file, path }),
+        Err(TryLockError::WouldBlock) => Err(OutputError::BadPath {
+            path: output.to_owned(),
+            reason: "another run is writing it; wait for it or choose another output",
+        }),
+        Err(TryLockError::Error(error)) => Err(io_at(&path, "lock")(error)),
+    }
+}
+
+impl Drop for Lock {
+    fn drop(&mut self) {
+        // An empty file that nobody locks means nothing, so failing to delete it does no harm.
+        let _ = fs::remove_file(&self.path);
+        let _ = self.file.unlock();
+    }
 }
 
 fn suffixed(output: &Path, suffix: &str) -> PathBuf {

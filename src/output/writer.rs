@@ -45,6 +45,8 @@ pub struct RunWriter {
     unsaved: bool,
     restart: Restart,
     segments: usize,
+    /// Keeps other runs away from this output for as long as the writer lives.
+    _lock: segments::Lock,
 }
 
 impl RunWriter {
@@ -56,6 +58,7 @@ impl RunWriter {
     pub fn create(path: &Path, schema: Schema, overwrite: Overwrite) -> Result<Self> {
         schema.check()?;
         segments::prepare(path)?;
+        let lock = segments::lock(path)?;
         refuse_existing(path, overwrite)?;
         let stale = segments::leftovers(path)?;
         if let (Some(first), Overwrite::Refuse) = (stale.first(), overwrite) {
@@ -76,6 +79,7 @@ impl RunWriter {
             unsaved: false,
             restart: Restart::new(),
             segments: 0,
+            _lock: lock,
         })
     }
 
@@ -230,6 +234,12 @@ impl RunWriter {
 }
 
 fn refuse_existing(path: &Path, overwrite: Overwrite) -> Result<()> {
+    if path.symlink_metadata().is_ok_and(|found| !found.is_file()) {
+        return Err(OutputError::BadPath {
+            path: path.to_owned(),
+            reason: "it is not a regular file (a link or a device); name a file",
+        });
+    }
     if overwrite == Overwrite::Refuse && path.symlink_metadata().is_ok() {
         return Err(OutputError::Exists {
             path: path.to_owned(),

@@ -48,6 +48,36 @@ pub enum PhysicsError {
         /// Band or level.
         place: String,
     },
+    /// A state left the range in which the equations mean something.
+    #[error(
+        "{component}: {variable} reaches {value:.1} at {place}; the equations hold from {low} to {high}"
+    )]
+    OutOfBounds {
+        /// Component that noticed.
+        component: &'static str,
+        /// Variable concerned.
+        variable: &'static str,
+        /// Its value.
+        value: f64,
+        /// Lower limit.
+        low: f64,
+        /// Upper limit.
+        high: f64,
+        /// Band or level.
+        place: String,
+    },
+    /// A step is too long for the feedbacks at work.
+    #[error(
+        "{component}: {steps} steps a year are too few at {place}: melting outruns a step; raise grid.steps_per_year"
+    )]
+    StepTooLong {
+        /// Component that noticed.
+        component: &'static str,
+        /// Steps in a year.
+        steps: usize,
+        /// Where.
+        place: String,
+    },
     /// A restart state does not fit this component.
     #[error(
         "{component}: the restart state has {found} numbers, this configuration needs {needed}"
@@ -179,6 +209,9 @@ pub trait Component: Send {
         forcing: &YearForcing<'_>,
         exchange: &mut Exchange,
     ) -> Result<(), PhysicsError>;
+
+    /// The spin-up is over and the run begins. Most components need not know.
+    fn begin_run(&mut self) {}
 
     /// What this component conserves; one [`Account`] is expected for each.
     fn conserves(&self) -> &'static [Quantity];

@@ -21,7 +21,7 @@ fn experiment(obliquity_deg: f64, edits: &[&str]) -> Experiment {
     let mut all = vec![
         obliquity.as_str(),
         "orbit.eccentricity={ kind = \"constant\", eccentricity = 0.05 }",
-        "orbit.perihelion={ kind = \"constant\", heliocentric_deg = 90.0 }",
+        "orbit.perihelion={ kind = \"constant_heliocentric\", heliocentric_deg = 90.0 }",
     ];
     all.extend(edits);
     reference::experiment(&all)

@@ -10,6 +10,7 @@ use orbicline::physics::Setting;
 pub(crate) fn drive(experiment: &Experiment, setting: &Setting) -> Drive {
     let run = &experiment.run;
     let numbers = DriveNumbers {
+        end_kyr: run.time.end_kyr,
         solar_constant_w_m2: run.insolation.solar_constant_w_m2,
         refresh_yr: run.insolation.refresh_every_yr,
         co2_reference_ppm: run.co2_forcing.co2_reference_ppm,

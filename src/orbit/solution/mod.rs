@@ -164,7 +164,7 @@ mod tests {
             );
             Orbit::build(&parse(&text)).unwrap().at(0.1).unwrap()
         };
-        let earth = with("{ kind = 'constant', heliocentric_deg = 100.33 }");
+        let earth = with("{ kind = 'constant_heliocentric', heliocentric_deg = 100.33 }");
         let sun = with("{ kind = 'constant_sun_longitude', sun_longitude_deg = 280.33 }");
         let difference = earth.climatic_precession() - sun.climatic_precession();
         assert!(difference.abs() < 1e-15);
@@ -176,7 +176,7 @@ mod tests {
             "eccentricity = { kind = 'sinusoid', mean = 0.03, amplitude = 0.04, \
                               period_kyr = -95, maximum_at_kyr = nan }
              obliquity = { kind = 'constant', obliquity_deg = 123 }
-             perihelion = { kind = 'constant', heliocentric_deg = inf }",
+             perihelion = { kind = 'constant_heliocentric', heliocentric_deg = inf }",
         ))
         .unwrap_err();
         let keys: Vec<&str> = errors

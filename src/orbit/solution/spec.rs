@@ -81,7 +81,7 @@ pub enum PerihelionSource {
     /// Series of Berger (1978).
     Berger1978 {},
     /// The same at all ages, by the Earth's heliocentric longitude (102.9 today).
-    Constant {
+    ConstantHeliocentric {
         /// Heliocentric longitude of perihelion, degrees.
         heliocentric_deg: f64,
     },
@@ -278,7 +278,7 @@ impl PerihelionSource {
     pub(super) fn course(&self) -> Course {
         match *self {
             Self::Berger1978 {} => Course::Berger1978,
-            Self::Constant { heliocentric_deg } => Course::Constant(heliocentric_deg),
+            Self::ConstantHeliocentric { heliocentric_deg } => Course::Constant(heliocentric_deg),
             Self::ConstantSunLongitude { sun_longitude_deg } => Course::Constant(
                 PerihelionLongitude::from_sun_longitude_deg(sun_longitude_deg).heliocentric_deg(),
             ),

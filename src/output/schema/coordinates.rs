@@ -46,7 +46,7 @@ impl Schema {
         ));
         list.retain(|&(_, length, _)| length > 0);
         if self.uses_hemispheres() {
-            list.push((super::dimension(Axis::Hemisphere), 2, false));
+            list.push((super::dimension(Axis::Hemisphere), 2, true));
             list.push((LETTERS, HEMISPHERES.len() / 2, false));
         }
         list.push((BOUNDS, 2, false));
@@ -76,6 +76,12 @@ impl Schema {
             ));
         }
         if self.uses_hemispheres() {
+            let attributes = text(&[
+                ("long_name", "hemisphere: -1 southern, 1 northern"),
+                ("units", "1"),
+            ]);
+            let sides = Content::Integers(vec![-1, 1]);
+            list.push(coordinate("hemisphere", &["hemisphere"], sides, attributes));
             let values = Content::Letters(HEMISPHERES.to_vec());
             let attributes = text(&[("long_name", "hemisphere")]);
             list.push(coordinate(

@@ -98,8 +98,9 @@ pub(super) struct Coefficients {
     pub per_convection_temperature: f64,
 }
 
-/// Newton slopes of land and ocean may not fall below this share of their storage term: keeps a
-/// step well posed should the albedo feedback ever outrun it (not seen at 24 steps or more).
+/// Newton slopes of land and ocean are limited to this share of their storage term. Where the
+/// limit acts the albedo feedback outruns the step (seen with few steps in very cold climates); the
+/// step then stays finite, and the year is refused as too coarse.
 pub(super) const LEAST_NEWTON_SHARE: f64 = 0.25;
 
 /// Ice thinner than this is treated as this thick in the conductance, m (keeps k/h finite; the

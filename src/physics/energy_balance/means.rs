@@ -64,6 +64,11 @@ pub(super) struct MeanRow {
     pub air_input: Lanes,
     pub ocean_gain: Lanes,
     pub gross_loss: Lanes,
+    /// Coldest and warmest temperature of air and land in the year, degC.
+    pub coldest: Lanes,
+    pub warmest: Lanes,
+    /// One where a Newton slope had to be limited in the year.
+    pub strained: Lanes,
 }
 
 impl MeanRow {
@@ -98,6 +103,9 @@ impl MeanRow {
             air_input: zero,
             ocean_gain: zero,
             gross_loss: zero,
+            coldest: zero,
+            warmest: zero,
+            strained: zero,
         }
     }
 

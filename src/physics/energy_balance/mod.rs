@@ -61,6 +61,8 @@ pub struct EnergyBalance {
     edges: EdgeFluxes,
     means: Means,
     report: Report,
+    /// Whether the first year, which begins far from balance, is over.
+    started: bool,
 }
 
 impl EnergyBalance {
@@ -84,6 +86,7 @@ impl EnergyBalance {
             surface: surface.clone(),
             coefficients,
             state,
+            started: false,
         })
     }
 
@@ -106,6 +109,7 @@ impl EnergyBalance {
     /// stability.
     pub fn set_air_temperature_c(&mut self, air_c: &[f64]) {
         self.state.rest_air(air_c);
+        self.started = false;
     }
 
     /// sin(latitude) of the ice edge in the southern and northern hemisphere, for an ice-line
@@ -119,6 +123,62 @@ impl EnergyBalance {
     /// Heat held by air, land and ocean layers, J, in the combination the formula conserves.
     pub fn heat_j(&self) -> f64 {
         self.state.heat_j(&self.coefficients).value()
+    }
+}
+
+/// Temperatures that this model can mean something at, degC: twice the span of what Earth's
+/// surface has seen, from a frozen planet's winter to the humid greenhouse.
+const MEANINGFUL_C: [f64; 2] = [-150.0, 100.0];
+
+impl EnergyBalance {
+    /// Refuses a year whose state is broken, without meaning, or reached by steps too long for it; the
+    /// first year, from a start state far from balance, need only stay finite.
+    fn check_year(&self) -> Result<(), PhysicsError> {
+        let component = self.name();
+        let place = |band: usize| {
+            format!(
+                "the band at {} degrees north",
+                self.surface.bands.centre_deg()[band]
+            )
+        };
+        if let Some((variable, band)) = self.state.broken() {
+            return Err(PhysicsError::NotFinite {
+                component,
+                variable,
+                place: place(band),
+            });
+        }
+        if !self.started {
+            return Ok(());
+        }
+        let [low, high] = MEANINGFUL_C;
+        for band in 0..self.coefficients.bands {
+            let [cold, warm] = [
+                self.means.sum(band, |row| row.coldest),
+                self.means.sum(band, |row| row.warmest),
+            ];
+            for value in [cold, warm] {
+                if !(low..=high).contains(&value) {
+                    let (variable, place) = ("temperature", place(band));
+                    return Err(PhysicsError::OutOfBounds {
+                        component,
+                        variable,
+                        value,
+                        low,
+                        high,
+                        place,
+                    });
+                }
+            }
+            if self.means.sum(band, |row| row.strained) > 0.0 {
+                return Err(PhysicsError::StepTooLong {
+                    component,
+                    steps: self.coefficients.steps,
+                    place: place(band),
+                });
+            }
+        }
+        Ok(())
     }
 }
 
@@ -211,15 +271,8 @@ impl Component for EnergyBalance {
             greenhouse: forcing.greenhouse_w_m2,
             column,
         });
-        if let Some((variable, band)) = self.state.broken() {
-            let latitude = self.surface.bands.centre_deg()[band];
-            let place = format!("the band at {latitude} degrees north");
-            return Err(PhysicsError::NotFinite {
-                component: self.name(),
-                variable,
-                place,
-            });
-        }
+        self.check_year()?;
+        self.started = true;
         self.report
             .close_year(&self.coefficients, &self.means, &self.state, exchange);
         Ok(())
@@ -262,6 +315,7 @@ impl Component for EnergyBalance {
         }
         self.state.restore(state);
         self.means.restore(&state[State::len(n)..]);
+        self.started = true;
         Ok(())
     }
 }

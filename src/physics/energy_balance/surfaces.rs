@@ -136,8 +136,10 @@ fn land(c: &Coefficients, b: &BandRow, s: &StateRow, w: &mut WorkRow, above: &Ab
     );
     let emitted = emission(c, above, temperature);
     let storage = c.land_capacity / c.gamma_s;
-    let newton = (f.slope + (storage + c.surface_emission_slope) - absorbed_slope)
-        .max(Lanes::splat(storage * LEAST_NEWTON_SHARE));
+    let newton = f.slope + (storage + c.surface_emission_slope) - absorbed_slope;
+    let least = Lanes::splat(storage * LEAST_NEWTON_SHARE);
+    w.strained = newton.at_least(least).select(Lanes::splat(0.0), one);
+    let newton = newton.max(least);
     w.land_residual = absorbed - f.flux - emitted - s.land.lead() * storage;
     w.land_per_newton = one / newton;
     w.land_flux = f.flux;
@@ -253,5 +255,10 @@ fn close_ocean(c: &Coefficients, s: &StateRow, w: &mut WorkRow) {
     let newton = w.ocean_flux_enthalpy + w.ocean_emission_enthalpy - w.ocean_absorbed_enthalpy
         + w.sub_flux_enthalpy
         + storage;
-    w.ocean_per_newton = Lanes::splat(1.0) / newton.max(Lanes::splat(LEAST_NEWTON_SHARE * storage));
+    let least = Lanes::splat(LEAST_NEWTON_SHARE * storage);
+    let limited = newton
+        .at_least(least)
+        .select(Lanes::splat(0.0), Lanes::splat(1.0));
+    w.strained = w.strained.max(limited);
+    w.ocean_per_newton = Lanes::splat(1.0) / newton.max(least);
 }

@@ -55,7 +55,11 @@ pub(super) fn advance(
         } else {
             s.air.momentum() + (input + convergence) * (c.gamma_s / c.air_capacity)
         };
-        m.set(Field::Air, s.air.push(increment));
+        let air = s.air.push(increment);
+        m.coldest = m.coldest.min(air).min(s.land.now);
+        m.warmest = m.warmest.max(air).max(s.land.now);
+        m.strained = m.strained.max(row.strained);
+        m.set(Field::Air, air);
         m.set(Field::Insolation, Lanes::load(light, 0));
         m.air_input += input;
         m.absorbed_air.add(row.air_absorbed);

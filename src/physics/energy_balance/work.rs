@@ -43,6 +43,8 @@ work_row! {
     open_water,
     /// Mixed-layer temperature, ice cover, ice surface temperature.
     water_temperature, ice_cover, ice_surface,
+    /// One where a Newton slope was limited.
+    strained,
     /// Sinking: weight or rate (m3 s-1) of deep water.
     deep_sinking,
 }

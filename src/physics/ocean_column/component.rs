@@ -4,7 +4,7 @@
 //! frozen column; flows are the heat of the sinking water and the heat given to the mixed layers.
 //! Nothing is computed here that is not described in the module above.
 
-use super::params::{Evolution, Params};
+use super::params::Params;
 use super::{Books, HEAT_CAPACITY, NAME, OceanColumn, Rates, variables};
 use crate::forcing::YearForcing;
 use crate::numerics::sum::CompensatedSum;
@@ -53,22 +53,24 @@ impl Component for OceanColumn {
         self.books.sinking_c = exchange.deep_sinking_temperature_c;
         let surface = &exchange.mixed_layer_temperature_c;
         self.books.low_latitude_c = self.patterns.exchange_mean(surface);
-        match self.params.evolution {
-            Evolution::Prognostic => {
-                let (top, source) = self.integrate(years, exchange);
-                self.give_heat(top, source, exchange);
-                self.update_rates(exchange);
-            }
-            Evolution::Frozen if !self.told => {
-                let source = self.source_temperature(&self.temperature);
-                self.give_heat(self.temperature[0], source, exchange);
-            }
-            Evolution::Frozen => {}
+        let before = self.rates;
+        if !self.frozen() {
+            let (top, source) = self.integrate(years, exchange);
+            self.give_heat(top, source, exchange);
+            self.update_rates(exchange);
+        } else if !self.told {
+            let source = self.source_temperature(&self.temperature);
+            self.give_heat(self.temperature[0], source, exchange);
         }
+        self.books.rates = before;
         self.book(exchange);
         self.check_finite()?;
         self.initial_exchange(exchange);
         Ok(())
+    }
+
+    fn begin_run(&mut self) {
+        self.running = true;
     }
 
     fn conserves(&self) -> &'static [Quantity] {
@@ -76,11 +78,10 @@ impl Component for OceanColumn {
     }
 
     fn accounts(&self) -> Vec<Account> {
-        let stored = match self.params.evolution {
-            Evolution::Prognostic => {
-                HEAT_CAPACITY * self.column.content(&self.temperature) / self.books.slow_years
-            }
-            Evolution::Frozen => self.books.reservoir_j,
+        let stored = if self.frozen() {
+            self.books.reservoir_j
+        } else {
+            HEAT_CAPACITY * self.column.content(&self.temperature) / self.books.slow_years
         };
         let flow = |name, amount| Flow {
             name,
@@ -111,10 +112,10 @@ impl Component for OceanColumn {
             t.pycnocline_m,
             t.half_depth_m,
             t.warm_water_heat_j_m2,
-            self.rates.deep,
-            self.rates.subtropical,
-            self.rates.southern,
-            self.rates.deep + self.rates.subtropical,
+            self.books.rates.deep,
+            self.books.rates.subtropical,
+            self.books.rates.southern,
+            self.books.rates.deep + self.books.rates.subtropical,
             self.books.sinking_c,
             self.books.low_latitude_c,
         ]);
@@ -127,6 +128,7 @@ impl Component for OceanColumn {
             r.subtropical,
             r.southern,
             f64::from(u8::from(self.told)),
+            f64::from(u8::from(self.running)),
             b.slow_years,
             b.reservoir_j,
             b.received_j,
@@ -143,10 +145,10 @@ impl Component for OceanColumn {
         let fault = PhysicsError::RestartLength {
             component: NAME,
             found: state.len(),
-            needed: 10 + 2 * levels + bands,
+            needed: 11 + 2 * levels + bands,
         };
-        let Some((&[deep, subtropical, southern, told, rest @ ..], profile)) =
-            state.split_first_chunk::<10>()
+        let Some((&[deep, subtropical, southern, told, running, rest @ ..], profile)) =
+            state.split_first_chunk::<11>()
         else {
             return Err(fault);
         };
@@ -167,6 +169,7 @@ impl Component for OceanColumn {
             southern,
         };
         self.told = told > 0.5;
+        self.running = running > 0.5;
         self.books = Books {
             slow_years,
             reservoir_j,
@@ -174,6 +177,7 @@ impl Component for OceanColumn {
             given_j,
             sinking_c,
             low_latitude_c,
+            rates: self.rates,
         };
         self.temperature.copy_from_slice(&profile[..levels]);
         self.column.set_remainder(&profile[levels..2 * levels]);

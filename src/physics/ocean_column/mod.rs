@@ -68,6 +68,8 @@ struct Books {
     given_j: f64,
     sinking_c: f64,
     low_latitude_c: f64,
+    /// Rates that acted in the year.
+    rates: Rates,
 }
 
 /// The low-latitude ocean column.
@@ -87,6 +89,8 @@ pub struct OceanColumn {
     heat_w: Vec<f64>,
     /// Whether `heat_w` has been computed.
     told: bool,
+    /// Whether the spin-up is over.
+    running: bool,
     books: Books,
 }
 
@@ -117,18 +121,20 @@ impl OceanColumn {
         let temperature: Vec<f64> = levels.middle_m().iter().map(profile).collect();
         let deep = params.sinking.reference_m3_s;
         let depth = thermocline::bounded_pycnocline_scale(&levels, &temperature);
+        let rates = Rates {
+            deep,
+            subtropical: params.sinking.subtropical_m3_s,
+            southern: closure::southern(&params.upwelling, depth, deep),
+        };
         Ok(Self {
-            rates: Rates {
-                deep,
-                subtropical: params.sinking.subtropical_m3_s,
-                southern: closure::southern(&params.upwelling, depth, deep),
-            },
+            rates,
             source: source_level(&levels, params.upwelling.southern_source_m),
             neutral: NeutralLevels::new(levels.len()),
             parcels: Vec::new(),
             sources: Sources::none(levels.len()),
             heat_w: vec![0.0; surface.bands.len()],
             told: false,
+            running: false,
             books: Books {
                 slow_years: 1.0,
                 reservoir_j: 0.0,
@@ -136,6 +142,7 @@ impl OceanColumn {
                 given_j: 0.0,
                 sinking_c: f64::NAN,
                 low_latitude_c: f64::NAN,
+                rates,
             },
             params: params.clone(),
             levels,
@@ -177,6 +184,12 @@ impl OceanColumn {
     /// Depths of the thermocline in the present profile.
     pub fn thermocline(&self) -> Thermocline {
         Thermocline::of(&self.levels, &self.temperature)
+    }
+
+    /// Whether the column holds what it tells: only after the spin-up, so that a frozen column is a
+    /// balanced one.
+    fn frozen(&self) -> bool {
+        self.running && self.params.evolution == Evolution::Frozen
     }
 
     /// Flows out of the column this year, m3 s-1: through the top and to the Southern Ocean.
@@ -280,7 +293,7 @@ impl OceanColumn {
         let received = exchange.sinking_heat_m3_c.iter().copied();
         self.books.received_j = HEAT_CAPACITY * compensated(received);
         self.books.given_j = YEAR_SECONDS * compensated(self.heat_w.iter().copied());
-        if self.params.evolution == Evolution::Frozen {
+        if self.frozen() {
             self.books.reservoir_j += self.books.received_j - self.books.given_j;
         }
     }

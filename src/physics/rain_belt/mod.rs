@@ -24,7 +24,7 @@ use crate::physics::budget::{Account, Quantity};
 use crate::physics::exchange::{Exchange, Surface};
 use crate::physics::{Build, Component, PhysicsError, RangeError, Setting};
 use crate::series::{Axis, Scale, Statistic, Variable};
-use crate::units::EARTH_RADIUS_M;
+use crate::units::{EARTH_RADIUS_M, PETAWATT_W};
 use std::f64::consts::PI;
 
 const NAME: &str = "rain_belt";
@@ -210,7 +210,7 @@ impl Component for RainBelt {
             ),
             plain(
                 "cross_equatorial_atmosphere_transport",
-                "W",
+                "PW",
                 "northward heat transport of the atmosphere across the equator",
             ),
             plain(
@@ -234,7 +234,7 @@ impl Component for RainBelt {
     fn record(&self, values: &mut Vec<f64>) {
         values.extend([
             self.energy_flux_equator_deg(),
-            self.transport_w,
+            self.transport_w / PETAWATT_W,
             self.energy_input_w_m2,
         ]);
         values.extend(self.contrast_k);
