@@ -83,6 +83,7 @@ fn schema() -> Schema {
     ];
     Schema {
         axes: AxisValues {
+            by_latitude: Vec::new(),
             latitude_edges_deg: (0..=6).map(|i| 30.0 * f64::from(i) - 90.0).collect(),
             depth_edges_m: vec![0.0, 10.0, 30.0, 70.0],
             month_edges_year: (0..=12).map(|m| f64::from(m) / 12.0).collect(),

@@ -10,7 +10,7 @@ use crate::model::observer::{Observer, Restart};
 use crate::model::records::model_variables;
 use crate::model::{Model, RunError};
 use crate::output::OutputError;
-use crate::output::schema::{AxisValues, Schema};
+use crate::output::schema::{AxisValues, FixedField, Schema};
 use crate::output::writer::{Overwrite, RunWriter};
 use crate::physics::Setting;
 use crate::series::Record;
@@ -148,6 +148,7 @@ fn schema(
         .as_ref()
         .map(|p| &p.coast.coastal_latitudes_deg);
     let axes = AxisValues {
+        by_latitude: fixed(setting),
         latitude_edges_deg: setting.surface.bands.edge_deg().to_vec(),
         depth_edges_m: levels.map(|l| l.edge_m().to_vec()).unwrap_or_default(),
         month_edges_year: Calendar.month_bounds_fraction().to_vec(),
@@ -161,6 +162,37 @@ fn schema(
         variables,
         global: global(experiment, arguments)?,
     })
+}
+
+/// What weights and masks need: area, land fraction and elevation of the bands.
+fn fixed(setting: &Setting) -> Vec<FixedField> {
+    let surface = &setting.surface;
+    let field = |name, units, long_name, standard_name, values: &[f64]| FixedField {
+        name,
+        units,
+        long_name,
+        standard_name,
+        values: values.to_vec(),
+    };
+    let (area, land) = (surface.bands.area_m2(), &surface.land_fraction);
+    let height = &surface.land_elevation_m;
+    vec![
+        field("band_area", "m2", "area of the band", "cell_area", area),
+        field(
+            "land_fraction",
+            "1",
+            "land fraction",
+            "land_area_fraction",
+            land,
+        ),
+        field(
+            "land_elevation",
+            "m",
+            "mean elevation of the land",
+            "surface_altitude",
+            height,
+        ),
+    ]
 }
 
 fn global(

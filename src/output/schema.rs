@@ -45,10 +45,27 @@ pub(crate) const BOUNDS: &str = "bnds";
 /// Dimension of the letters of a name.
 pub(crate) const LETTERS: &str = "name_length";
 
+/// A variable of latitude that does not change with age.
+#[derive(Clone, Debug, PartialEq)]
+pub struct FixedField {
+    /// Name in the file.
+    pub name: &'static str,
+    /// UDUNITS string.
+    pub units: &'static str,
+    /// What it is, in words.
+    pub long_name: &'static str,
+    /// CF standard name.
+    pub standard_name: &'static str,
+    /// One value for each band.
+    pub values: Vec<f64>,
+}
+
 /// Values of the axes a variable can have besides age. An axis that no variable uses may be left
 /// empty and is then left out of the file.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct AxisValues {
+    /// Plain variables of latitude that do not change with age, such as the area of the bands.
+    pub by_latitude: Vec<FixedField>,
     /// Edges of the latitude bands, degrees north, from south to north.
     pub latitude_edges_deg: Vec<f64>,
     /// Edges of the levels, m below the surface, from top to bottom.

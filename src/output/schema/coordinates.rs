@@ -155,6 +155,19 @@ fn latitude(axes: &AxisValues, list: &mut Vec<Coordinate>) {
     let attributes = latitude_attributes("latitude of band edges");
     let values = Content::Numbers(edges.clone());
     list.push(coordinate("lat_edge", &["lat_edge"], values, attributes));
+    for field in &axes.by_latitude {
+        let attributes = text(&[
+            ("long_name", field.long_name),
+            ("standard_name", field.standard_name),
+            ("units", field.units),
+        ]);
+        list.push(coordinate(
+            field.name,
+            &["lat"],
+            Content::Numbers(field.values.clone()),
+            attributes,
+        ));
+    }
 }
 
 fn month(axes: &AxisValues, list: &mut Vec<Coordinate>) {

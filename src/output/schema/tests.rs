@@ -4,6 +4,7 @@ use super::*;
 fn table() -> Schema {
     Schema {
         axes: AxisValues {
+            by_latitude: Vec::new(),
             latitude_edges_deg: vec![-90.0, 0.0, 90.0],
             depth_edges_m: vec![0.0, 10.0, 30.0],
             month_edges_year: (0..13).map(|m| f64::from(m) / 12.0).collect(),

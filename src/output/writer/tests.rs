@@ -15,6 +15,7 @@ fn invented() -> (Schema, Vec<Record>) {
     };
     let schema = Schema {
         axes: AxisValues {
+            by_latitude: Vec::new(),
             depth_edges_m: vec![0.0, 1.0, 2.0, 3.0],
             ..AxisValues::default()
         },
