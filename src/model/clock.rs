@@ -73,6 +73,9 @@ pub enum PlanError {
     },
 }
 
+/// Lengths this close are the same, years: ages in kyr are rounded to some nanoyears.
+const SAME_YR: f64 = 1e-3;
+
 /// A checked plan.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Plan {
@@ -126,7 +129,7 @@ impl Plan {
         }
         let years = (start_kyr - end_kyr) * 1000.0;
         let records = (years / f64::from(record)).round();
-        if (records * f64::from(record) - years).abs() > 1e-6 * years.max(1.0) || records < 1.0 {
+        if (records * f64::from(record) - years).abs() > SAME_YR || records < 1.0 {
             wrong.push(PlanError::Multiple {
                 what: "the run",
                 long: years,
@@ -243,6 +246,10 @@ mod tests {
     fn times_that_make_no_run_are_refused_together() {
         assert_eq!(Plan::new(&spec(0.0, 10.0, 0, 0)).unwrap_err().len(), 3);
         assert!(Plan::new(&spec(1.0, 0.0, 300, 1)).is_err());
+        assert!(
+            Plan::new(&spec(1000.0, 0.0, 333, 1)).is_err(),
+            "one year short"
+        );
         assert!(Plan::new(&spec(1.0, 0.0, 100, 3)).is_err());
     }
 }
