@@ -74,7 +74,7 @@ pub(crate) fn machine_paths(file: &str, text: &str) -> Vec<String> {
         for folder in &folders {
             let begins = |at: usize| {
                 let before = line[..at].chars().next_back();
-                // `a/home/b` and `$HOME/work/` are not paths from the root.
+                // `a/home/b` and `$HOME/x/` are not paths from the root.
                 before.is_none_or(|c| !c.is_alphanumeric() && !"._-}".contains(c))
             };
             if line
