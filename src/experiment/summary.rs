@@ -199,3 +199,73 @@ fn extremes(values: &[f64]) -> [f64; 2] {
         .iter()
         .fold([f64::INFINITY, f64::NEG_INFINITY], wider)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// A circular course of obliquity and precession (invented data).
+    fn orbit(tilt: f64, e: f64, perihelion_turns: bool) -> Orbit {
+        let angle = |i: i32| f64::from(i) * 0.3;
+        let turning = |i: i32| {
+            if perihelion_turns {
+                angle(i).sin()
+            } else {
+                1.0
+            }
+        };
+        Orbit {
+            told: Told {
+                co2: true,
+                span: true,
+            },
+            obliquity: (0..100).map(|i| 23.25 + tilt * angle(i).cos()).collect(),
+            precession: (0..100)
+                .map(|i| e * (1.0 + 0.3 * (0.37 * angle(i)).cos()) * turning(i))
+                .collect(),
+            eccentricity: (0..100)
+                .map(|i| e * (1.0 + 0.3 * (0.37 * angle(i)).cos()))
+                .collect(),
+        }
+    }
+
+    #[test]
+    fn responses_are_told_only_where_they_mean_something() {
+        let full = orbit(1.2, 0.04, true);
+        assert!(full.obliquity_told() && full.precession_told());
+        let held = orbit(0.0, 0.04, false);
+        assert!(!held.obliquity_told() && !held.precession_told());
+        let short = Orbit {
+            told: Told {
+                co2: true,
+                span: false,
+            },
+            ..orbit(1.2, 0.04, true)
+        };
+        assert!(!short.obliquity_told() && !short.precession_told());
+        let warming = Orbit {
+            told: Told {
+                co2: false,
+                span: true,
+            },
+            ..orbit(1.2, 0.04, true)
+        };
+        assert!(!warming.obliquity_told() && !warming.precession_told());
+    }
+
+    #[test]
+    fn analytic_a_linear_answer_is_told_in_the_stated_units() {
+        let orbit = orbit(1.2, 0.04, true);
+        let pairs = orbit.obliquity.iter().zip(&orbit.precession);
+        let values: Vec<f64> = pairs
+            .map(|(tilt, precession)| 3.0 * tilt + 50.0 * precession)
+            .collect();
+        let figure = figure(("x", "m"), &values, &orbit);
+        let [tilt, june] = [figure.per_degree_tilt, figure.december_to_june].map(Option::unwrap);
+        // 50 per unit of e sin(perihelion), from +0.05 (December) to -0.05 (June).
+        assert!(
+            (tilt - 3.0).abs() < 1e-9 && (june + 5.0).abs() < 1e-9,
+            "{tilt} {june}"
+        );
+    }
+}
