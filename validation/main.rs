@@ -17,6 +17,9 @@ mod energy_balance_heat;
 #[path = "energy_balance/ice_line.rs"]
 mod energy_balance_ice_line;
 #[cfg(test)]
+#[path = "energy_balance/melting.rs"]
+mod energy_balance_melting;
+#[cfg(test)]
 #[path = "energy_balance/relaxation.rs"]
 mod energy_balance_relaxation;
 #[cfg(test)]
