@@ -71,8 +71,7 @@ impl Sink {
         }
     }
 
-    /// Hands over one record; a background sink that has failed is given back so that
-    /// [`Sink::finish`] can tell why.
+    /// Hands over one record. When a background writer has stopped, [`Sink::give_up`] tells why.
     ///
     /// # Errors
     /// When a direct writer fails.
@@ -123,6 +122,6 @@ impl Sink {
 pub enum Delivery {
     /// It is written or will be.
     Taken,
-    /// The writer has stopped; finishing the sink gives its error.
+    /// The writer has stopped; [`Sink::give_up`] gives its error.
     WriterGone,
 }

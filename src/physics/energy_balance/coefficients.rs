@@ -351,9 +351,10 @@ fn gyre(p: &Params, surface: &Surface) -> Vec<f64> {
 }
 
 /// Explicit gyre diffusion is kept while gamma (`k_south` + `k_north`)/(C A) stays below this in
-/// every band: a tenth of what third-order differences bear, so that dropping the implicit
-/// correction changes nothing that counts (it is of the size of this number times the error of
-/// the extrapolation).
+/// every band. Third-order differences with a third-order extrapolated term bear h lambda < 20/21 on
+/// the real axis (root -1 of 11/6 z^3 - 3 z^2 + 3/2 z - 1/3 = -h lambda (3 z^2 - 3 z + 1)); with
+/// gamma = 6 h/11 and lambda at most twice the sum above (Gershgorin) the limit would be 0.26. Below
+/// a fifth of it the dropped correction is of this size times the error of the extrapolation.
 const EXPLICIT_GYRE_LIMIT: f64 = 0.05;
 
 /// Matrix of the implicit correction of gyre diffusion, (C A/gamma - L) with constant entries.
