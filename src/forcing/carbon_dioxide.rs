@@ -7,7 +7,7 @@
 use crate::numerics::profile;
 use serde::{Deserialize, Serialize};
 
-/// Concentrations that can be meant, ppm: below are fractions given by mistake, above is no
+/// Concentrations that can be meant, ppm (chosen here): below are fractions given by mistake, above is no
 /// atmosphere that a logarithmic forcing describes.
 const CONCENTRATIONS_PPM: std::ops::RangeInclusive<f64> = 1.0..=1.0e5;
 

@@ -98,7 +98,7 @@ pub(super) struct Coefficients {
     pub per_convection_temperature: f64,
 }
 
-/// Newton slopes of land and ocean are limited to this share of their storage term. Where the
+/// Newton slopes of land and ocean are limited to this share (tuned here) of their storage term. Where the
 /// limit acts the albedo feedback outruns the step (seen with few steps in very cold climates); the
 /// step then stays finite, and the year is refused as too coarse.
 pub(super) const LEAST_NEWTON_SHARE: f64 = 0.25;

@@ -126,8 +126,8 @@ impl EnergyBalance {
     }
 }
 
-/// Temperatures that this model can mean something at, degC: twice the span of what Earth's
-/// surface has seen, from a frozen planet's winter to the humid greenhouse.
+/// Temperatures at which a result is believed, degC; beyond, the run is refused. Chosen here, wider
+/// than every balanced climate this model was run to (a frozen planet to 10 000 ppm).
 const MEANINGFUL_C: [f64; 2] = [-150.0, 100.0];
 
 impl EnergyBalance {
