@@ -6,11 +6,10 @@
 use orbicline::config::run::{Built, Experiment};
 use orbicline::forcing::YearForcing;
 use orbicline::model::clock::{Plan, SpinUp, TimeSpec};
-use orbicline::model::observer::Keep;
+use orbicline::model::observer::{Keep, Nobody};
 use orbicline::orbit::elements::{Elements, PerihelionLongitude};
 use orbicline::orbit::insolation::InsolationTable;
 use orbicline::physics::exchange::Exchange;
-use std::convert::Infallible;
 use std::error::Error;
 use std::io::Write;
 use std::path::Path;
@@ -58,7 +57,7 @@ fn years_per_second(experiment: &Experiment) -> Result<f64, Box<dyn Error>> {
         slow_years_per_seasonal_year: 60.0,
         settling_yr: 10,
     };
-    model.spin_up::<Infallible>(0.0, spin_up)?;
+    model.spin_up(0.0, spin_up, &mut Nobody)?;
     let length_kyr = f64::from(YEARS) / 1000.0;
     let plan = Plan::new(&TimeSpec {
         start_kyr: length_kyr,

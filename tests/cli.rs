@@ -99,7 +99,7 @@ fn an_existing_file_is_left_as_it_is_unless_overwriting_is_allowed() {
     assert!(RunFile::open(&folder.path("there.nc")).is_ok());
     assert_eq!(
         folder.files(),
-        ["short.toml", "there.nc"],
+        ["short.toml", "there.nc", "there.nc.log"],
         "segments were left behind"
     );
 }
@@ -107,6 +107,7 @@ fn an_existing_file_is_left_as_it_is_unless_overwriting_is_allowed() {
 fn refused(folder: &Folder, words: &[&str]) -> Outcome {
     let all = [&["run"], words, &["--out", "never.nc"]].concat();
     let outcome = folder.orbicline(&all);
+    assert!(matches!(outcome.code, Some(1 | 2)), "{outcome:?}");
     assert!(
         !folder.path("never.nc").exists(),
         "a file in spite of {words:?}"

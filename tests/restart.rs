@@ -14,6 +14,7 @@ use accounts::{accounts, flows};
 use orbicline::config::run::Experiment;
 use orbicline::model::Model;
 use orbicline::model::clock::Plan;
+use orbicline::model::observer::Nobody;
 use orbicline::model::observer::{Keep, Observer, Restart};
 use orbicline::output::RunFile;
 use orbicline::series::Record;
@@ -198,7 +199,7 @@ fn the_state_in_the_file_is_that_of_the_model_behind_the_last_record() {
 
     let mut model = fresh(&experiment);
     let plan = Plan::new(&experiment.run.time).expect("a plan");
-    let spun = model.spin_up::<Infallible>(plan.start_kyr(), experiment.run.time.spin_up);
+    let spun = model.spin_up(plan.start_kyr(), experiment.run.time.spin_up, &mut Nobody);
     spun.expect("a spin-up");
     let mut seen = Both::default();
     model.run(&plan, &mut seen).expect("a run");

@@ -1,7 +1,11 @@
 //! The command line: the only part that prints.
 
-mod progress;
+mod attendant;
+mod bar;
+mod dry_run;
+mod figures;
 mod run;
+mod signals;
 
 use clap::{Parser, Subcommand};
 use std::io::Write;
@@ -39,6 +43,18 @@ pub fn main() -> ExitCode {
         Ok(()) => ExitCode::SUCCESS,
         // Whoever read the output has seen enough; the file is complete.
         Err(CliError::Print(e)) if e.kind() == std::io::ErrorKind::BrokenPipe => ExitCode::SUCCESS,
+        Err(CliError::Stopped {
+            signal,
+            kept,
+            command,
+        }) => {
+            // As below.
+            let _ = writeln!(
+                std::io::stderr(),
+                "stopped: {kept}; go on with\n  {command}"
+            );
+            ExitCode::from(128 + signal)
+        }
         Err(error) => {
             // Nothing can be done when even standard error is closed.
             let _ = writeln!(std::io::stderr(), "error: {error}");
@@ -54,6 +70,15 @@ enum CliError {
     Single(#[from] crate::experiment::single::SingleError),
     #[error(transparent)]
     Output(#[from] crate::output::OutputError),
+    #[error("stopped: {kept}")]
+    Stopped {
+        /// Number of the signal.
+        signal: u8,
+        /// What is kept.
+        kept: crate::experiment::single::Kept,
+        /// The command that goes on.
+        command: String,
+    },
     #[error("cannot print: {0}")]
     Print(#[from] std::io::Error),
 }

@@ -5,7 +5,9 @@
 //! names the file and line that the key came from. This module knows no physics: which keys exist
 //! is said by the type that is read, which values are allowed is checked where the part is built.
 
+pub mod difference;
 pub mod error;
+pub mod identity;
 mod origin;
 pub mod provenance;
 pub mod read;
@@ -14,5 +16,6 @@ mod set;
 mod typed;
 
 pub use error::{ConfigError, Place};
+pub use identity::Identity;
 pub use provenance::{InputFile, Provenance};
 pub use read::{Tree, read_text};

@@ -3,7 +3,7 @@
 //! The tables are those of the parts themselves; this module only composes them, finds where each
 //! offending key was written, and reads the table of carbon dioxide when one is named.
 
-use super::{ConfigError, InputFile, Place, Tree, read_text};
+use super::{ConfigError, Identity, InputFile, Place, Tree, read_text};
 use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideError, CarbonDioxideSpec};
 use crate::forcing::drive::{Drive, DriveNumbers};
 use crate::grid::calendar::MonthWeights;
@@ -193,12 +193,26 @@ impl Experiment {
     /// When the table of carbon dioxide cannot be read.
     pub fn inputs(&self) -> Result<Vec<InputFile>, ConfigError> {
         let mut files = self.tree.input_files().to_vec();
-        if let CarbonDioxideSpec::Table { path } = &self.run.co2 {
-            let path = self.folder.join(path);
-            let text = read_text(&path)?;
-            files.push(InputFile::new(&path, text.as_bytes()));
-        }
+        files.extend(self.data()?);
         Ok(files)
+    }
+
+    /// What a run must have in common with this one to give the same numbers.
+    ///
+    /// # Errors
+    /// When the table of carbon dioxide cannot be read.
+    pub fn identity(&self) -> Result<Identity, ConfigError> {
+        Ok(Identity::new(self.tree.resolved_toml()?, &self.data()?))
+    }
+
+    /// The data files besides the configuration.
+    fn data(&self) -> Result<Vec<InputFile>, ConfigError> {
+        let CarbonDioxideSpec::Table { path } = &self.run.co2 else {
+            return Ok(Vec::new());
+        };
+        let path = self.folder.join(path);
+        let text = read_text(&path)?;
+        Ok(vec![InputFile::new(&path, text.as_bytes())])
     }
 
     fn placed(&self, fault: Fault) -> PlacedFault {

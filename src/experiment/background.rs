@@ -8,6 +8,8 @@ use crate::output::OutputError;
 use crate::output::writer::RunWriter;
 use crate::series::Record;
 use std::path::PathBuf;
+use std::sync::Arc;
+use std::sync::atomic::{AtomicUsize, Ordering};
 use std::sync::mpsc::{SyncSender, sync_channel};
 use std::thread::JoinHandle;
 
@@ -30,35 +32,59 @@ enum Message {
     Complete,
 }
 
+/// What a writer leaves on disk.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Left {
+    /// The complete file.
+    File(PathBuf),
+    /// So many records in segments; the output is as it was.
+    Records(usize),
+}
+
 /// A writer in a thread of its own. Only when told that the run is complete does it touch the
 /// output; a run that fails leaves its segments and the output as it was.
 pub struct Background {
     messages: SyncSender<Message>,
-    writer: JoinHandle<Result<Option<PathBuf>, OutputError>>,
+    segments: Arc<AtomicUsize>,
+    writer: JoinHandle<Result<Left, OutputError>>,
 }
 
 impl Background {
     fn new(mut writer: RunWriter) -> Self {
         let (messages, incoming) = sync_channel(WAITING);
+        let segments = Arc::new(AtomicUsize::new(writer.segments()));
+        let count = Arc::clone(&segments);
         let writer = std::thread::spawn(move || {
             for message in incoming {
                 match message {
-                    Message::Record(both) => writer.push(&both.0, &both.1.0)?,
-                    Message::Complete => return writer.finish().map(Some),
+                    Message::Record(both) => {
+                        writer.push(&both.0, &both.1.0)?;
+                        count.store(writer.segments(), Ordering::Relaxed);
+                    }
+                    Message::Complete => return writer.finish().map(Left::File),
                 }
             }
-            Ok(None)
+            keep(writer)
         });
-        Self { messages, writer }
+        Self {
+            messages,
+            segments,
+            writer,
+        }
     }
 
-    /// Waits for the thread and returns what it ended with: the path of a completed file.
-    fn join(self) -> Result<Option<PathBuf>, OutputError> {
+    /// Waits for the thread and returns what it left.
+    fn join(self) -> Result<Left, OutputError> {
         drop(self.messages);
         self.writer
             .join()
             .unwrap_or_else(|panic| std::panic::resume_unwind(panic))
     }
+}
+
+fn keep(mut writer: RunWriter) -> Result<Left, OutputError> {
+    writer.save()?;
+    Ok(Left::Records(writer.records()))
 }
 
 impl Sink {
@@ -71,7 +97,7 @@ impl Sink {
         }
     }
 
-    /// Hands over one record. When a background writer has stopped, [`Sink::give_up`] tells why.
+    /// Hands over one record. When a background writer has stopped, [`Sink::keep`] tells why.
     ///
     /// # Errors
     /// When a direct writer fails.
@@ -90,13 +116,21 @@ impl Sink {
         }
     }
 
+    /// Segments on disk so far.
+    pub fn segments(&self) -> usize {
+        match self {
+            Self::Direct(writer) => writer.segments(),
+            Self::Background(thread) => thread.segments.load(Ordering::Relaxed),
+        }
+    }
+
     /// Completes the file.
     ///
     /// # Errors
     /// When it could not be written.
-    pub fn finish(self) -> Result<Option<PathBuf>, OutputError> {
+    pub fn finish(self) -> Result<Left, OutputError> {
         match self {
-            Self::Direct(writer) => writer.finish().map(Some),
+            Self::Direct(writer) => writer.finish().map(Left::File),
             Self::Background(thread) => {
                 // A writer that is gone gives its own error below.
                 let _ = thread.messages.send(Message::Complete);
@@ -105,14 +139,14 @@ impl Sink {
         }
     }
 
-    /// Gives up: what is in segments stays, the output is left as it was.
+    /// Ends without the file: all complete records are put into segments.
     ///
     /// # Errors
-    /// When a record handed over before could not be written.
-    pub fn give_up(self) -> Result<(), OutputError> {
+    /// When they cannot be written.
+    pub fn keep(self) -> Result<Left, OutputError> {
         match self {
-            Self::Direct(_) => Ok(()),
-            Self::Background(thread) => thread.join().map(|_| ()),
+            Self::Direct(writer) => keep(*writer),
+            Self::Background(thread) => thread.join(),
         }
     }
 }
@@ -122,6 +156,6 @@ impl Sink {
 pub enum Delivery {
     /// It is written or will be.
     Taken,
-    /// The writer has stopped; [`Sink::give_up`] gives its error.
+    /// The writer has stopped; [`Sink::keep`] gives its error.
     WriterGone,
 }

@@ -1,5 +1,9 @@
 //! From a configuration to results: what the commands do, without printing.
 
 pub mod background;
+mod contents;
+pub mod estimate;
+pub mod follow;
+pub mod resume;
 pub mod single;
 pub mod summary;

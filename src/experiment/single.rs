@@ -1,19 +1,23 @@
 //! One transient run from a configuration into a file.
+//!
+//! A run can be stopped or killed at any moment and goes on from its last segment with the same
+//! numbers, bit for bit: the state in a segment is all that the model carries from record to
+//! record, and forcing depends on age only.
 
-use super::background::{Delivery, Sink};
+use super::background::{Delivery, Left, Sink};
+use super::contents::{self, History};
+use super::estimate::{Estimate, EstimateError, Task};
+use super::follow::{Event, Follower};
+use super::resume::{self, ResumeError, Start};
+use crate::config::ConfigError;
 use crate::config::run::{BuildError, Built, Experiment};
-use crate::config::{ConfigError, Provenance};
-use crate::grid::calendar::Calendar;
-use crate::grid::column::ColumnLevels;
-use crate::model::clock::Plan;
+use crate::model::clock::{Plan, SpinUp};
 use crate::model::observer::{Observer, Restart};
-use crate::model::records::model_variables;
 use crate::model::{Model, RunError};
-use crate::output::OutputError;
-use crate::output::schema::{AxisValues, FixedField, Schema};
-use crate::output::writer::{Overwrite, RunWriter};
-use crate::physics::Setting;
+use crate::output::writer::RunWriter;
+use crate::output::{Claim, OutputError, Overwrite};
 use crate::series::Record;
+use std::ops::ControlFlow;
 use std::path::{Path, PathBuf};
 
 /// A run that failed.
@@ -28,19 +32,26 @@ pub enum SingleError {
     /// The file could not be written.
     #[error(transparent)]
     Output(#[from] OutputError),
+    /// What is there cannot be gone on with.
+    #[error(transparent)]
+    Resume(#[from] ResumeError),
     /// The model could not go on.
-    #[error("{0}")]
-    Run(String),
+    #[error("{cause}; {kept}")]
+    Run {
+        /// Why.
+        cause: String,
+        /// What is kept.
+        kept: Kept,
+    },
 }
 
-/// Who follows a run.
-pub trait Progress {
-    /// The run begins: what it covers and how many years.
-    fn begin(&mut self, plan: &Plan);
-    /// So many years have passed.
-    fn passed(&mut self, years: f64);
-    /// All years are done; the file is being completed.
-    fn completing(&mut self);
+/// How a run begins.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Begin {
+    /// At its start.
+    Anew,
+    /// After the last segment of an unfinished run; at its start when there is none.
+    GoOn,
 }
 
 /// Where and how a run is written.
@@ -50,53 +61,188 @@ pub struct Destination {
     pub path: PathBuf,
     /// What to do when it exists.
     pub overwrite: Overwrite,
+    /// Whether to go on.
+    pub begin: Begin,
     /// Threads that may be used; results do not depend on it.
     pub threads: usize,
 }
 
-/// Runs an experiment and returns the path of the finished file.
+/// How a run ended.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Outcome {
+    /// The file is complete.
+    Complete(PathBuf),
+    /// It was complete before.
+    Already(PathBuf),
+    /// The run was asked to stop; it can go on.
+    Stopped(Kept),
+}
+
+/// What is on disk of a run that is not complete.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Kept {
+    /// The file that is to be.
+    pub path: PathBuf,
+    /// Records in segments beside it.
+    pub records: u64,
+    /// Records of the whole run.
+    pub of: u64,
+    /// Age to which they reach, kyr before 1950; none without records.
+    pub age_kyr: Option<f64>,
+}
+
+impl std::fmt::Display for Kept {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        let (records, of, path) = (self.records, self.of, self.path.display());
+        match self.age_kyr {
+            Some(age) => write!(
+                f,
+                "{records} of {of} records, to {age:.3} kyr before 1950, are kept in segments beside {path}"
+            ),
+            None => write!(f, "nothing of {path} is kept yet"),
+        }
+    }
+}
+
+/// Runs an experiment.
 ///
 /// # Errors
-/// When the configuration, the model or the file fail; segments written so far stay on disk.
+/// When the configuration, the model or the file fail; complete records stay on disk in segments.
 pub fn run(
     experiment: &Experiment,
     destination: &Destination,
     arguments: &[String],
-    progress: &mut dyn Progress,
-) -> Result<PathBuf, SingleError> {
+    follower: &mut dyn Follower,
+) -> Result<Outcome, SingleError> {
     let Built {
         mut model,
         plan,
         setting,
     } = experiment.build()?;
-    let schema = schema(experiment, &model, &setting, arguments)?;
-    let writer = RunWriter::create(&destination.path, schema, destination.overwrite)?;
-    let told = |e: RunError<Stopped>| SingleError::Run(e.to_string());
-    progress.begin(&plan);
-    model
-        .spin_up(plan.start_kyr(), experiment.run.time.spin_up)
-        .map_err(told)?;
-    let mut watch = Watch {
-        sink: Sink::new(writer, destination.threads),
-        progress,
+    let identity = experiment.identity()?;
+    let claim = Claim::take(&destination.path)?;
+    let start = match destination.begin {
+        Begin::Anew => Start::Anew,
+        Begin::GoOn => {
+            claim.discard_unsealed()?;
+            resume::find(&claim, &identity, &plan)?
+        }
     };
-    let outcome = model.run(&plan, &mut watch);
-    let Watch { sink, progress } = watch;
-    match outcome {
-        Ok(()) => {
-            progress.completing();
-            let path = sink.finish()?;
-            path.ok_or_else(|| SingleError::Run("the writer stopped before the end".to_owned()))
+    let earlier = match &start {
+        Start::Complete => {
+            claim.discard()?;
+            return Ok(Outcome::Already(destination.path.clone()));
         }
-        Err(error) => {
-            // The writer's own error, if it has one, is the cause and not the consequence.
-            sink.give_up()?;
-            Err(match error {
-                RunError::Observer(Stopped::Writer(error)) => error.into(),
-                other => told(other),
-            })
-        }
+        Start::GoOn { history } => history.clone(),
+        Start::Anew => String::new(),
+    };
+    let command = arguments;
+    let history = History { earlier, command };
+    let schema = contents::schema(experiment, &model, &setting, &history)?;
+    let overwrite = destination.overwrite;
+    let writer = match start {
+        Start::GoOn { .. } => RunWriter::go_on(claim, schema.clone(), overwrite)?,
+        Start::Anew | Start::Complete => RunWriter::begin(claim, schema.clone(), overwrite)?,
+    };
+    follower.told(&Event::Begins {
+        plan: plan.clone(),
+        configuration_sha256: identity.sha256(),
+    });
+    let task = Task {
+        experiment,
+        plan: &plan,
+        schema: &schema,
+        output: &destination.path,
+        done: writer.records() as u64,
+        threads: destination.threads,
+    };
+    follower.told(&expected_cost(&task));
+    carry_out(&mut model, writer, &task, destination, follower)
+}
+
+fn expected_cost(task: &Task<'_>) -> Event {
+    match task.estimate() {
+        Ok(estimate) => Event::Estimated(estimate),
+        Err(error) => Event::NotEstimated {
+            reason: error.to_string(),
+        },
     }
+}
+
+/// Runs what is left of a task and completes the file, or keeps what is there.
+fn carry_out(
+    model: &mut Model,
+    writer: RunWriter,
+    task: &Task<'_>,
+    destination: &Destination,
+    follower: &mut dyn Follower,
+) -> Result<Outcome, SingleError> {
+    let (plan, done) = (task.plan, task.done);
+    let from = Restart(writer.restart().to_vec());
+    let mut watch = Watch {
+        saved: writer.segments(),
+        sink: Sink::new(writer, destination.threads),
+        follower,
+    };
+    let outcome = if let Some(age_kyr) = age_after(plan, done) {
+        let records = done;
+        watch.follower.told(&Event::GoesOn { records, age_kyr });
+        let restored = model.restore(&from);
+        let years = plan.years_of_records(done);
+        restored.and_then(|()| model.run_from(plan, years, &mut watch))
+    } else {
+        if destination.begin == Begin::GoOn {
+            watch.follower.told(&Event::NothingToGoOnWith);
+        }
+        let spin_up = task.experiment.run.time.spin_up;
+        from_the_start(model, plan, spin_up, &mut watch)
+    };
+    watch.end(outcome, plan, &destination.path)
+}
+
+/// The cost of a run, measured without running or writing it.
+///
+/// # Errors
+/// When the configuration makes no model or the trial fails.
+pub fn estimate(
+    experiment: &Experiment,
+    destination: &Destination,
+    arguments: &[String],
+) -> Result<(Plan, Result<Estimate, EstimateError>), SingleError> {
+    let built = experiment.build()?;
+    let history = History {
+        earlier: String::new(),
+        command: arguments,
+    };
+    let schema = contents::schema(experiment, &built.model, &built.setting, &history)?;
+    let task = Task {
+        experiment,
+        plan: &built.plan,
+        schema: &schema,
+        output: &destination.path,
+        done: 0,
+        threads: destination.threads,
+    };
+    let estimate = task.estimate();
+    Ok((built.plan, estimate))
+}
+
+fn from_the_start(
+    model: &mut Model,
+    plan: &Plan,
+    spin_up: SpinUp,
+    watch: &mut Watch<'_>,
+) -> Result<(), RunError<Stopped>> {
+    model.spin_up(plan.start_kyr(), spin_up, watch)?;
+    let years = spin_up.years();
+    watch.follower.told(&Event::SpunUp { years });
+    model.run(plan, watch)
+}
+
+/// Age after so many records, kyr before 1950.
+fn age_after(plan: &Plan, records: u64) -> Option<f64> {
+    let last = plan.years_of_records(records).checked_sub(1)?;
+    Some(plan.record_bounds_kyr(last)[1])
 }
 
 /// Why the observer stopped a run.
@@ -106,115 +252,88 @@ enum Stopped {
     Writer(OutputError),
     #[error("the writer stopped")]
     WriterGone,
+    #[error("asked to stop")]
+    Asked,
 }
 
 /// Passes records to the file and years to whoever follows.
 struct Watch<'a> {
     sink: Sink,
-    progress: &'a mut dyn Progress,
+    saved: usize,
+    follower: &'a mut dyn Follower,
+}
+
+impl Watch<'_> {
+    /// Completes the file, or keeps what is there.
+    fn end(
+        self,
+        outcome: Result<(), RunError<Stopped>>,
+        plan: &Plan,
+        path: &Path,
+    ) -> Result<Outcome, SingleError> {
+        let Self { sink, follower, .. } = self;
+        if outcome.is_ok() {
+            follower.told(&Event::Completing);
+            let Left::File(path) = sink.finish()? else {
+                let path = path.to_owned();
+                return Err(OutputError::Empty { path }.into());
+            };
+            follower.told(&Event::Completed { path: path.clone() });
+            return Ok(Outcome::Complete(path));
+        }
+        // The writer's own error, if it has one, is the cause and not the consequence.
+        let records = match sink.keep()? {
+            Left::Records(records) => records as u64,
+            Left::File(_) => plan.records(),
+        };
+        let kept = Kept {
+            path: path.to_owned(),
+            records,
+            of: plan.records(),
+            age_kyr: age_after(plan, records),
+        };
+        match outcome {
+            Err(RunError::Observer(Stopped::Asked)) => Ok(Outcome::Stopped(kept)),
+            Err(RunError::Observer(Stopped::Writer(error))) => Err(error.into()),
+            Err(error) => Err(SingleError::Run {
+                cause: error.to_string(),
+                kept,
+            }),
+            Ok(()) => Ok(Outcome::Complete(path.to_owned())),
+        }
+    }
 }
 
 impl Observer for Watch<'_> {
     type Error = Stopped;
 
     fn record(&mut self, record: &Record, restart: &dyn Fn() -> Restart) -> Result<(), Stopped> {
-        match self.sink.push(record, restart()).map_err(Stopped::Writer)? {
+        let delivery = self.sink.push(record, restart());
+        let segments = self.sink.segments();
+        if segments > self.saved {
+            self.saved = segments;
+            self.follower.told(&Event::Saved { segments });
+        }
+        match delivery.map_err(Stopped::Writer)? {
             Delivery::Taken => Ok(()),
             Delivery::WriterGone => Err(Stopped::WriterGone),
         }
     }
 
+    fn spun_up(&mut self, years: u32, of: u32) -> Result<(), Stopped> {
+        asked(self.follower.spun_up(years, of))
+    }
+
     fn passed(&mut self, years: f64) -> Result<(), Stopped> {
-        self.progress.passed(years);
-        Ok(())
+        asked(self.follower.passed(years))
     }
 }
 
-/// The table of everything in the file.
-fn schema(
-    experiment: &Experiment,
-    model: &Model,
-    setting: &Setting,
-    arguments: &[String],
-) -> Result<Schema, SingleError> {
-    let run = &experiment.run;
-    let levels =
-        run.physics.ocean_column.as_ref().and_then(|p| {
-            ColumnLevels::new(p.levels.count, p.levels.depth_m, p.levels.first_m).ok()
-        });
-    let coast = run
-        .physics
-        .equatorial_pacific
-        .as_ref()
-        .map(|p| &p.coast.coastal_latitudes_deg);
-    let axes = AxisValues {
-        by_latitude: fixed(setting),
-        latitude_edges_deg: setting.surface.bands.edge_deg().to_vec(),
-        depth_edges_m: levels.map(|l| l.edge_m().to_vec()).unwrap_or_default(),
-        month_edges_year: Calendar.month_bounds_fraction().to_vec(),
-        month_lengths_day: Calendar.month_lengths_days().to_vec(),
-        coastal_latitudes_deg: coast.cloned().unwrap_or_default(),
-    };
-    let mut variables = model_variables();
-    variables.extend(model.components().iter().flat_map(|c| c.variables()));
-    Ok(Schema {
-        axes,
-        variables,
-        global: global(experiment, arguments)?,
-    })
-}
-
-/// What weights and masks need: area, land fraction and elevation of the bands.
-fn fixed(setting: &Setting) -> Vec<FixedField> {
-    let surface = &setting.surface;
-    let field = |name, units, long_name, standard_name, values: &[f64]| FixedField {
-        name,
-        units,
-        long_name,
-        standard_name,
-        values: values.to_vec(),
-    };
-    let (area, land) = (surface.bands.area_m2(), &surface.land_fraction);
-    let height = &surface.land_elevation_m;
-    vec![
-        field("band_area", "m2", "area of the band", "cell_area", area),
-        field(
-            "land_fraction",
-            "1",
-            "land fraction",
-            "land_area_fraction",
-            land,
-        ),
-        field(
-            "land_elevation",
-            "m",
-            "mean elevation of the land",
-            "surface_altitude",
-            height,
-        ),
-    ]
-}
-
-fn global(
-    experiment: &Experiment,
-    arguments: &[String],
-) -> Result<Vec<(String, String)>, SingleError> {
-    let provenance = Provenance::new(arguments, &experiment.inputs()?);
-    let slow = experiment.run.time.slow_years_per_seasonal_year;
-    let steps = experiment.run.grid.steps_per_year;
-    let texts = [
-        ("title", experiment.run.title.clone()),
-        ("institution", "not given".to_owned()),
-        ("history", provenance.command_line.clone()),
-        ("references", "equations and sources: the module documentation of Orbicline; numbers and sources: the attribute configuration".to_owned()),
-        ("comment", format!(
-            "A zonal energy-balance climate with a tropical ocean column, for hypotheses about orbital forcing; not for forecasts, design or safety decisions. Ages are kyr before 1950 CE, records are means over age_bnds. One seasonal year stands for {slow} year(s) of orbit and ocean column (M = {slow}); {steps} steps a year."
-        )),
-        ("slow_years_per_seasonal_year", slow.to_string()),
-        ("configuration", experiment.tree.resolved_toml()?),
-    ];
-    let texts = texts.map(|(name, text)| (name.to_owned(), text));
-    Ok(texts.into_iter().chain(provenance.attributes()).collect())
+fn asked(wish: ControlFlow<()>) -> Result<(), Stopped> {
+    match wish {
+        ControlFlow::Continue(()) => Ok(()),
+        ControlFlow::Break(()) => Err(Stopped::Asked),
+    }
 }
 
 /// The name a run gets when none is given: the configuration's own, in the folder `out`.

@@ -1,6 +1,7 @@
 //! The run's calendar of years: from an older to a younger age in whole records.
 
 use serde::{Deserialize, Serialize};
+use std::fmt;
 
 /// Times of a run in a configuration. Ages are kyr before 1950 CE.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
@@ -20,7 +21,7 @@ pub struct TimeSpec {
 
 /// Most years that slow components may advance in one seasonal year; beyond some hundred the
 /// coupling by annual means is wrong anyway.
-const LARGEST_PACE_YR: f64 = 1000.0;
+pub const LARGEST_PACE_YR: u32 = 1000;
 
 /// Years at the start with the forcing held; not part of the run.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
@@ -32,6 +33,13 @@ pub struct SpinUp {
     pub slow_years_per_seasonal_year: f64,
     /// Years afterwards with nothing accelerated.
     pub settling_yr: u32,
+}
+
+impl SpinUp {
+    /// Seasonal years altogether.
+    pub fn years(self) -> u32 {
+        self.seasonal_yr.saturating_add(self.settling_yr)
+    }
 }
 
 /// Times that make no run.
@@ -120,7 +128,7 @@ impl Plan {
                 spec.spin_up.slow_years_per_seasonal_year,
             ),
         ] {
-            if value > LARGEST_PACE_YR {
+            if value > f64::from(LARGEST_PACE_YR) {
                 wrong.push(PlanError::Pace { key, value });
             }
         }
@@ -182,6 +190,11 @@ impl Plan {
         self.records * self.seasonal_per_record
     }
 
+    /// Seasonal years after which so many records are complete.
+    pub fn years_of_records(&self, records: u64) -> u64 {
+        records * self.seasonal_per_record
+    }
+
     /// Length of the run, years.
     pub fn total_yr(&self) -> f64 {
         self.end_yr(self.seasonal_years() - 1)
@@ -210,6 +223,21 @@ impl Plan {
             self.start_kyr - (end - length) / 1000.0,
             self.start_kyr - end / 1000.0,
         ]
+    }
+}
+
+impl fmt::Display for Plan {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let seasonal = self.seasonal_years();
+        let end_kyr = self.record_bounds_kyr(seasonal - 1)[1];
+        write!(
+            f,
+            "{:.3} to {end_kyr:.3} kyr before 1950, {} records of {:.0} years, {seasonal} seasonal years (M = {})",
+            self.start_kyr,
+            self.records,
+            self.total_yr() / self.records as f64,
+            self.slow_years
+        )
     }
 }
 

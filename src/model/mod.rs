@@ -114,18 +114,24 @@ impl Model {
     /// Brings the model near balance at the age where a run starts.
     ///
     /// # Errors
-    /// When the forcing does not reach there or the physics breaks down.
-    pub fn spin_up<E: std::error::Error>(
+    /// When the forcing does not reach there, the physics breaks down, or the observer stops it.
+    pub fn spin_up<O: Observer>(
         &mut self,
         age_kyr: f64,
         spin_up: SpinUp,
-    ) -> Result<(), RunError<E>> {
-        for _ in 0..spin_up.seasonal_yr {
-            self.held_year(age_kyr, spin_up.slow_years_per_seasonal_year)?;
-        }
-        // Years with nothing accelerated let what was accelerated settle.
-        for _ in 0..spin_up.settling_yr {
-            self.held_year(age_kyr, 1.0)?;
+        observer: &mut O,
+    ) -> Result<(), RunError<O::Error>> {
+        let (fast, all) = (spin_up.seasonal_yr, spin_up.years());
+        for year in 0..all {
+            // Years with nothing accelerated let what was accelerated settle.
+            let slow_years = if year < fast {
+                spin_up.slow_years_per_seasonal_year
+            } else {
+                1.0
+            };
+            self.held_year(age_kyr, slow_years)?;
+            let seen = observer.spun_up(year + 1, all);
+            seen.map_err(RunError::Observer)?;
         }
         for component in &mut self.components {
             component.begin_run();

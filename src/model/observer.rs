@@ -18,11 +18,31 @@ pub trait Observer {
     fn record(&mut self, record: &Record, restart: &dyn Fn() -> Restart)
     -> Result<(), Self::Error>;
 
+    /// So many of all seasonal years of the spin-up are done.
+    ///
+    /// # Errors
+    /// Whatever stops the run.
+    fn spun_up(&mut self, _years: u32, _of: u32) -> Result<(), Self::Error> {
+        Ok(())
+    }
+
     /// So many years of the run have passed.
     ///
     /// # Errors
     /// Whatever stops the run.
     fn passed(&mut self, _years: f64) -> Result<(), Self::Error> {
+        Ok(())
+    }
+}
+
+/// Looks at nothing.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct Nobody;
+
+impl Observer for Nobody {
+    type Error = std::convert::Infallible;
+
+    fn record(&mut self, _: &Record, _: &dyn Fn() -> Restart) -> Result<(), Self::Error> {
         Ok(())
     }
 }

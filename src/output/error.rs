@@ -17,8 +17,8 @@ pub enum OutputError {
     },
     /// Segments of an earlier run lie beside the output.
     #[error(
-        "{count} segment file(s) of an earlier, unfinished run lie beside {path} (first: {first}): \
-         keep them by choosing another output, or allow overwriting, which deletes them"
+        "{count} segment file(s) of an unfinished run lie beside {path} (first: {first}): \
+         go on with that run (--resume), choose another output, or delete them (--overwrite)"
     )]
     StaleSegments {
         /// The output.
@@ -27,6 +27,15 @@ pub enum OutputError {
         count: usize,
         /// The first of them.
         first: PathBuf,
+    },
+    /// A segment of an unfinished run is gone.
+    #[error(
+        "{path} is missing, and the run cannot go on without it: bring it back, or start anew \
+         (--overwrite)"
+    )]
+    MissingSegment {
+        /// The segment.
+        path: PathBuf,
     },
     /// The output path cannot name a file.
     #[error("{path} cannot be an output file: {reason}")]

@@ -48,6 +48,23 @@ impl Block {
             columns,
         }
     }
+
+    /// The records again, in order. Values come back as they were stored.
+    pub(crate) fn records(&self, schema: &Schema) -> Vec<Record> {
+        let sizes: Vec<usize> = schema.variables.iter().map(|v| schema.size(v)).collect();
+        let record = |(n, &age_kyr): (usize, &f64)| {
+            let own = self.columns.iter().zip(&sizes);
+            Record {
+                age_kyr,
+                age_bounds_kyr: [self.bounds[2 * n], self.bounds[2 * n + 1]],
+                values: own
+                    .flat_map(|(column, size)| &column[n * size..(n + 1) * size])
+                    .copied()
+                    .collect(),
+            }
+        };
+        self.age.iter().enumerate().map(record).collect()
+    }
 }
 
 /// A run file being written.
@@ -61,7 +78,20 @@ pub(crate) struct Layout {
 impl Layout {
     /// Creates the file with everything that does not depend on the records.
     pub(crate) fn create(path: &Path, schema: &Schema) -> Result<Self> {
-        let mut file = NetCdfFile::create(path)?;
+        Self::define(NetCdfFile::create(path)?, schema)
+    }
+
+    /// The same in memory only, to see how large it becomes.
+    pub(crate) fn in_memory(schema: &Schema) -> Result<Self> {
+        Self::define(NetCdfFile::in_memory()?, schema)
+    }
+
+    /// Size so far, bytes.
+    pub(crate) fn size_bytes(&self) -> Result<u64> {
+        self.file.size_bytes()
+    }
+
+    fn define(mut file: NetCdfFile, schema: &Schema) -> Result<Self> {
         file.text(None, "Conventions", CONVENTIONS)?;
         for (name, value) in &schema.global {
             file.text(None, name, value)?;

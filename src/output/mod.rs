@@ -1,21 +1,25 @@
 //! Run files: HDF5 that opens as NetCDF-4 and follows CF 1.11.
 //!
-//! [`schema`] is the one table of dimensions, coordinates and metadata; [`netcdf4`] makes HDF5
+//! [`claim`] takes an output for one run; [`schema`] is the one table of dimensions, coordinates and metadata; [`netcdf4`] makes HDF5
 //! conform to the NetCDF-4 format; [`writer`] takes records and keeps a killed run's data in
 //! segment files; [`reader`] reads it all back.
 //!
 //! Sources: HDF5 Dimension Scale specification, NetCDF-4 format specification (NetCDF User's
 //! Guide, appendix "File Format Specifications"), CF Conventions 1.11.
 
+pub mod claim;
 mod error;
+pub mod journal;
 mod layout;
 pub mod netcdf4;
 pub mod reader;
 pub mod schema;
 mod segments;
+pub mod size;
 pub mod writer;
 
+pub use claim::{Claim, Overwrite};
 pub use error::{OutputError, Result};
 pub use reader::RunFile;
 pub use schema::{AxisValues, Schema};
-pub use writer::{Overwrite, RunWriter};
+pub use writer::RunWriter;

@@ -49,6 +49,16 @@ struct Stored {
     kind: Kind,
 }
 
+/// Bytes by which a file in memory grows; its size is known to that.
+const MEMORY_STEP: usize = 4096;
+
+/// Where a file lies.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Place {
+    Disk,
+    Memory,
+}
+
 /// A NetCDF-4 file being written.
 pub struct NetCdfFile {
     path: PathBuf,
@@ -63,8 +73,36 @@ impl NetCdfFile {
     /// # Errors
     /// If HDF5 cannot create it.
     pub fn create(path: &Path) -> Result<Self> {
+        Self::make(path, Place::Disk)
+    }
+
+    /// Creates a file in memory that is gone when this is dropped.
+    ///
+    /// # Errors
+    /// If HDF5 cannot create it.
+    pub fn in_memory() -> Result<Self> {
+        Self::make(Path::new("(memory).nc"), Place::Memory)
+    }
+
+    /// Size so far, with all that was written, bytes.
+    ///
+    /// # Errors
+    /// If HDF5 cannot write.
+    pub fn size_bytes(&self) -> Result<u64> {
+        let flushed = self.file.flush();
+        flushed.map_err(hdf5_at(&self.path, "flush"))?;
+        Ok(self.file.size())
+    }
+
+    fn make(path: &Path, place: Place) -> Result<Self> {
         let file = File::with_options()
-            .with_fapl(|p| p.libver_bounds(LibraryVersion::V18, LibraryVersion::V18))
+            .with_fapl(|p| {
+                let p = p.libver_bounds(LibraryVersion::V18, LibraryVersion::V18);
+                match place {
+                    Place::Disk => p,
+                    Place::Memory => p.core_options(MEMORY_STEP, false),
+                }
+            })
             .with_fcpl(|p| {
                 p.obj_track_times(false)
                     .attr_creation_order(AttrCreationOrder::Indexed)

@@ -6,6 +6,7 @@
 //! segment. Each segment is a NetCDF-4 file of its own, with the restart state.
 
 use std::fs::{self, File, OpenOptions, TryLockError};
+use std::os::unix::fs::MetadataExt;
 use std::path::{Path, PathBuf};
 
 use super::error::{OutputError, Result, io_at};
@@ -106,8 +107,7 @@ pub(crate) fn prepare(output: &Path) -> Result<()> {
     Ok(())
 }
 
-/// Holds an output for one run. The lock is the system's, so it ends with the process; the empty
-/// file that carries it may stay behind after a kill and means nothing then.
+/// Holds an output for one run; see [`super::claim`].
 #[derive(Debug)]
 pub(crate) struct Lock {
     file: File,
@@ -124,12 +124,23 @@ pub(crate) fn lock(output: &Path) -> Result<Lock> {
         .open(&path);
     let file = file.map_err(io_at(&path, "create a file in the output folder:"))?;
     match file.try_lock() {
+        // A run that ended meanwhile deletes its file: a lock on a deleted file keeps nobody away.
+        Ok(()) if !is_same(&file, &path) => lock(output),
         Ok(()) => Ok(Lock { file, path }),
         Err(TryLockError::WouldBlock) => Err(OutputError::BadPath {
             path: output.to_owned(),
             reason: "another run is writing it; wait for it or choose another output",
         }),
         Err(TryLockError::Error(error)) => Err(io_at(&path, "lock")(error)),
+    }
+}
+
+/// Whether `path` names the file that is open.
+fn is_same(file: &File, path: &Path) -> bool {
+    let identity = |m: &fs::Metadata| (m.dev(), m.ino());
+    match (file.metadata(), fs::metadata(path)) {
+        (Ok(open), Ok(named)) => identity(&open) == identity(&named),
+        _ => false,
     }
 }
 

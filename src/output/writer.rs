@@ -2,16 +2,20 @@
 //!
 //! Format facts: 64 records fill a chunk and make a segment (see `segments`); the merged file
 //! holds the records of all segments, in chunks of 64, and the last restart state. Merging reads
-//! one segment at a time, so memory does not grow with the run.
+//! one segment at a time, so memory does not grow with the run. A segment that is not full yet is
+//! saved when a minute has passed since the last one, or when asked, and replaced by a longer one
+//! later: a killed run loses at most 64 records and at most a minute, or one record when it takes longer.
 //!
 //! Rules: an existing output, or segments of an unfinished run beside it, are refused unless
-//! overwriting is allowed. Allowed, segments are deleted at the start; an existing output stays
-//! until the new one is complete and takes its name.
+//! overwriting is allowed or the run goes on. Allowed, segments are deleted at the start; an
+//! existing output stays until the new one is complete and takes its name.
 //!
 //! Sources: NetCDF-4 format specification; CF 1.11; POSIX rename.
 
 use std::path::{Path, PathBuf};
+use std::time::{Duration, Instant};
 
+use super::claim::{Claim, Overwrite};
 use super::error::{OutputError, Result};
 use super::layout::{Block, CHUNK, Layout, Restart};
 use super::netcdf4::narrow;
@@ -23,94 +27,149 @@ use crate::series::Record;
 #[cfg(test)]
 mod tests;
 
-/// What to do with an output that exists already.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Overwrite {
-    /// Report it as an error.
-    Refuse,
-    /// Replace it, and delete segments of an unfinished run.
-    Replace,
-}
+/// Longest time between two saved segments while records come. Saving a few records costs some
+/// ten milliseconds (tuned here).
+const SAVE_AFTER: Duration = Duration::from_mins(1);
 
 /// Writes one run. Dropped without [`RunWriter::finish`], it leaves its segments behind.
 #[derive(Debug)]
 pub struct RunWriter {
-    path: PathBuf,
+    /// Keeps other runs away from this output for as long as the writer lives.
+    claim: Claim,
     schema: Schema,
     overwrite: Overwrite,
     record_size: usize,
-    /// Records since the last segment; those of a full segment stay until the next record.
+    /// Records of the segment that is not full yet.
     buffer: Vec<Record>,
-    /// Whether the buffer holds records that are in no segment yet.
-    unsaved: bool,
+    /// How many of them are in a file already.
+    saved: usize,
+    saved_at: Instant,
     restart: Restart,
-    segments: usize,
-    /// Keeps other runs away from this output for as long as the writer lives.
-    _lock: segments::Lock,
+    /// Full segments.
+    full: usize,
+    last_age_kyr: Option<f64>,
 }
 
 impl RunWriter {
-    /// Checks table and folder, and makes the folder if it is missing.
+    /// Takes an output and begins a new run; see [`RunWriter::begin`].
     ///
     /// # Errors
-    /// If the table is unsound, the output or segments exist and may not be overwritten, or the
-    /// folder cannot be written to.
+    /// As [`RunWriter::begin`], or if the output cannot be taken.
     pub fn create(path: &Path, schema: Schema, overwrite: Overwrite) -> Result<Self> {
         schema.check()?;
-        segments::prepare(path)?;
-        let lock = segments::lock(path)?;
-        refuse_existing(path, overwrite)?;
-        let stale = segments::leftovers(path)?;
-        if let (Some(first), Overwrite::Refuse) = (stale.first(), overwrite) {
-            return Err(OutputError::StaleSegments {
-                path: path.to_owned(),
-                count: stale.len(),
-                first: first.clone(),
-            });
-        }
-        segments::remove(&stale)?;
+        Self::begin(Claim::take(path)?, schema, overwrite)
+    }
+
+    /// Begins a new run.
+    ///
+    /// # Errors
+    /// If the table is unsound, or the output or segments exist and may not be overwritten.
+    pub fn begin(claim: Claim, schema: Schema, overwrite: Overwrite) -> Result<Self> {
+        schema.check()?;
+        claim.refuse(overwrite)?;
+        claim.discard()?;
         let record_size = schema.record_size();
         Ok(Self {
-            path: path.to_owned(),
+            claim,
             schema,
             overwrite,
             record_size,
             buffer: Vec::with_capacity(CHUNK),
-            unsaved: false,
+            saved: 0,
+            saved_at: Instant::now(),
             restart: Restart::new(),
-            segments: 0,
-            _lock: lock,
+            full: 0,
+            last_age_kyr: None,
+        })
+    }
+
+    /// Goes on with an unfinished run, after the last record of its last segment.
+    ///
+    /// # Errors
+    /// If there is no segment, one cannot be read or does not fit the table, or the output exists
+    /// and may not be overwritten.
+    pub fn go_on(claim: Claim, schema: Schema, overwrite: Overwrite) -> Result<Self> {
+        schema.check()?;
+        claim.refuse_output(overwrite)?;
+        let files = claim.segments()?;
+        let Some(last) = files.last() else {
+            let path = claim.path().to_owned();
+            return Err(OutputError::Empty { path });
+        };
+        let last = RunFile::open(last)?;
+        let block = last.block(&schema)?;
+        let restart = last.restart()?;
+        drop(last);
+        let mut buffer = block.records(&schema);
+        let mut full = files.len() - 1;
+        let last_age_kyr = buffer.last().map(|r| r.age_kyr);
+        if buffer.len() == CHUNK {
+            full += 1;
+            buffer.clear();
+        }
+        Ok(Self {
+            record_size: schema.record_size(),
+            claim,
+            schema,
+            overwrite,
+            saved: buffer.len(),
+            buffer,
+            saved_at: Instant::now(),
+            restart,
+            full,
+            last_age_kyr,
         })
     }
 
     /// Takes a record, and the states of the components at its younger end. Every 64th record
-    /// makes a segment.
+    /// makes a segment, and so does the first after a minute.
     ///
     /// # Errors
     /// If record or state do not fit the file (the record is then not taken), or a segment cannot
     /// be written (the next call tries again; nothing is lost).
     pub fn push(&mut self, record: &Record, restart: &[(String, Vec<f64>)]) -> Result<()> {
         if let Err(problem) = self.check_record(record) {
-            let number = self.taken();
             return Err(OutputError::Record {
-                path: self.path.clone(),
-                record: number,
+                path: self.claim.path().to_owned(),
+                record: self.records(),
                 problem,
             });
         }
         self.check_restart(restart)?;
         if self.buffer.len() == CHUNK {
-            self.write_unsaved()?; // Only after an earlier attempt failed.
-            self.buffer.clear();
+            self.save()?; // Only after an earlier attempt failed.
         }
         self.restart = restart.to_vec();
+        self.last_age_kyr = Some(record.age_kyr);
         self.buffer.push(record.clone());
-        self.unsaved = true;
-        if self.buffer.len() == CHUNK {
-            self.write_unsaved()
+        if self.buffer.len() == CHUNK || self.saved_at.elapsed() >= SAVE_AFTER {
+            self.save()
         } else {
             Ok(())
         }
+    }
+
+    /// Writes the records that are in no segment yet into one, so that the run can go on later.
+    ///
+    /// # Errors
+    /// If the segment cannot be written; the records are kept, and the next call tries again.
+    pub fn save(&mut self) -> Result<()> {
+        if self.saved < self.buffer.len() {
+            let path = self.claim.path();
+            let temporary = segments::temporary(path, self.full);
+            let layout = Layout::create(&temporary, &self.schema)?;
+            layout.write(0, &Block::gather(&self.schema, &self.buffer))?;
+            layout.finish(&self.restart)?;
+            segments::seal(&temporary, &segments::path(path, self.full))?;
+            self.saved = self.buffer.len();
+        }
+        self.saved_at = Instant::now();
+        if self.buffer.len() == CHUNK {
+            self.full += 1;
+            self.buffer.clear();
+            self.saved = 0;
+        }
+        Ok(())
     }
 
     /// Writes the remaining records, merges all segments into the output and deletes them.
@@ -119,47 +178,45 @@ impl RunWriter {
     /// If there is no record, the output has come into being meanwhile and may not be
     /// overwritten, or anything cannot be written. Segments then stay.
     pub fn finish(mut self) -> Result<PathBuf> {
-        self.write_unsaved()?;
-        if self.segments == 0 {
-            return Err(OutputError::Empty { path: self.path });
+        self.save()?;
+        let path = self.claim.path().to_owned();
+        if self.segments() == 0 {
+            return Err(OutputError::Empty { path });
         }
-        let temporary = segments::merging(&self.path);
+        let temporary = segments::merging(&path);
         self.merge(&temporary)?;
-        refuse_existing(&self.path, self.overwrite)?;
-        segments::seal(&temporary, &self.path)?;
-        let files: Vec<_> = (0..self.segments)
-            .map(|n| segments::path(&self.path, n))
+        self.claim.refuse_output(self.overwrite)?;
+        segments::seal(&temporary, &path)?;
+        let files: Vec<_> = (0..self.segments())
+            .rev()
+            .map(|n| segments::path(&path, n))
             .collect();
         segments::remove(&files)?;
-        Ok(self.path)
+        Ok(path)
     }
 
-    fn write_unsaved(&mut self) -> Result<()> {
-        if !self.unsaved {
-            return Ok(());
-        }
-        let temporary = segments::temporary(&self.path, self.segments);
-        let layout = Layout::create(&temporary, &self.schema)?;
-        layout.write(0, &Block::gather(&self.schema, &self.buffer))?;
-        layout.finish(&self.restart)?;
-        segments::seal(&temporary, &segments::path(&self.path, self.segments))?;
-        self.segments += 1;
-        self.unsaved = false;
-        Ok(())
+    /// Number of segments on disk.
+    pub fn segments(&self) -> usize {
+        self.full + usize::from(self.saved > 0)
     }
 
-    /// Number of records taken so far.
-    fn taken(&self) -> usize {
-        self.segments * CHUNK + if self.unsaved { self.buffer.len() } else { 0 }
+    /// Number of records taken so far, those of an earlier part of the run included.
+    pub fn records(&self) -> usize {
+        self.full * CHUNK + self.buffer.len()
+    }
+
+    /// State after the last record.
+    pub fn restart(&self) -> &[(String, Vec<f64>)] {
+        &self.restart
     }
 
     fn merge(&self, temporary: &Path) -> Result<()> {
         let layout = Layout::create(temporary, &self.schema)?;
         let mut restart = Restart::new();
-        for number in 0..self.segments {
-            let segment = RunFile::open(&segments::path(&self.path, number))?;
+        for number in 0..self.segments() {
+            let segment = RunFile::open(&segments::path(self.claim.path(), number))?;
             let block = segment.block(&self.schema)?;
-            if block.age.len() != CHUNK && number + 1 < self.segments {
+            if block.age.len() != CHUNK && number + 1 < self.segments() {
                 return Err(OutputError::Shape {
                     path: segment.path().to_owned(),
                     variable: AGE.to_owned(),
@@ -168,7 +225,7 @@ impl RunWriter {
                 });
             }
             layout.write(number * CHUNK, &block)?;
-            if number + 1 == self.segments {
+            if number + 1 == self.segments() {
                 restart = segment.restart()?;
             }
         }
@@ -184,8 +241,7 @@ impl RunWriter {
                 "age {age} kyr is not between its bounds {older} and {younger}"
             ));
         }
-        if let Some(last) = self.buffer.last().filter(|last| last.age_kyr <= age) {
-            let last = last.age_kyr;
+        if let Some(last) = self.last_age_kyr.filter(|last| *last <= age) {
             return Err(format!(
                 "age {age} kyr follows {last}; ages must fall, as time goes on"
             ));
@@ -222,7 +278,7 @@ impl RunWriter {
             } else {
                 continue;
             };
-            let (path, component) = (self.path.clone(), component.clone());
+            let (path, component) = (self.claim.path().to_owned(), component.clone());
             return Err(OutputError::Restart {
                 path,
                 component,
@@ -231,19 +287,4 @@ impl RunWriter {
         }
         Ok(())
     }
-}
-
-fn refuse_existing(path: &Path, overwrite: Overwrite) -> Result<()> {
-    if path.symlink_metadata().is_ok_and(|found| !found.is_file()) {
-        return Err(OutputError::BadPath {
-            path: path.to_owned(),
-            reason: "it is not a regular file (a link or a device); name a file",
-        });
-    }
-    if overwrite == Overwrite::Refuse && path.symlink_metadata().is_ok() {
-        return Err(OutputError::Exists {
-            path: path.to_owned(),
-        });
-    }
-    Ok(())
 }

@@ -1,7 +1,7 @@
 //! Runs the program in a folder of its own.
 
 use std::path::{Path, PathBuf};
-use std::process::Command;
+use std::process::{Command, Output};
 
 /// 140 years in 70 records, more than the 64 of a segment, with little spin-up; `REFERENCE` stands for
 /// the path of the reference configuration.
@@ -19,6 +19,8 @@ settling_yr = 5";
 #[derive(Debug)]
 pub(crate) struct Outcome {
     pub(crate) ok: bool,
+    /// Exit status; none when a signal ended it.
+    pub(crate) code: Option<i32>,
     pub(crate) out: String,
     pub(crate) err: String,
 }
@@ -74,16 +76,26 @@ impl Folder {
         names
     }
 
+    /// The program, ready to be started in this folder.
+    pub(crate) fn command(&self, words: &[&str]) -> Command {
+        let mut command = Command::new(env!("CARGO_BIN_EXE_orbicline"));
+        command.args(words).current_dir(self.0.path());
+        command
+    }
+
     pub(crate) fn orbicline(&self, words: &[&str]) -> Outcome {
-        let output = Command::new(env!("CARGO_BIN_EXE_orbicline"))
-            .args(words)
-            .current_dir(self.0.path())
-            .output()
-            .expect("a program");
-        Outcome {
+        Outcome::of(&self.command(words).output().expect("a program"))
+    }
+}
+
+impl Outcome {
+    pub(crate) fn of(output: &Output) -> Self {
+        let text = |bytes: &[u8]| String::from_utf8(bytes.to_vec()).expect("UTF-8");
+        Self {
             ok: output.status.success(),
-            out: String::from_utf8(output.stdout).expect("UTF-8"),
-            err: String::from_utf8(output.stderr).expect("UTF-8"),
+            code: output.status.code(),
+            out: text(&output.stdout),
+            err: text(&output.stderr),
         }
     }
 }

@@ -8,6 +8,7 @@ pub(crate) mod reference;
 use orbicline::config::run::{Built, Experiment};
 use orbicline::forcing::YearForcing;
 use orbicline::model::Model;
+use orbicline::model::observer::Nobody;
 use orbicline::physics::budget::{Account, Quantity};
 use orbicline::physics::exchange::Exchange;
 use orbicline::physics::{Component, PhysicsError};
@@ -45,7 +46,7 @@ pub(crate) fn stepped(edits: &[&str]) -> Model {
         .collect();
     let old = experiment(22.0, &whole);
     let mut before = old.build().expect("a model").model;
-    let spun = before.spin_up::<Infallible>(0.0, old.run.time.spin_up);
+    let spun = before.spin_up(0.0, old.run.time.spin_up, &mut Nobody);
     spun.expect("a spin-up without fault");
     let mut model = experiment(24.5, edits).build().expect("a model").model;
     let restored = model.restore::<Infallible>(&before.restart());

@@ -1,9 +1,10 @@
 //! A run of a second, into a file.
 
 use orbicline::config::run::Experiment;
-use orbicline::experiment::single::{self, Destination, Progress};
-use orbicline::model::clock::Plan;
+use orbicline::experiment::follow::{Event, Follower};
+use orbicline::experiment::single::{self, Begin, Destination, Outcome};
 use orbicline::output::Overwrite;
+use std::ops::ControlFlow;
 use std::path::{Path, PathBuf};
 
 /// 140 years in 70 records: more than the 64 of a segment, with little spin-up.
@@ -17,10 +18,16 @@ pub(crate) const EDITS: [&str; 5] = [
 
 struct Nobody;
 
-impl Progress for Nobody {
-    fn begin(&mut self, _: &Plan) {}
-    fn passed(&mut self, _: f64) {}
-    fn completing(&mut self) {}
+impl Follower for Nobody {
+    fn told(&mut self, _: &Event) {}
+
+    fn spun_up(&mut self, _: u32, _: u32) -> ControlFlow<()> {
+        ControlFlow::Continue(())
+    }
+
+    fn passed(&mut self, _: f64) -> ControlFlow<()> {
+        ControlFlow::Continue(())
+    }
 }
 
 /// The file of a run.
@@ -28,8 +35,12 @@ pub(crate) fn run(experiment: &Experiment, path: &Path, threads: usize) -> PathB
     let destination = Destination {
         path: path.to_owned(),
         overwrite: Overwrite::Refuse,
+        begin: Begin::Anew,
         threads,
     };
     let words = ["orbicline", "run"].map(str::to_owned);
-    single::run(experiment, &destination, &words, &mut Nobody).expect("a run")
+    match single::run(experiment, &destination, &words, &mut Nobody).expect("a run") {
+        Outcome::Complete(path) => path,
+        other => panic!("{other:?}"),
+    }
 }

@@ -1,7 +1,7 @@
 //! Melting ice: its surface reaches the melting point in summer and does not pass it. See README.md.
 
 use crate::energy_balance_set_up::reference;
-use std::convert::Infallible;
+use orbicline::model::observer::Nobody;
 
 /// Monthly values of a variable of the energy balance, `[month][band]`.
 fn monthly(values: &[f64], names: &[&str], name: &str, bands: usize) -> Vec<f64> {
@@ -17,7 +17,7 @@ fn analytic_melting_ice_stays_at_the_melting_point() {
     let built = experiment.build().unwrap();
     let (mut model, bands) = (built.model, built.setting.surface.bands.len());
     model
-        .spin_up::<Infallible>(0.0, experiment.run.time.spin_up)
+        .spin_up(0.0, experiment.run.time.spin_up, &mut Nobody)
         .unwrap();
     let part = &model.components()[0];
     let (mut values, names) = (Vec::new(), part.variables());

@@ -3,6 +3,7 @@
 use crate::csv::orbit;
 use crate::energy_balance_set_up::{reference, run_with};
 use orbicline::grid::calendar::{Calendar, MONTHS};
+use orbicline::model::observer::Nobody;
 use orbicline::orbit::insolation::InsolationTable;
 use orbicline::physics::energy_balance::EnergyBalance;
 use orbicline::physics::exchange::Exchange;
@@ -68,9 +69,7 @@ fn frozen_column() -> Exchange {
     let experiment = reference(&[]);
     let mut model = experiment.build().unwrap().model;
     let spin_up = experiment.run.time.spin_up;
-    model
-        .spin_up::<std::convert::Infallible>(0.0, spin_up)
-        .unwrap();
+    model.spin_up(0.0, spin_up, &mut Nobody).unwrap();
     model.exchange().clone()
 }
 

@@ -3,6 +3,7 @@
 use crate::csv;
 use crate::energy_balance_set_up::mean_legendre;
 use orbicline::config::run::{Built, Experiment};
+use orbicline::model::observer::Nobody;
 use orbicline::series::Axis;
 use std::collections::BTreeMap;
 use std::convert::Infallible;
@@ -41,7 +42,7 @@ pub(crate) fn climate(edits: &[&str]) -> Climate {
     let time = &experiment.run.time;
     let model = &mut built.model;
     model
-        .spin_up::<Infallible>(time.start_kyr, time.spin_up)
+        .spin_up(time.start_kyr, time.spin_up, &mut Nobody)
         .unwrap();
     model.held_year::<Infallible>(time.start_kyr, 1.0).unwrap();
     Climate {

@@ -1,0 +1,122 @@
+//! What the file of a run holds: its table of variables, axes and attributes.
+//!
+//! Source: CF Conventions 1.11 for the attributes; where the numbers come from is told by the
+//! configuration, which is stored whole.
+
+use super::resume::DATA;
+use crate::config::run::Experiment;
+use crate::config::{ConfigError, Provenance};
+use crate::grid::calendar::Calendar;
+use crate::grid::column::ColumnLevels;
+use crate::model::Model;
+use crate::model::records::model_variables;
+use crate::output::schema::{AxisValues, FixedField, Schema};
+use crate::physics::Setting;
+
+/// The commands that made a file.
+#[derive(Clone, Debug)]
+pub(super) struct History<'a> {
+    /// Those before, one to a line; empty for a run in one go.
+    pub(super) earlier: String,
+    /// The words of this one, the program's name first.
+    pub(super) command: &'a [String],
+}
+
+/// The table of everything in the file.
+///
+/// # Errors
+/// When a file of the configuration cannot be read again.
+pub(super) fn schema(
+    experiment: &Experiment,
+    model: &Model,
+    setting: &Setting,
+    history: &History<'_>,
+) -> Result<Schema, ConfigError> {
+    let run = &experiment.run;
+    let levels =
+        run.physics.ocean_column.as_ref().and_then(|p| {
+            ColumnLevels::new(p.levels.count, p.levels.depth_m, p.levels.first_m).ok()
+        });
+    let coast = run
+        .physics
+        .equatorial_pacific
+        .as_ref()
+        .map(|p| &p.coast.coastal_latitudes_deg);
+    let axes = AxisValues {
+        by_latitude: fixed(setting),
+        latitude_edges_deg: setting.surface.bands.edge_deg().to_vec(),
+        depth_edges_m: levels.map(|l| l.edge_m().to_vec()).unwrap_or_default(),
+        month_edges_year: Calendar.month_bounds_fraction().to_vec(),
+        month_lengths_day: Calendar.month_lengths_days().to_vec(),
+        coastal_latitudes_deg: coast.cloned().unwrap_or_default(),
+    };
+    let mut variables = model_variables();
+    variables.extend(model.components().iter().flat_map(|c| c.variables()));
+    Ok(Schema {
+        axes,
+        variables,
+        global: global(experiment, history)?,
+    })
+}
+
+/// What weights and masks need: area, land fraction and elevation of the bands.
+fn fixed(setting: &Setting) -> Vec<FixedField> {
+    let surface = &setting.surface;
+    let field = |name, units, long_name, standard_name, values: &[f64]| FixedField {
+        name,
+        units,
+        long_name,
+        standard_name,
+        values: values.to_vec(),
+    };
+    let (area, land) = (surface.bands.area_m2(), &surface.land_fraction);
+    let height = &surface.land_elevation_m;
+    vec![
+        field("band_area", "m2", "area of the band", "cell_area", area),
+        field(
+            "land_fraction",
+            "1",
+            "land fraction",
+            "land_area_fraction",
+            land,
+        ),
+        field(
+            "land_elevation",
+            "m",
+            "mean elevation of the land",
+            "surface_altitude",
+            height,
+        ),
+    ]
+}
+
+fn global(
+    experiment: &Experiment,
+    history: &History<'_>,
+) -> Result<Vec<(String, String)>, ConfigError> {
+    let provenance = Provenance::new(history.command, &experiment.inputs()?);
+    let identity = experiment.identity()?;
+    let mut lines: Vec<&str> = history.earlier.lines().collect();
+    // A run that was killed and went on many times by the same command says so once.
+    if lines.last() != Some(&provenance.command_line.as_str()) {
+        lines.push(&provenance.command_line);
+    }
+    let slow = experiment.run.time.slow_years_per_seasonal_year;
+    let steps = experiment.run.grid.steps_per_year;
+    let texts = [
+        ("title", experiment.run.title.clone()),
+        ("institution", "not given".to_owned()),
+        ("history", lines.join("\n")),
+        ("references", "equations and sources: the module documentation of Orbicline; numbers and sources: the attribute configuration".to_owned()),
+        ("comment", format!(
+            "A zonal energy-balance climate with a tropical ocean column, for hypotheses about orbital forcing; not for forecasts, design or safety decisions. Ages are kyr before 1950 CE, records are means over age_bnds. One seasonal year stands for {slow} year(s) of orbit and ocean column (M = {slow}); {steps} steps a year."
+        )),
+        ("slow_years_per_seasonal_year", slow.to_string()),
+        ("configuration_sha256", identity.sha256()),
+        ("configuration", identity.configuration),
+    ];
+    let data = (!identity.data.is_empty()).then_some((DATA, identity.data));
+    let texts = texts.into_iter().chain(data);
+    let texts = texts.map(|(name, text)| (name.to_owned(), text));
+    Ok(texts.chain(provenance.attributes()).collect())
+}

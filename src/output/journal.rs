@@ -1,0 +1,78 @@
+//! The log file beside an output: what was run and what happened, each line with its time (UTC).
+//!
+//! The log is for people; nothing reads it, and nothing in the results depends on its clock.
+
+use super::error::{OutputError, Result};
+use std::fs::{File, OpenOptions};
+use std::io::Write;
+use std::path::{Path, PathBuf};
+use std::time::SystemTime;
+
+/// A log file.
+#[derive(Debug)]
+pub struct Journal {
+    path: PathBuf,
+    file: Option<File>,
+}
+
+/// What becomes of a log that is there already.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Earlier {
+    /// It is replaced.
+    Replace,
+    /// New lines follow it.
+    Keep,
+}
+
+impl Journal {
+    /// The log of an output; nothing is written yet.
+    pub fn beside(output: &Path) -> Self {
+        let mut name = output.as_os_str().to_owned();
+        name.push(".log");
+        Self {
+            path: name.into(),
+            file: None,
+        }
+    }
+
+    /// Opens the file.
+    ///
+    /// # Errors
+    /// When it cannot be opened.
+    pub fn open(&mut self, earlier: Earlier) -> Result<()> {
+        let mut options = OpenOptions::new();
+        match earlier {
+            Earlier::Replace => options.write(true).truncate(true),
+            Earlier::Keep => options.append(true),
+        };
+        let opened = options.create(true).open(&self.path);
+        self.file = Some(opened.map_err(|e| self.trouble(e))?);
+        Ok(())
+    }
+
+    /// Writes lines, each with the time; nothing before the file is open.
+    ///
+    /// # Errors
+    /// When they cannot be written; nothing is written afterwards.
+    pub fn note(&mut self, text: &str) -> Result<()> {
+        let Some(file) = &mut self.file else {
+            return Ok(());
+        };
+        let time = humantime::format_rfc3339_seconds(SystemTime::now());
+        let lines: Vec<_> = text.lines().map(|line| format!("{time} {line}")).collect();
+        let lines = lines.join("\n") + "\n";
+        if let Err(error) = file.write_all(lines.as_bytes()) {
+            self.file = None;
+            return Err(self.trouble(error));
+        }
+        Ok(())
+    }
+
+    fn trouble(&self, source: std::io::Error) -> OutputError {
+        OutputError::Io {
+            action: "write the log",
+            path: self.path.clone(),
+            source,
+        }
+    }
+}
