@@ -237,3 +237,94 @@ fn an_age_beyond_the_orbit_is_told_where_it_was_given() {
     let outcome = refused(&folder, &["short.toml", "--set", "time.start_kyr=1200"]);
     outcome.says(&["--set time.start_kyr=1200: ", "within 1000 kyr"]);
 }
+
+#[test]
+fn a_dry_run_prints_a_configuration_that_makes_the_same_run_and_writes_nothing() {
+    let folder = Folder::new();
+    let words = ["run", "short.toml", "--out", "dry.nc", "--dry-run"];
+    let dry = folder.orbicline(&words);
+    assert!(dry.ok && dry.err.is_empty(), "{dry:?}");
+    assert_eq!(folder.files(), ["short.toml"]);
+    for fragment in [
+        "# 10.140 to 10.000 kyr before 1950, 70 records of 2 years, 140 seasonal years (M = 1)",
+        "# estimate: ",
+        " years/s, file ",
+        "memory ",
+        "# output dry.nc\n",
+        "title = \"A short run\"",
+    ] {
+        assert!(dry.out.contains(fragment), "no {fragment} in\n{}", dry.out);
+    }
+    folder.write("resolved.toml", &dry.out);
+    let again = folder.orbicline(&["run", "resolved.toml", "--out", "dry.nc", "--dry-run"]);
+    let hash = |o: &Outcome| {
+        o.out
+            .lines()
+            .find(|l| l.contains("SHA-256"))
+            .map(str::to_owned)
+    };
+    assert!(
+        hash(&dry).is_some() && hash(&again) == hash(&dry),
+        "{again:?}"
+    );
+}
+
+#[test]
+fn the_estimate_of_the_file_is_near_its_size() {
+    let folder = Folder::new();
+    let outcome = folder.orbicline(&["run", "short.toml", "--out", "short.nc", "-v"]);
+    assert!(outcome.ok, "{outcome:?}");
+    let told = outcome
+        .err
+        .split("file ")
+        .nth(1)
+        .and_then(|t| t.split(" MB").next());
+    let told: f64 = told.and_then(|t| t.parse().ok()).expect("a size");
+    let size = std::fs::metadata(folder.path("short.nc"))
+        .expect("a file")
+        .len() as f64
+        / 1e6;
+    assert!(
+        (told / size - 1.0).abs() < 0.35,
+        "{told} MB told, {size} MB written"
+    );
+}
+
+#[test]
+fn the_log_has_what_happened_and_v_says_it_as_well() {
+    let folder = Folder::new();
+    let words = ["run", "short.toml", "--out", "short.nc", "-v"];
+    let outcome = folder.orbicline(&words);
+    let log = String::from_utf8(folder.read("short.nc.log")).expect("UTF-8");
+    for fragment in [
+        "spin-up of 10 seasonal years done",
+        "merging",
+        "complete: short.nc",
+    ] {
+        assert!(log.contains(fragment), "no {fragment} in\n{log}");
+        assert!(
+            outcome.err.contains(fragment),
+            "no {fragment} in\n{}",
+            outcome.err
+        );
+    }
+    assert!(log.contains("--out short.nc -v") && log.contains(env!("CARGO_PKG_VERSION")));
+    assert!(
+        log.lines()
+            .all(|l| l.as_bytes()[10] == b'T' && l.as_bytes()[19] == b'Z'),
+        "{log}"
+    );
+    // A refused run does not touch the log of the one that is there.
+    assert!(!folder.orbicline(&words).ok);
+    assert_eq!(folder.read("short.nc.log"), log.as_bytes());
+    // A failed one says why in its log.
+    folder.write("deadly.csv", DEADLY);
+    let mut words = vec!["run", "short.toml", "--out", "bad.nc", "--quiet"];
+    words.extend(["--set", "co2={kind=\"table\",path=\"deadly.csv\"}"]);
+    words.extend(["--set", "co2_forcing.co2_forcing_w_m2=500"]);
+    folder
+        .orbicline(&words)
+        .says(&["records, to ", "are kept in segments beside bad.nc"]);
+    let log = String::from_utf8(folder.read("bad.nc.log")).expect("UTF-8");
+    assert!(log.contains("error: at "), "{log}");
+}

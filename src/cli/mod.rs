@@ -18,7 +18,16 @@ use std::process::ExitCode;
     version,
     about,
     max_term_width = 100,
-    arg_required_else_help = true
+    arg_required_else_help = true,
+    after_help = "\
+Examples:
+  The last million years, about a minute:
+    orbicline run configs/last_million_years.toml
+  What a run of your own would cost and use:
+    orbicline run my.toml --dry-run
+
+Configurations begin with `extends = \"reference.toml\"` and give only what differs; ages are kyr
+before 1950. The model is for testing hypotheses; it makes no forecasts."
 )]
 struct Arguments {
     #[command(subcommand)]

@@ -71,7 +71,7 @@ impl fmt::Display for Event {
                 write!(f, "there is no unfinished run to go on with; begins anew")
             }
             Self::SpunUp { years } => write!(f, "spin-up of {years} seasonal years done"),
-            Self::Saved { segments } => write!(f, "{segments} segments saved"),
+            Self::Saved { segments } => write!(f, "segments saved: {segments}"),
             Self::Completing => write!(f, "all years done; merging the segments"),
             Self::Completed { path } => write!(f, "complete: {}", path.display()),
         }
