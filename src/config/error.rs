@@ -95,18 +95,33 @@ pub enum ConfigError {
     /// A key or a choice that the program does not know.
     #[error("{0}")]
     Unknown(Box<Unknown>),
-    /// A key is missing.
-    #[error(
-        "{place}: missing key `{key}` in {}; add it, or `extends` a file that has it",
-        table_name(table)
-    )]
+    /// Keys of one table are missing.
+    #[error("{place}: missing {} in {}; {}", counted(keys), table_name(table), way_out(keys))]
     Missing {
-        /// Where its table begins.
+        /// Where the table begins.
         place: Place,
-        /// The key.
-        key: String,
+        /// The keys, at least one.
+        keys: Vec<String>,
         /// Key path of the table; empty at the top.
         table: String,
+    },
+    /// An edit changed the `kind` of a table and left the keys of the kind before.
+    #[error(
+        "{place}: `{table}.kind` cannot change alone, since this kind has its own keys; give the \
+         whole table, such as --set '{table}={{kind=\"{kind}\"{}}}'",
+        blanks(keys)
+    )]
+    KindAlone {
+        /// The edit.
+        place: Place,
+        /// Key path of the table.
+        table: String,
+        /// The kind asked for.
+        kind: String,
+        /// Keys that it needs.
+        keys: Vec<String>,
+        /// The key that is missing, or of the kind before.
+        fault: String,
     },
     /// A value of the wrong type or form.
     #[error("{place}: `{key}`: {message}")]
@@ -118,12 +133,59 @@ pub enum ConfigError {
         /// What was found and what was expected.
         message: String,
     },
+    /// More than one thing is wrong.
+    #[error("{}", lines(faults))]
+    Several {
+        /// Each of them, at least two.
+        faults: Vec<ConfigError>,
+    },
     /// The merged experiment cannot be written as TOML.
     #[error("the merged experiment cannot be written as TOML: {message}")]
     Write {
         /// What the writer said.
         message: String,
     },
+}
+
+impl ConfigError {
+    /// One error for several; what is wrong in the same way in one table is said once.
+    pub(super) fn several(first: Self, others: Vec<Self>) -> Self {
+        let mut told = vec![first];
+        for fault in others {
+            if !told.iter_mut().any(|earlier| earlier.takes_in(&fault)) {
+                told.push(fault);
+            }
+        }
+        if told.len() > 1 {
+            return Self::Several { faults: told };
+        }
+        told.remove(0)
+    }
+
+    /// Whether this error now says what `other` says about the same table.
+    fn takes_in(&mut self, other: &Self) -> bool {
+        let (mine, theirs) = match (self, other) {
+            (
+                Self::Missing { keys, table, .. },
+                Self::Missing {
+                    keys: k, table: t, ..
+                },
+            )
+            | (
+                Self::KindAlone { keys, table, .. },
+                Self::KindAlone {
+                    keys: k, table: t, ..
+                },
+            ) if table == t => (keys, k),
+            _ => return false,
+        };
+        for key in theirs {
+            if !mine.contains(key) {
+                mine.push(key.clone());
+            }
+        }
+        true
+    }
 }
 
 /// A key or a choice that the program does not know.
@@ -158,6 +220,28 @@ fn wanted_at(place: Option<&Place>) -> String {
 fn chain_text(chain: &[PathBuf]) -> String {
     let names: Vec<_> = chain.iter().map(|f| f.display().to_string()).collect();
     names.join(" -> ")
+}
+
+fn lines(faults: &[ConfigError]) -> String {
+    let lines: Vec<_> = faults.iter().map(ToString::to_string).collect();
+    lines.join("\n")
+}
+
+/// "key `a`" or "keys `a`, `b`".
+fn counted(keys: &[String]) -> String {
+    let names: Vec<_> = keys.iter().map(|key| format!("`{key}`")).collect();
+    let noun = if keys.len() == 1 { "key" } else { "keys" };
+    format!("{noun} {}", names.join(", "))
+}
+
+fn way_out(keys: &[String]) -> String {
+    let it = if keys.len() == 1 { "it" } else { "them" };
+    format!("add {it}, or `extends` a file that has {it}")
+}
+
+/// Places for the values of keys in an inline table.
+fn blanks(keys: &[String]) -> String {
+    keys.iter().map(|key| format!(", {key}=...")).collect()
 }
 
 fn suggestion(nearest: Option<&str>) -> String {

@@ -9,6 +9,7 @@ pub mod error;
 mod origin;
 pub mod provenance;
 pub mod read;
+mod repair;
 pub mod run;
 mod set;
 mod typed;

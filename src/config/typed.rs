@@ -6,6 +6,7 @@
 
 use super::error::{ConfigError, Place, Unknown, nearest};
 use super::origin::{Origins, join, one_line, parent};
+use super::read::KIND;
 use serde::de::DeserializeOwned;
 use toml::{Table, Value};
 
@@ -27,11 +28,14 @@ pub(super) fn read<T: DeserializeOwned>(
 fn explain(table: &Table, origins: &Origins, path: &str, message: &str) -> ConfigError {
     let message = one_line(message);
     if let Some(key) = quoted_after(&message, "missing field ") {
-        return ConfigError::Missing {
-            place: place(origins, path),
-            key: key.to_owned(),
-            table: path.to_owned(),
-        };
+        let keys = vec![key.to_owned()];
+        return kind_alone(table, origins, path, key, &keys).unwrap_or_else(|| {
+            ConfigError::Missing {
+                place: place(origins, path),
+                keys,
+                table: path.to_owned(),
+            }
+        });
     }
     if let Some(name) = quoted_after(&message, "unknown field ") {
         let above = match parent(path) {
@@ -44,11 +48,13 @@ fn explain(table: &Table, origins: &Origins, path: &str, message: &str) -> Confi
             key => only_below(table, above, &named).unwrap_or(key),
         };
         let above = parent(&key).unwrap_or(above);
-        return unknown(origins, "key", name, above, &key, &message);
+        let known: Vec<_> = names_in(allowed_in(&message)).map(str::to_owned).collect();
+        return kind_alone(table, origins, above, name, &known)
+            .unwrap_or_else(|| unknown(origins, "key", name, above, &key, &message));
     }
     if let Some(name) = quoted_after(&message, "unknown variant ") {
         let at = if has_kind(table, path, name) {
-            join(path, "kind")
+            join(path, KIND)
         } else {
             path.to_owned()
         };
@@ -73,6 +79,8 @@ fn plain(message: &str) -> String {
         tagged if tagged.starts_with("internally tagged enum") => {
             "a table with a `kind`, such as {kind=\"...\"} (in quotes on the command line)"
         }
+        tagged if tagged.starts_with("struct ") => "a table",
+        "variant identifier" => "a text that names a choice",
         other => other,
     };
     format!("{found}, expected {expected}")
@@ -125,6 +133,44 @@ fn only_below(table: &Table, path: &str, is_it: &dyn Fn(&str, &Value) -> bool) -
     found.is_empty().then_some(first)
 }
 
+/// The error when `name` is unknown or missing in the table `above` since an edit changed the
+/// `kind` of that table alone.
+fn kind_alone(
+    table: &Table,
+    origins: &Origins,
+    above: &str,
+    name: &str,
+    keys: &[String],
+) -> Option<ConfigError> {
+    let kind = join(above, KIND);
+    let place = origins.get(&kind)?;
+    let written = origins.get(&join(above, name));
+    if !matches!(place, Place::CommandLine { .. })
+        || matches!(written, Some(Place::CommandLine { .. }))
+    {
+        return None;
+    }
+    Some(ConfigError::KindAlone {
+        place: place.clone(),
+        table: above.to_owned(),
+        kind: at(table, &kind)?.as_str()?.to_owned(),
+        keys: keys.to_vec(),
+        fault: name.to_owned(),
+    })
+}
+
+/// What the reader's message says was expected.
+fn allowed_in(message: &str) -> &str {
+    message
+        .split_once(", ")
+        .map_or("none is known here", |(_, rest)| rest)
+}
+
+/// The names in backquotes.
+pub(super) fn names_in(text: &str) -> impl Iterator<Item = &str> {
+    text.split('`').skip(1).step_by(2)
+}
+
 /// The error for a key or choice that is not known.
 fn unknown(
     origins: &Origins,
@@ -134,16 +180,13 @@ fn unknown(
     at: &str,
     message: &str,
 ) -> ConfigError {
-    let allowed = message
-        .split_once(", ")
-        .map_or("none is known here", |(_, rest)| rest);
-    let known = allowed.split('`').skip(1).step_by(2);
+    let allowed = allowed_in(message);
     ConfigError::Unknown(Box::new(Unknown {
         place: place(origins, at),
         what,
         name: name.to_owned(),
         table: table.to_owned(),
-        nearest: nearest(name, known),
+        nearest: nearest(name, names_in(allowed)),
         allowed: allowed.to_owned(),
     }))
 }
@@ -164,7 +207,8 @@ fn quoted_after<'a>(message: &'a str, start: &str) -> Option<&'a str> {
         .next()
 }
 
-fn at<'a>(table: &'a Table, path: &str) -> Option<&'a Value> {
+/// The value at a key path.
+pub(super) fn at<'a>(table: &'a Table, path: &str) -> Option<&'a Value> {
     let mut steps = path.split(['.', '[']).map(|s| s.trim_end_matches(']'));
     let mut value = table.get(steps.next()?)?;
     for step in steps {
@@ -187,7 +231,7 @@ fn has_key(table: &Table, path: &str, name: &str) -> bool {
 
 fn has_kind(table: &Table, path: &str, name: &str) -> bool {
     at(table, path)
-        .and_then(|value| value.get("kind"))
+        .and_then(|value| value.get(KIND))
         .and_then(Value::as_str)
         == Some(name)
 }
