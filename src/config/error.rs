@@ -96,7 +96,12 @@ pub enum ConfigError {
     #[error("{0}")]
     Unknown(Box<Unknown>),
     /// Keys of one table are missing.
-    #[error("{place}: missing {} in {}; {}", counted(keys), table_name(table), way_out(keys))]
+    #[error(
+        "{place}: missing {} in {}; {}",
+        counted(keys),
+        table_name(table),
+        way_out(keys)
+    )]
     Missing {
         /// Where the table begins.
         place: Place,
@@ -106,23 +111,8 @@ pub enum ConfigError {
         table: String,
     },
     /// An edit changed the `kind` of a table and left the keys of the kind before.
-    #[error(
-        "{place}: `{table}.kind` cannot change alone, since this kind has its own keys; give the \
-         whole table, such as --set '{table}={{kind=\"{kind}\"{}}}'",
-        blanks(keys)
-    )]
-    KindAlone {
-        /// The edit.
-        place: Place,
-        /// Key path of the table.
-        table: String,
-        /// The kind asked for.
-        kind: String,
-        /// Keys that it needs.
-        keys: Vec<String>,
-        /// The key that is missing, or of the kind before.
-        fault: String,
-    },
+    #[error("{0}")]
+    KindAlone(Box<KindAlone>),
     /// A value of the wrong type or form.
     #[error("{place}: `{key}`: {message}")]
     Value {
@@ -164,28 +154,51 @@ impl ConfigError {
 
     /// Whether this error now says what `other` says about the same table.
     fn takes_in(&mut self, other: &Self) -> bool {
-        let (mine, theirs) = match (self, other) {
-            (
-                Self::Missing { keys, table, .. },
-                Self::Missing {
-                    keys: k, table: t, ..
-                },
-            )
-            | (
-                Self::KindAlone { keys, table, .. },
-                Self::KindAlone {
-                    keys: k, table: t, ..
-                },
-            ) if table == t => (keys, k),
-            _ => return false,
+        let same = match (&*self, other) {
+            (Self::Missing { table, .. }, Self::Missing { table: other, .. }) => table == other,
+            (Self::KindAlone(alone), Self::KindAlone(other)) => alone.table == other.table,
+            _ => false,
         };
-        for key in theirs {
-            if !mine.contains(key) {
-                mine.push(key.clone());
+        match (self, other) {
+            (Self::Missing { keys, .. }, Self::Missing { keys: others, .. }) if same => {
+                add(keys, others);
             }
+            (Self::KindAlone(alone), Self::KindAlone(other)) if same => {
+                add(&mut alone.keys, &other.keys);
+            }
+            _ => {}
         }
-        true
+        same
     }
+}
+
+/// Adds what is not there yet.
+fn add(keys: &mut Vec<String>, others: &[String]) {
+    for key in others {
+        if !keys.contains(key) {
+            keys.push(key.clone());
+        }
+    }
+}
+
+/// A `kind` changed without the keys that belong to it.
+#[derive(Debug, thiserror::Error)]
+#[error(
+    "{place}: `{table}.kind` cannot change alone, since each kind has its own keys; give the whole \
+     table, such as --set '{table}={{kind=\"{kind}\"{}}}'",
+    blanks(keys)
+)]
+pub struct KindAlone {
+    /// The edit.
+    pub place: Place,
+    /// Key path of the table.
+    pub table: String,
+    /// The kind asked for.
+    pub kind: String,
+    /// Keys that it needs.
+    pub keys: Vec<String>,
+    /// The key that is missing, or of the kind before.
+    pub fault: String,
 }
 
 /// A key or a choice that the program does not know.
@@ -241,7 +254,8 @@ fn way_out(keys: &[String]) -> String {
 
 /// Places for the values of keys in an inline table.
 fn blanks(keys: &[String]) -> String {
-    keys.iter().map(|key| format!(", {key}=...")).collect()
+    let blanks: Vec<_> = keys.iter().map(|key| format!(", {key}=...")).collect();
+    blanks.concat()
 }
 
 fn suggestion(nearest: Option<&str>) -> String {

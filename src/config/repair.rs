@@ -12,7 +12,7 @@ use super::{set, typed};
 use serde::de::DeserializeOwned;
 use toml::{Table, Value};
 
-/// Most faults that are looked for; nobody reads more.
+/// Most faults that are put right, stand-ins' own included; nobody reads more.
 const MOST_FAULTS: usize = 100;
 
 /// A number and a word that stand for what cannot be read. Nobody writes them, so a message that
@@ -36,8 +36,9 @@ fn all<T: DeserializeOwned>(table: &Table, origins: &Origins, first: ConfigError
     };
     let mut found = Vec::new();
     let mut next = copy.repair::<T>(&first);
-    while let Some(fault) = next.filter(|_| found.len() < MOST_FAULTS) {
-        let told = !copy.is_stand_in(&subject(&fault));
+    for _ in 0..MOST_FAULTS {
+        let Some(fault) = next else { break };
+        let told = !copy.is_stand_in(&subject(&fault)) && !fault.to_string().contains(WORD);
         next = copy.repair::<T>(&fault);
         if told {
             found.push(fault);
@@ -63,6 +64,8 @@ impl Copy<'_> {
     /// cannot be put right.
     fn repair<T: DeserializeOwned>(&mut self, fault: &ConfigError) -> Option<ConfigError> {
         let path = subject(fault);
+        // A list is put right as a whole.
+        let path = path.split('[').next().unwrap_or(&path).to_owned();
         match fault {
             ConfigError::Unknown(unknown) if unknown.what == "key" => {
                 self.remove(&path)?;
@@ -77,7 +80,7 @@ impl Copy<'_> {
                 self.stand_ins.push(whole.unwrap_or(&path).to_owned());
                 self.next::<T>()
             }
-            ConfigError::KindAlone { .. } if self.remove(&path).is_some() => self.next::<T>(),
+            ConfigError::KindAlone(_) if self.remove(&path).is_some() => self.next::<T>(),
             _ => self.stand_in::<T>(&path),
         }
     }
@@ -143,7 +146,7 @@ fn subject(fault: &ConfigError) -> String {
             join(&unknown.table, &unknown.name)
         }
         ConfigError::Unknown(unknown) => unknown.table.clone(),
-        ConfigError::KindAlone { table, fault, .. } => join(table, fault),
+        ConfigError::KindAlone(alone) => join(&alone.table, &alone.fault),
         ConfigError::Value { key, .. } => key.clone(),
         _ => String::new(),
     }

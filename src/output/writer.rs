@@ -124,7 +124,7 @@ impl RunWriter {
             return Err(OutputError::Empty { path: self.path });
         }
         let temporary = segments::merging(&self.path);
-        self.merge(&temporary)?;
+        segments::clearing(&temporary, self.merge(&temporary))?;
         refuse_existing(&self.path, self.overwrite)?;
         segments::seal(&temporary, &self.path)?;
         let files: Vec<_> = (0..self.segments)
@@ -139,9 +139,11 @@ impl RunWriter {
             return Ok(());
         }
         let temporary = segments::temporary(&self.path, self.segments);
-        let layout = Layout::create(&temporary, &self.schema)?;
-        layout.write(0, &Block::gather(&self.schema, &self.buffer))?;
-        layout.finish(&self.restart)?;
+        let written = Layout::create(&temporary, &self.schema).and_then(|layout| {
+            layout.write(0, &Block::gather(&self.schema, &self.buffer))?;
+            layout.finish(&self.restart)
+        });
+        segments::clearing(&temporary, written)?;
         segments::seal(&temporary, &segments::path(&self.path, self.segments))?;
         self.segments += 1;
         self.unsaved = false;

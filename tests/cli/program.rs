@@ -19,6 +19,8 @@ settling_yr = 5";
 #[derive(Debug)]
 pub(crate) struct Outcome {
     pub(crate) ok: bool,
+    /// Exit status; none after a signal.
+    pub(crate) code: Option<i32>,
     pub(crate) out: String,
     pub(crate) err: String,
 }
@@ -65,7 +67,12 @@ impl Folder {
 
     /// Names of all files, sorted.
     pub(crate) fn files(&self) -> Vec<String> {
-        let entries = std::fs::read_dir(self.0.path()).expect("a folder");
+        self.files_in("")
+    }
+
+    /// Names of all files in a folder within, sorted.
+    pub(crate) fn files_in(&self, name: &str) -> Vec<String> {
+        let entries = std::fs::read_dir(self.path(name)).expect("a folder");
         let name = |e: std::io::Result<std::fs::DirEntry>| e.expect("an entry").file_name();
         let mut names: Vec<_> = entries
             .map(|e| name(e).to_string_lossy().into_owned())
@@ -82,6 +89,7 @@ impl Folder {
             .expect("a program");
         Outcome {
             ok: output.status.success(),
+            code: output.status.code(),
             out: String::from_utf8(output.stdout).expect("UTF-8"),
             err: String::from_utf8(output.stderr).expect("UTF-8"),
         }

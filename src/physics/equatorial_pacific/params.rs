@@ -126,9 +126,9 @@ impl Coast {
             (10.0..=300.0).contains(&self.source_depth_m),
             "must lie between 10 and 300 m",
         );
-        for latitude in &self.coastal_latitudes_deg {
+        for (i, latitude) in self.coastal_latitudes_deg.iter().enumerate() {
             r.require(
-                "coast.coastal_latitudes_deg",
+                &format!("coast.coastal_latitudes_deg[{i}]"),
                 *latitude,
                 (-60.0..=60.0).contains(latitude),
                 "must lie between 60S and 60N",

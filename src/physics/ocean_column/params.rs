@@ -264,10 +264,14 @@ impl Levels {
         let usable = (5..=400).contains(&self.count);
         r.require("levels.count", count, usable, "must be 5 to 400 levels");
         r.positive("levels.depth_m", self.depth_m);
+        // The first level is held against a depth and a number that are themselves fine.
+        let deep = self.depth_m > 0.0;
         r.require(
             "levels.first_m",
             self.first_m,
-            self.first_m > 0.0 && self.first_m * count < self.depth_m,
+            self.first_m > 0.0
+                && self.first_m.is_finite()
+                && (!usable || !deep || self.first_m * count < self.depth_m),
             "must be positive and less than the depth over the number of levels",
         );
     }
@@ -299,6 +303,7 @@ impl Mixing {
 impl Upwelling {
     fn check(&self, r: &mut Ranges, bottom_m: f64) {
         let (limit, south) = (self.broad_limit_deg, self.southern_latitude_deg);
+        let has_bottom = bottom_m > 0.0; // Otherwise the depth is told to be wrong, not the source.
         within(r, "upwelling.broad_limit_deg", limit, 5.0..=60.0);
         r.positive("upwelling.broad_width_deg", self.broad_width_deg);
         r.positive("upwelling.equatorial_width_deg", self.equatorial_width_deg);
@@ -307,7 +312,9 @@ impl Upwelling {
         r.require(
             "upwelling.southern_source_m",
             self.southern_source_m,
-            self.southern_source_m > 0.0 && self.southern_source_m < bottom_m,
+            self.southern_source_m > 0.0
+                && self.southern_source_m.is_finite()
+                && (!has_bottom || self.southern_source_m < bottom_m),
             "must be positive and above the bottom of the column",
         );
         r.not_negative("upwelling.southern_wind_m3_s", self.southern_wind_m3_s);
