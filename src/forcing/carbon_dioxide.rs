@@ -5,6 +5,7 @@
 //! linearly. Ages outside what was given are an error, never extrapolated.
 
 use crate::numerics::profile;
+use crate::numerics::shown::Shown;
 use serde::{Deserialize, Serialize};
 
 /// Concentrations that can be meant, ppm (chosen here): below are fractions given by mistake, above is no
@@ -43,7 +44,7 @@ pub enum CarbonDioxideSpec {
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum CarbonDioxideError {
     /// A number that is no concentration.
-    #[error("{key} = {value} is out of range: must lie between 1 and 100000 ppm{}", more(*others))]
+    #[error("{key} = {} is out of range: must lie between 1 and 100000 ppm{}", Shown(*value), more(*others))]
     Concentration {
         /// Key or column.
         key: &'static str,

@@ -1,5 +1,6 @@
 //! The run's calendar of years: from an older to a younger age in whole records.
 
+use crate::numerics::shown::Shown;
 use serde::{Deserialize, Serialize};
 
 /// Times of a run in a configuration. Ages are kyr before 1950 CE.
@@ -47,7 +48,7 @@ pub fn is_age(kyr: f64) -> bool {
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum PlanError {
     /// Not an age.
-    #[error("{key} = {value} is out of range: must lie within 4550000 kyr of 1950")]
+    #[error("{key} = {} is out of range: must lie within 4550000 kyr of 1950", Shown(*value))]
     Age {
         /// The key.
         key: &'static str,
@@ -63,7 +64,7 @@ pub enum PlanError {
         end_kyr: f64,
     },
     /// A number of years that cannot be meant.
-    #[error("{key} = {value} is out of range: {limit}")]
+    #[error("{key} = {} is out of range: {limit}", Shown(*value))]
     Years {
         /// The key, or the sum of keys.
         key: &'static str,
