@@ -2,6 +2,7 @@
 //!
 //! Rule: a message names the file and line (or the command line), the key, and the way out.
 
+use super::fault::BuildError;
 use std::fmt;
 use std::path::PathBuf;
 
@@ -128,6 +129,14 @@ pub enum ConfigError {
     Several {
         /// Each of them, at least two.
         faults: Vec<ConfigError>,
+    },
+    /// Besides what cannot be read, values are out of range.
+    #[error("{fault}\n{ranges}")]
+    AndRanges {
+        /// What cannot be read.
+        fault: Box<ConfigError>,
+        /// What is wrong with the rest.
+        ranges: BuildError,
     },
     /// The merged experiment cannot be written as TOML.
     #[error("the merged experiment cannot be written as TOML: {message}")]

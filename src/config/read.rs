@@ -7,6 +7,7 @@
 use super::error::{ConfigError, Place};
 use super::origin::Origins;
 use super::provenance::InputFile;
+use super::repair::Faulty;
 use super::{origin, repair, set};
 use serde::de::DeserializeOwned;
 use std::path::{Path, PathBuf};
@@ -106,6 +107,11 @@ impl Tree {
     /// # Errors
     /// All keys that are unknown or missing and all values of the wrong type, each with its place.
     pub fn typed<T: DeserializeOwned>(&self) -> Result<T, ConfigError> {
+        self.read().map_err(|faulty| faulty.fault)
+    }
+
+    /// As [`Self::typed`]; a tree with faults comes with the faults put right, to look for more.
+    pub(super) fn read<T: DeserializeOwned>(&self) -> Result<T, Faulty<T>> {
         repair::read(&self.table, &self.origins)
     }
 

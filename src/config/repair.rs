@@ -20,15 +20,22 @@ const MOST_FAULTS: usize = 100;
 const NUMBER: i64 = 7_351_907;
 const WORD: &str = "stand-in 7351907";
 
-/// Reads the whole tree as `T`, or tells all that is wrong.
-pub(super) fn read<T: DeserializeOwned>(
-    table: &Table,
-    origins: &Origins,
-) -> Result<T, ConfigError> {
-    typed::read(table, origins).map_err(|first| all::<T>(table, origins, first))
+/// What a tree with faults comes to.
+pub(super) struct Faulty<T> {
+    /// All that is wrong.
+    pub(super) fault: ConfigError,
+    /// The tree with every fault put right, where that is possible; only to look at.
+    pub(super) repaired: Option<T>,
+    /// Key paths of what is not the user's in it.
+    pub(super) stand_ins: Vec<String>,
 }
 
-fn all<T: DeserializeOwned>(table: &Table, origins: &Origins, first: ConfigError) -> ConfigError {
+/// Reads the whole tree as `T`, or tells all that is wrong.
+pub(super) fn read<T: DeserializeOwned>(table: &Table, origins: &Origins) -> Result<T, Faulty<T>> {
+    typed::read(table, origins).map_err(|first| all(table, origins, first))
+}
+
+fn all<T: DeserializeOwned>(table: &Table, origins: &Origins, first: ConfigError) -> Faulty<T> {
     let mut copy = Copy {
         table: table.clone(),
         origins,
@@ -44,7 +51,19 @@ fn all<T: DeserializeOwned>(table: &Table, origins: &Origins, first: ConfigError
             found.push(fault);
         }
     }
-    ConfigError::several(first, found)
+    Faulty {
+        fault: ConfigError::several(first, found),
+        repaired: typed::read(&copy.table, origins).ok(),
+        stand_ins: copy.stand_ins,
+    }
+}
+
+/// Whether what is wrong with `key` may come from a stand-in: one of the same table.
+pub(super) fn is_doubtful(key: &str, stand_ins: &[String]) -> bool {
+    stand_ins.iter().any(|path| {
+        let table = parent(path).filter(|table| !table.is_empty());
+        is_within(key, table.unwrap_or(path))
+    })
 }
 
 /// A tree in which faults are put right.

@@ -5,6 +5,7 @@
 
 pub use super::fault::BuildError;
 use super::fault::{Fault, PlacedFault};
+use super::repair::is_doubtful;
 use super::{ConfigError, InputFile, Tree, read_text};
 use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideSpec};
 use crate::forcing::drive::{Drive, DriveNumbers};
@@ -109,13 +110,42 @@ impl Experiment {
     /// Reads a file with all it extends and the edits of the command line.
     ///
     /// # Errors
-    /// When a file, a key or a value is not what it should be.
+    /// When a file cannot be read; else all keys and values that are not what they should be, and
+    /// with them all values out of range.
     pub fn load(file: &Path, edits: &[String]) -> Result<Self, ConfigError> {
         let mut tree = Tree::load(file)?;
-        tree.set_all(edits)?;
-        let run = tree.typed()?;
+        let edited = tree.set_all(edits);
+        let read = tree.read();
         let folder = file.parent().map(Path::to_owned).unwrap_or_default();
-        Ok(Self { tree, run, folder })
+        let experiment = |run| Self { tree, run, folder };
+        match (edited.err(), read) {
+            (None, Ok(run)) => Ok(experiment(run)),
+            (Some(fault), Ok(run)) => Err(experiment(run).and_ranges(fault, &[])),
+            (edit, Err(faulty)) => {
+                let fault = match edit {
+                    Some(edit) => ConfigError::several(edit, vec![faulty.fault]),
+                    None => faulty.fault,
+                };
+                Err(match faulty.repaired {
+                    Some(run) => experiment(run).and_ranges(fault, &faulty.stand_ins),
+                    None => fault,
+                })
+            }
+        }
+    }
+
+    /// A fault of reading together with all values out of range that do not come from stand-ins.
+    fn and_ranges(&self, fault: ConfigError, stand_ins: &[String]) -> ConfigError {
+        let doubtful = |f: &Fault| f.keys().iter().any(|key| is_doubtful(key, stand_ins));
+        let mut found = self.run.build(&self.folder).err().unwrap_or_default();
+        found.retain(|fault| !doubtful(fault));
+        if found.is_empty() {
+            return fault;
+        }
+        ConfigError::AndRanges {
+            fault: Box::new(fault),
+            ranges: self.all_placed(found),
+        }
     }
 
     /// Checks all ranges and builds the model.
@@ -123,9 +153,9 @@ impl Experiment {
     /// # Errors
     /// All faults, each with the place of its key.
     pub fn build(&self) -> Result<Built, BuildError> {
-        self.run.build(&self.folder).map_err(|faults| BuildError {
-            faults: faults.into_iter().map(|fault| self.placed(fault)).collect(),
-        })
+        self.run
+            .build(&self.folder)
+            .map_err(|faults| self.all_placed(faults))
     }
 
     /// All files that define the run, with their hashes.
@@ -140,6 +170,12 @@ impl Experiment {
             files.push(InputFile::new(&path, text.as_bytes()));
         }
         Ok(files)
+    }
+
+    fn all_placed(&self, faults: Vec<Fault>) -> BuildError {
+        BuildError {
+            faults: faults.into_iter().map(|fault| self.placed(fault)).collect(),
+        }
     }
 
     fn placed(&self, fault: Fault) -> PlacedFault {

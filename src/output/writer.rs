@@ -124,9 +124,11 @@ impl RunWriter {
             return Err(OutputError::Empty { path: self.path });
         }
         let temporary = segments::merging(&self.path);
-        segments::clearing(&temporary, self.merge(&temporary))?;
-        refuse_existing(&self.path, self.overwrite)?;
-        segments::seal(&temporary, &self.path)?;
+        let merged = self.merge(&temporary).and_then(|()| {
+            refuse_existing(&self.path, self.overwrite)?;
+            segments::seal(&temporary, &self.path)
+        });
+        segments::clearing(&temporary, merged)?;
         let files: Vec<_> = (0..self.segments)
             .map(|n| segments::path(&self.path, n))
             .collect();
@@ -141,10 +143,10 @@ impl RunWriter {
         let temporary = segments::temporary(&self.path, self.segments);
         let written = Layout::create(&temporary, &self.schema).and_then(|layout| {
             layout.write(0, &Block::gather(&self.schema, &self.buffer))?;
-            layout.finish(&self.restart)
+            layout.finish(&self.restart)?;
+            segments::seal(&temporary, &segments::path(&self.path, self.segments))
         });
         segments::clearing(&temporary, written)?;
-        segments::seal(&temporary, &segments::path(&self.path, self.segments))?;
         self.segments += 1;
         self.unsaved = false;
         Ok(())

@@ -1,8 +1,9 @@
 //! Disks that fill up: in a segment, in the merged file, and in the last bytes of either.
 //!
-//! Two such disks: a limit of the file size, which needs no privilege and cuts at any byte; and a
-//! small file system in memory, mounted where only the run sees it, which needs the right to mount
-//! (as root or in a user namespace of Linux). Where that right is missing the test says so.
+//! Three such disks: a limit of the file size, which needs no privilege and cuts at any byte; a small
+//! file system in memory, mounted where only the run sees it, which needs the right to mount (as root
+//! or in a user namespace of Linux); and single calls that fail, which needs `strace`. Where something
+//! is missing the test says so.
 #![cfg(target_os = "linux")]
 
 use super::files::{left_out, records};
@@ -111,7 +112,7 @@ fn a_file_cut_at_any_byte_is_an_error_and_whole_segments_stay() {
     // The library reaches some kilobytes beyond what it keeps, so which file is cut is not known;
     // whatever is, `fate` holds it to the rules, up to the last bytes written when it is closed.
     let last = (0..9).map(|k| whole - 2000 + 2000 * k);
-    for bytes in [first, first + 5000, (first + whole) / 2]
+    for bytes in [first, first + 5000, u64::midpoint(first, whole)]
         .into_iter()
         .chain(last)
     {
@@ -201,4 +202,41 @@ fn a_disk_that_may_only_be_read_is_told_at_once() {
         RunFile::open(&folder.path("disk/run.nc")).is_err(),
         "the result below is untouched"
     );
+}
+
+/// Runs under `strace` with more of its options and returns what it did and the calls of `call`.
+fn traced(folder: &Folder, call: &str, option: &str) -> (Output, usize) {
+    folder.write("disk/run.nc", "an earlier result");
+    let trace = format!("trace={call}");
+    let mut words = vec!["strace", "-f", "-qq", "-o", "calls", "-e", &trace];
+    if !option.is_empty() {
+        words.extend(["-e", option]);
+    }
+    let outcome = shell(folder, &words, RUN);
+    let calls = String::from_utf8_lossy(&folder.read("calls")).into_owned();
+    (outcome, calls.matches(&format!("{call}(")).count())
+}
+
+#[test]
+fn the_last_write_of_a_file_fails_when_it_is_closed_and_that_is_an_error() {
+    let folder = with_earlier_result();
+    folder.write("calls", "");
+    let exists = Command::new("strace").arg("--version").output().is_ok();
+    if !exists || !traced(&folder, "pwrite64", "").0.status.success() {
+        return left_out("writes that fail on closing; strace is not there or may not trace");
+    }
+    for call in ["pwrite64", "ftruncate", "fsync"] {
+        let (_, calls) = traced(&folder, call, "");
+        assert!(calls >= 6, "{calls} calls of {call}");
+        // Syncing ends with the folder, when the file has its name already.
+        let last = if call == "fsync" { calls - 1 } else { calls };
+        let option = format!("inject={call}:error=ENOSPC:when={last}");
+        let (outcome, _) = traced(&folder, call, &option);
+        let file = fate(&folder, "disk", &outcome, "No space left on device");
+        assert!(
+            file.is_some_and(|file| file.contains("disk/run.nc.tmp")),
+            "{outcome:?}"
+        );
+        assert_eq!(records(&folder, "disk/run.nc.seg0001.nc"), 6, "{call}");
+    }
 }

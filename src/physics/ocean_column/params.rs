@@ -31,9 +31,9 @@ pub struct Params {
     pub sinking: Sinking,
 }
 
-/// Depths that a column may have, m: chosen here, from one that still holds a thermocline to the
-/// deepest trench.
-const DEPTHS_M: std::ops::RangeInclusive<f64> = 100.0..=11_000.0;
+/// Depths that a column may have, m: chosen here, from one that still holds a thermocline to one far
+/// below any sea floor, as comparisons with an endless ocean need it.
+const DEPTHS_M: std::ops::RangeInclusive<f64> = 100.0..=20_000.0;
 
 /// Whether the column evolves.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
@@ -52,7 +52,7 @@ pub enum Evolution {
 pub struct Levels {
     /// Number of levels, 5-400. Tuned here (40; 80 lift the 20 degC isotherm by 1.2 m).
     pub count: usize,
-    /// Depth of the column, m, 100-11000. Mean ocean depth between 30 degrees north and south (ETOPO5).
+    /// Depth of the column, m, 100-20000. Mean ocean depth between 30 degrees north and south (ETOPO5).
     pub depth_m: f64,
     /// Thickness of the top level, m, > 0. Tuned here (15): its mean is the water the mixed layers meet, so
     /// it belongs to the calibration (half of it lifts the 20 degC isotherm by 0.6 m).
@@ -269,7 +269,7 @@ impl Levels {
         r.require("levels.count", count, usable, "must be 5 to 400 levels");
         // The first level is held against a depth and a number that are themselves fine.
         let deep = DEPTHS_M.contains(&self.depth_m);
-        let limit = "must lie between 100 and 11000 m";
+        let limit = "must lie between 100 and 20000 m";
         r.require("levels.depth_m", self.depth_m, deep, limit);
         r.require(
             "levels.first_m",
