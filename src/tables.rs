@@ -8,13 +8,33 @@ use std::path::{Path, PathBuf};
 /// Why a table cannot be used.
 #[derive(Debug, thiserror::Error)]
 pub enum TableError {
-    /// The file cannot be read or is not such a table.
-    #[error("{path}: {source}")]
+    /// The file cannot be read.
+    #[error("{path}: cannot be read: {source}; the path is relative to the file that names it")]
     Read {
         /// The file.
         path: PathBuf,
-        /// What the reader says, with the line.
-        source: csv::Error,
+        /// What the system says.
+        source: std::io::Error,
+    },
+    /// A line has more or fewer cells than the names above.
+    #[error("{path}:{line}: {found} cells where the first line names {needed} columns")]
+    Ragged {
+        /// The file.
+        path: PathBuf,
+        /// Line, from 1.
+        line: u64,
+        /// Cells in it.
+        found: u64,
+        /// Columns.
+        needed: u64,
+    },
+    /// The file is no text.
+    #[error("{path}:{line}: not UTF-8; save the table as UTF-8 text")]
+    NotText {
+        /// The file.
+        path: PathBuf,
+        /// Line, from 1.
+        line: u64,
     },
     /// A column is missing.
     #[error("{path}: no column `{column}` among: {present} (columns are separated by commas)")]
@@ -35,7 +55,7 @@ pub enum TableError {
         column: String,
     },
     /// A cell is not a number.
-    #[error("{path}, line {line}: `{text}` in column `{column}` is not a number")]
+    #[error("{path}:{line}: `{text}` in column `{column}` is not a number")]
     Number {
         /// The file.
         path: PathBuf,
@@ -54,15 +74,21 @@ pub enum TableError {
     },
 }
 
-/// Reads the named columns; the result holds one vector per name, all of the same length.
+/// Columns of a table, all of the same length.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Columns {
+    /// One vector for each name asked for, in that order.
+    pub values: Vec<Vec<f64>>,
+    /// Line of each row in the file, from 1.
+    pub lines: Vec<u64>,
+}
+
+/// Reads the named columns.
 ///
 /// # Errors
 /// When the file cannot be read, a column is missing, or a cell is not a number.
-pub fn read_columns(path: &Path, columns: &[&str]) -> Result<Vec<Vec<f64>>, TableError> {
-    let failed = |source| TableError::Read {
-        path: path.to_owned(),
-        source,
-    };
+pub fn read_columns(path: &Path, columns: &[&str]) -> Result<Columns, TableError> {
+    let failed = |error| failure(path, error);
     let mut reader = csv::ReaderBuilder::new()
         .comment(Some(b'#'))
         .trim(csv::Trim::All)
@@ -92,25 +118,50 @@ pub fn read_columns(path: &Path, columns: &[&str]) -> Result<Vec<Vec<f64>>, Tabl
         .map(position)
         .collect::<Result<Vec<_>, _>>()?;
     let mut values = vec![Vec::new(); columns.len()];
+    let mut lines = Vec::new();
     for row in reader.records() {
         let row = row.map_err(failed)?;
+        let line = row.position().map_or(0, csv::Position::line);
+        lines.push(line);
         for ((column, at), into) in columns.iter().zip(&positions).zip(&mut values) {
             let text = row.get(*at).unwrap_or_default();
             let number = text.parse().ok().filter(|v: &f64| v.is_finite());
             into.push(number.ok_or_else(|| TableError::Number {
                 path: path.to_owned(),
-                line: row.position().map_or(0, csv::Position::line),
+                line,
                 column: (*column).to_owned(),
                 text: text.to_owned(),
             })?);
         }
     }
-    if values.iter().any(Vec::is_empty) {
+    if lines.is_empty() {
         return Err(TableError::Empty {
             path: path.to_owned(),
         });
     }
-    Ok(values)
+    Ok(Columns { values, lines })
+}
+
+/// The reader's error in words of the user.
+fn failure(path: &Path, error: csv::Error) -> TableError {
+    let path = path.to_owned();
+    let line = error.position().map_or(1, csv::Position::line);
+    match error.into_kind() {
+        csv::ErrorKind::UnequalLengths {
+            expected_len, len, ..
+        } => TableError::Ragged {
+            path,
+            line,
+            found: len,
+            needed: expected_len,
+        },
+        csv::ErrorKind::Utf8 { .. } => TableError::NotText { path, line },
+        csv::ErrorKind::Io(source) => TableError::Read { path, source },
+        other => TableError::Read {
+            path,
+            source: std::io::Error::other(format!("{other:?}")),
+        },
+    }
 }
 
 #[cfg(test)]
@@ -118,7 +169,7 @@ mod tests {
     use super::*;
     use std::io::Write;
 
-    fn table(text: &str) -> Result<Vec<Vec<f64>>, TableError> {
+    fn table(text: &str) -> Result<Columns, TableError> {
         let mut file = tempfile::NamedTempFile::new().unwrap();
         file.write_all(text.as_bytes()).unwrap();
         read_columns(file.path(), &["age_kyr", "co2_ppm"])
@@ -127,15 +178,15 @@ mod tests {
     #[test]
     fn columns_are_found_by_name_and_comments_skipped() {
         let read = table("# made up\nco2_ppm, other, age_kyr\n280, x, 0\n200, y, 20\n").unwrap();
-        assert_eq!(read, vec![vec![0.0, 20.0], vec![280.0, 200.0]]);
+        assert_eq!(read.values, vec![vec![0.0, 20.0], vec![280.0, 200.0]]);
+        assert_eq!(read.lines, [3, 4]);
     }
 
     #[test]
     fn what_is_wrong_is_named_with_its_line() {
         let message = |text: &str| table(text).unwrap_err().to_string();
         assert!(
-            message("age_kyr,co2_ppm\n0,280\n1,abc\n")
-                .contains("line 3: `abc` in column `co2_ppm`")
+            message("age_kyr,co2_ppm\n0,280\n1,abc\n").contains(":3: `abc` in column `co2_ppm`")
         );
         assert!(
             message("age_kyr,ppm\n0,280\n").contains("no column `co2_ppm` among: age_kyr, ppm")

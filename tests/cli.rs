@@ -1,4 +1,5 @@
-//! The program as its user meets it: what it prints, what it refuses, what is in its file.
+//! The program as its user meets it: what it prints, what it refuses, what is in its file. More of
+//! what it refuses: `tests/bad_input.rs`.
 #![cfg(feature = "netcdf")]
 
 #[path = "cli/contents.rs"]
@@ -99,7 +100,7 @@ fn an_existing_file_is_left_as_it_is_unless_overwriting_is_allowed() {
     assert!(RunFile::open(&folder.path("there.nc")).is_ok());
     assert_eq!(
         folder.files(),
-        ["short.toml", "there.nc", "there.nc.log"],
+        ["short.toml", "there.nc"],
         "segments were left behind"
     );
 }
@@ -126,48 +127,6 @@ fn an_unknown_key_is_answered_with_the_nearest() {
     folder.write("misspelt.toml", &format!("{SHORT}\n[grid]\nband = 72\n"));
     let outcome = refused(&folder, &["misspelt.toml"]);
     outcome.says(&["misspelt.toml:", "band", "bands"]);
-}
-
-#[test]
-fn all_values_out_of_range_are_told_at_once_each_with_its_line() {
-    let folder = Folder::new();
-    let text = format!(
-        "{SHORT}\n[grid]\nsteps_per_year = 3\n[insolation]\nsolar_constant_w_m2 = -1.0\n\
-         [physics.energy_balance.albedo]\nwater = 1.7\n[physics.ocean_column.mixing]\n\
-         upper_m2_s = -1e-5\n[physics.equatorial_pacific]\ntilt_m = -60.0\n\
-         [co2]\nco2_ppm = 0.0\n"
-    );
-    folder.write("wrong.toml", &text);
-    let line = |key: &str| {
-        let found = text.lines().position(|l| l.starts_with(key));
-        format!("wrong.toml:{}: ", found.expect("the key") + 1)
-    };
-    let outcome = refused(&folder, &["wrong.toml"]);
-    for (key, path) in [
-        ("steps_per_year", "grid.steps_per_year = 3"),
-        ("solar_constant", "insolation.solar_constant_w_m2 = -1"),
-        ("water", "physics.energy_balance.albedo.water = 1.7"),
-        (
-            "upper_m2_s",
-            "physics.ocean_column.mixing.upper_m2_s = -0.00001",
-        ),
-        ("tilt_m", "physics.equatorial_pacific.tilt_m = -60"),
-    ] {
-        outcome.says(&[&format!("{}{path}", line(key))]);
-    }
-    outcome.says(&[&format!("{}co2: 0 ppm", line("co2_ppm"))]);
-    assert_eq!(outcome.err.trim().lines().count(), 6, "{}", outcome.err);
-}
-
-#[test]
-fn faults_of_the_grid_do_not_hide_those_of_the_physics() {
-    let folder = Folder::new();
-    let edits = ["grid.bands=37", "physics.energy_balance.albedo.snow=2"];
-    let outcome = refused(
-        &folder,
-        &["short.toml", "--set", edits[0], "--set", edits[1]],
-    );
-    outcome.says(&["37 latitude bands", "albedo.snow = 2"]);
 }
 
 #[test]

@@ -3,7 +3,7 @@
 //!
 //! Exit status after a stop: 128 plus the number of the signal, as shells count (POSIX, 2.8.2).
 
-use signal_hook::consts::{SIGINT, SIGTERM};
+use signal_hook::consts::{SIGINT, SIGTERM, SIGXFSZ};
 use signal_hook::flag;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, AtomicUsize, Ordering};
@@ -28,6 +28,9 @@ impl Signals {
             flag::register(signal, Arc::clone(&second))?;
             flag::register_usize(signal, Arc::clone(&number), value)?;
         }
+        // Where files may not grow beyond a limit, writing then fails with an error that is told,
+        // instead of a signal that ends the program.
+        flag::register(SIGXFSZ, Arc::new(AtomicBool::new(false)))?;
         Ok(Self { number })
     }
 

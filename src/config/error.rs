@@ -2,6 +2,7 @@
 //!
 //! Rule: a message names the file and line (or the command line), the key, and the way out.
 
+use super::fault::BuildError;
 use std::fmt;
 use std::path::PathBuf;
 
@@ -95,19 +96,24 @@ pub enum ConfigError {
     /// A key or a choice that the program does not know.
     #[error("{0}")]
     Unknown(Box<Unknown>),
-    /// A key is missing.
+    /// Keys of one table are missing.
     #[error(
-        "{place}: missing key `{key}` in {}; add it, or `extends` a file that has it",
-        table_name(table)
+        "{place}: missing {} in {}; {}",
+        counted(keys),
+        table_name(table),
+        way_out(keys)
     )]
     Missing {
-        /// Where its table begins.
+        /// Where the table begins.
         place: Place,
-        /// The key.
-        key: String,
+        /// The keys, at least one.
+        keys: Vec<String>,
         /// Key path of the table; empty at the top.
         table: String,
     },
+    /// An edit changed the `kind` of a table and left the keys of the kind before.
+    #[error("{0}")]
+    KindAlone(Box<KindAlone>),
     /// A value of the wrong type or form.
     #[error("{place}: `{key}`: {message}")]
     Value {
@@ -118,12 +124,90 @@ pub enum ConfigError {
         /// What was found and what was expected.
         message: String,
     },
+    /// More than one thing is wrong.
+    #[error("{}", lines(faults))]
+    Several {
+        /// Each of them, at least two.
+        faults: Vec<ConfigError>,
+    },
+    /// Besides what cannot be read, values are out of range.
+    #[error("{fault}\n{ranges}")]
+    AndRanges {
+        /// What cannot be read.
+        fault: Box<ConfigError>,
+        /// What is wrong with the rest.
+        ranges: BuildError,
+    },
     /// The merged experiment cannot be written as TOML.
     #[error("the merged experiment cannot be written as TOML: {message}")]
     Write {
         /// What the writer said.
         message: String,
     },
+}
+
+impl ConfigError {
+    /// One error for several; what is wrong in the same way in one table is said once.
+    pub(super) fn several(first: Self, others: Vec<Self>) -> Self {
+        let mut told = vec![first];
+        for fault in others {
+            if !told.iter_mut().any(|earlier| earlier.takes_in(&fault)) {
+                told.push(fault);
+            }
+        }
+        if told.len() > 1 {
+            return Self::Several { faults: told };
+        }
+        told.remove(0)
+    }
+
+    /// Whether this error now says what `other` says about the same table.
+    fn takes_in(&mut self, other: &Self) -> bool {
+        let same = match (&*self, other) {
+            (Self::Missing { table, .. }, Self::Missing { table: other, .. }) => table == other,
+            (Self::KindAlone(alone), Self::KindAlone(other)) => alone.table == other.table,
+            _ => false,
+        };
+        match (self, other) {
+            (Self::Missing { keys, .. }, Self::Missing { keys: others, .. }) if same => {
+                add(keys, others);
+            }
+            (Self::KindAlone(alone), Self::KindAlone(other)) if same => {
+                add(&mut alone.keys, &other.keys);
+            }
+            _ => {}
+        }
+        same
+    }
+}
+
+/// Adds what is not there yet.
+fn add(keys: &mut Vec<String>, others: &[String]) {
+    for key in others {
+        if !keys.contains(key) {
+            keys.push(key.clone());
+        }
+    }
+}
+
+/// A `kind` changed without the keys that belong to it.
+#[derive(Debug, thiserror::Error)]
+#[error(
+    "{place}: `{table}.kind` cannot change alone, since each kind has its own keys; give the whole \
+     table, such as --set '{table}={{kind=\"{kind}\"{}}}'",
+    blanks(keys)
+)]
+pub struct KindAlone {
+    /// The edit.
+    pub place: Place,
+    /// Key path of the table.
+    pub table: String,
+    /// The kind asked for.
+    pub kind: String,
+    /// Keys that it needs.
+    pub keys: Vec<String>,
+    /// The key that is missing, or of the kind before.
+    pub fault: String,
 }
 
 /// A key or a choice that the program does not know.
@@ -158,6 +242,29 @@ fn wanted_at(place: Option<&Place>) -> String {
 fn chain_text(chain: &[PathBuf]) -> String {
     let names: Vec<_> = chain.iter().map(|f| f.display().to_string()).collect();
     names.join(" -> ")
+}
+
+fn lines(faults: &[ConfigError]) -> String {
+    let lines: Vec<_> = faults.iter().map(ToString::to_string).collect();
+    lines.join("\n")
+}
+
+/// "key `a`" or "keys `a`, `b`".
+fn counted(keys: &[String]) -> String {
+    let names: Vec<_> = keys.iter().map(|key| format!("`{key}`")).collect();
+    let noun = if keys.len() == 1 { "key" } else { "keys" };
+    format!("{noun} {}", names.join(", "))
+}
+
+fn way_out(keys: &[String]) -> String {
+    let it = if keys.len() == 1 { "it" } else { "them" };
+    format!("add {it}, or `extends` a file that has {it}")
+}
+
+/// Places for the values of keys in an inline table.
+fn blanks(keys: &[String]) -> String {
+    let blanks: Vec<_> = keys.iter().map(|key| format!(", {key}=...")).collect();
+    blanks.concat()
 }
 
 fn suggestion(nearest: Option<&str>) -> String {

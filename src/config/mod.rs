@@ -7,10 +7,12 @@
 
 pub mod difference;
 pub mod error;
+pub mod fault;
 pub mod identity;
 mod origin;
 pub mod provenance;
 pub mod read;
+mod repair;
 pub mod run;
 mod set;
 mod typed;

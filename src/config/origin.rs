@@ -31,7 +31,7 @@ pub(super) fn parent(path: &str) -> Option<&str> {
 }
 
 /// Whether `path` is `above` or lies below it.
-fn is_within(path: &str, above: &str) -> bool {
+pub(super) fn is_within(path: &str, above: &str) -> bool {
     path.strip_prefix(above)
         .is_some_and(|rest| above.is_empty() || rest.is_empty() || rest.starts_with(['.', '[']))
 }

@@ -7,7 +7,8 @@
 use super::error::{ConfigError, Place};
 use super::origin::Origins;
 use super::provenance::InputFile;
-use super::{origin, set, typed};
+use super::repair::Faulty;
+use super::{origin, repair, set};
 use serde::de::DeserializeOwned;
 use std::path::{Path, PathBuf};
 use toml::{Table, Value};
@@ -15,7 +16,7 @@ use toml::{Table, Value};
 /// Key that names the file below.
 const EXTENDS: &str = "extends";
 /// Key that says which of several forms a table has.
-const KIND: &str = "kind";
+pub(super) const KIND: &str = "kind";
 
 /// An experiment as text keys and values, with the place where each was written.
 #[derive(Clone, Debug)]
@@ -69,6 +70,18 @@ impl Tree {
         self.put(&key, value, place)
     }
 
+    /// Makes several changes; see [`Self::set`].
+    ///
+    /// # Errors
+    /// All changes that cannot be made.
+    pub fn set_all(&mut self, assignments: &[String]) -> Result<(), ConfigError> {
+        let mut faults = assignments.iter().filter_map(|a| self.set(a).err());
+        match faults.next() {
+            Some(first) => Err(ConfigError::several(first, faults.collect())),
+            None => Ok(()),
+        }
+    }
+
     /// Changes one key to a value made by the program, such as one point of a sweep.
     ///
     /// # Errors
@@ -92,9 +105,14 @@ impl Tree {
     /// The whole tree as `T`.
     ///
     /// # Errors
-    /// When a key is unknown or missing, or a value has the wrong type; the message has the place.
+    /// All keys that are unknown or missing and all values of the wrong type, each with its place.
     pub fn typed<T: DeserializeOwned>(&self) -> Result<T, ConfigError> {
-        typed::read(&self.table, &self.origins)
+        self.read().map_err(|faulty| faulty.fault)
+    }
+
+    /// As [`Self::typed`]; a tree with faults comes with the faults put right, to look for more.
+    pub(super) fn read<T: DeserializeOwned>(&self) -> Result<T, Faulty<T>> {
+        repair::read(&self.table, &self.origins)
     }
 
     /// Where exactly the key was written.
@@ -105,6 +123,20 @@ impl Tree {
     /// Where the key was written or, if it was not, the nearest table above it.
     pub fn nearest_origin(&self, key_path: &str) -> Option<Place> {
         self.origins.nearest(key_path).cloned()
+    }
+
+    /// The place of that key of `keys` which was written last: on the command line, or in the file
+    /// nearest to the one named by the user. Of two that contradict one another it is the likelier
+    /// mistake.
+    pub fn latest_origin(&self, keys: &[&str]) -> Option<Place> {
+        let rank = |place: &Place| match place {
+            Place::CommandLine { .. } => 0,
+            Place::File { file, .. } => {
+                1 + self.files.iter().take_while(|f| f.path != *file).count()
+            }
+        };
+        let places = keys.iter().filter_map(|key| self.nearest_origin(key));
+        places.min_by_key(rank)
     }
 
     /// The merged experiment as TOML with keys in alphabetical order, to be stored in the output.

@@ -3,18 +3,21 @@
 //! The tables are those of the parts themselves; this module only composes them, finds where each
 //! offending key was written, and reads the table of carbon dioxide when one is named.
 
-use super::{ConfigError, Identity, InputFile, Place, Tree, read_text};
-use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideError, CarbonDioxideSpec};
+pub use super::fault::BuildError;
+use super::fault::{Fault, PlacedFault};
+use super::repair::is_doubtful;
+use super::{ConfigError, Identity, InputFile, Tree, read_text};
+use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideSpec};
 use crate::forcing::drive::{Drive, DriveNumbers};
 use crate::grid::calendar::MonthWeights;
-use crate::grid::latitude::{BandsError, LatitudeBands, Spacing};
+use crate::grid::latitude::{LatitudeBands, Spacing};
 use crate::model::Model;
-use crate::model::clock::{Plan, PlanError, TimeSpec};
-use crate::orbit::solution::{Orbit, OrbitError, OrbitSpec};
+use crate::model::clock::{Plan, TimeSpec, is_age};
+use crate::orbit::solution::{Orbit, OrbitSpec};
 use crate::physics::exchange::Exchange;
 use crate::physics::surface::SurfaceSpec;
 use crate::physics::{PhysicsSpec, RangeError, Ranges, Setting};
-use crate::tables::{self, TableError};
+use crate::tables::{self, Columns};
 use serde::{Deserialize, Serialize};
 use std::path::{Path, PathBuf};
 
@@ -82,65 +85,6 @@ pub struct CarbonDioxideForcing {
     pub co2_forcing_w_m2: f64,
 }
 
-/// One thing wrong with a run.
-#[derive(Debug, thiserror::Error)]
-pub enum Fault {
-    /// A parameter out of range.
-    #[error(transparent)]
-    Range(RangeError),
-    /// The number of bands.
-    #[error("grid.bands: {0}")]
-    Bands(BandsError),
-    /// Times that do not fit.
-    #[error(transparent)]
-    Plan(PlanError),
-    /// The orbit.
-    #[error(transparent)]
-    Orbit(OrbitError),
-    /// Carbon dioxide.
-    #[error(transparent)]
-    CarbonDioxide(CarbonDioxideError),
-    /// The table of carbon dioxide.
-    #[error("co2.path: {0}")]
-    Table(TableError),
-    /// A part that needs another.
-    #[error("{key} needs {needs}: add its table, or `extends` a file that has it")]
-    Needs {
-        /// The part.
-        key: &'static str,
-        /// What it needs.
-        needs: &'static str,
-    },
-    /// Insolation bands or months.
-    #[error("grid: {0}")]
-    Grid(String),
-}
-
-/// A fault with the place where its key was written.
-#[derive(Debug)]
-pub struct PlacedFault {
-    /// The place, when the key has one.
-    pub place: Option<Place>,
-    /// What is wrong.
-    pub fault: Fault,
-}
-
-/// A run that cannot be built; all faults at once.
-#[derive(Debug, thiserror::Error)]
-#[error("{}", lines(faults))]
-pub struct BuildError {
-    /// The faults, in the order of the configuration.
-    pub faults: Vec<PlacedFault>,
-}
-
-fn lines(faults: &[PlacedFault]) -> String {
-    let line = |f: &PlacedFault| match &f.place {
-        Some(place) => format!("{place}: {}", f.fault),
-        None => f.fault.to_string(),
-    };
-    faults.iter().map(line).collect::<Vec<_>>().join("\n")
-}
-
 /// A run ready to go.
 pub struct Built {
     /// The model, at its smooth start state.
@@ -166,15 +110,42 @@ impl Experiment {
     /// Reads a file with all it extends and the edits of the command line.
     ///
     /// # Errors
-    /// When a file, a key or a value is not what it should be.
+    /// When a file cannot be read; else all keys and values that are not what they should be, and
+    /// with them all values out of range.
     pub fn load(file: &Path, edits: &[String]) -> Result<Self, ConfigError> {
         let mut tree = Tree::load(file)?;
-        for edit in edits {
-            tree.set(edit)?;
-        }
-        let run = tree.typed()?;
+        let edited = tree.set_all(edits);
+        let read = tree.read();
         let folder = file.parent().map(Path::to_owned).unwrap_or_default();
-        Ok(Self { tree, run, folder })
+        let experiment = |run| Self { tree, run, folder };
+        match (edited.err(), read) {
+            (None, Ok(run)) => Ok(experiment(run)),
+            (Some(fault), Ok(run)) => Err(experiment(run).and_ranges(fault, &[])),
+            (edit, Err(faulty)) => {
+                let fault = match edit {
+                    Some(edit) => ConfigError::several(edit, vec![faulty.fault]),
+                    None => faulty.fault,
+                };
+                Err(match faulty.repaired {
+                    Some(run) => experiment(run).and_ranges(fault, &faulty.stand_ins),
+                    None => fault,
+                })
+            }
+        }
+    }
+
+    /// A fault of reading together with all values out of range that do not come from stand-ins.
+    fn and_ranges(&self, fault: ConfigError, stand_ins: &[String]) -> ConfigError {
+        let doubtful = |f: &Fault| f.keys().iter().any(|key| is_doubtful(key, stand_ins));
+        let mut found = self.run.build(&self.folder).err().unwrap_or_default();
+        found.retain(|fault| !doubtful(fault));
+        if found.is_empty() {
+            return fault;
+        }
+        ConfigError::AndRanges {
+            fault: Box::new(fault),
+            ranges: self.all_placed(found),
+        }
     }
 
     /// Checks all ranges and builds the model.
@@ -182,9 +153,9 @@ impl Experiment {
     /// # Errors
     /// All faults, each with the place of its key.
     pub fn build(&self) -> Result<Built, BuildError> {
-        self.run.build(&self.folder).map_err(|faults| BuildError {
-            faults: faults.into_iter().map(|fault| self.placed(fault)).collect(),
-        })
+        self.run
+            .build(&self.folder)
+            .map_err(|faults| self.all_placed(faults))
     }
 
     /// All files that define the run, with their hashes.
@@ -215,34 +186,17 @@ impl Experiment {
         Ok(vec![InputFile::new(&path, text.as_bytes())])
     }
 
+    fn all_placed(&self, faults: Vec<Fault>) -> BuildError {
+        BuildError {
+            faults: faults.into_iter().map(|fault| self.placed(fault)).collect(),
+        }
+    }
+
     fn placed(&self, fault: Fault) -> PlacedFault {
-        let key = match &fault {
-            Fault::Range(e) => e.key.as_str(),
-            Fault::Bands(_) => "grid.bands",
-            Fault::Grid(_) => "grid",
-            Fault::Plan(PlanError::Backwards { .. }) => "time.start_kyr",
-            Fault::Plan(PlanError::Zero { key } | PlanError::Pace { key, .. })
-            | Fault::Needs { key, .. } => key,
-            Fault::Plan(PlanError::Multiple { .. }) => "time.record_every_yr",
-            Fault::Orbit(OrbitError::AgeOutOfRange { age_kyr, .. })
-            | Fault::CarbonDioxide(CarbonDioxideError::OutOfRange { age_kyr, .. }) => {
-                let started = age_kyr.to_bits() == self.run.time.start_kyr.to_bits();
-                if started {
-                    "time.start_kyr"
-                } else {
-                    "time.end_kyr"
-                }
-            }
-            Fault::Orbit(_) => "orbit",
-            Fault::CarbonDioxide(CarbonDioxideError::NotPositive { age_kyr: None, .. }) => {
-                "co2.co2_ppm"
-            }
-            Fault::CarbonDioxide(_) => "co2",
-            Fault::Table(_) => "co2.path",
-        };
-        let key = key.split([' ', '[']).next().unwrap_or(key);
+        let keys = fault.keys();
+        let keys: Vec<_> = keys.iter().map(String::as_str).collect();
         PlacedFault {
-            place: self.tree.nearest_origin(key),
+            place: self.tree.latest_origin(&keys),
             fault,
         }
     }
@@ -336,17 +290,25 @@ impl RunSpec {
             self.co2_forcing.co2_forcing_w_m2,
         );
         let bands = self.grid.bands;
-        let limit = "more than 288 bands need steps shorter than a day near the poles";
-        r.require("grid.bands", bands as f64, bands <= MOST_BANDS, limit);
+        r.require(
+            "grid.bands",
+            bands as f64,
+            bands <= MOST_BANDS && LatitudeBands::usable(bands),
+            "must be a multiple of 4 from 12 to 288 (36 is 5 degrees; more than 288 need steps \
+             shorter than a day near the poles)",
+        );
         let steps = self.grid.steps_per_year;
-        let usable = (STEPS_LIMIT.0..=STEPS_LIMIT.1).contains(&steps);
         r.require(
             "grid.steps_per_year",
             steps as f64,
-            usable,
+            self.steps_usable(),
             "must lie between 24 and 5000",
         );
         r.finish()
+    }
+
+    fn steps_usable(&self) -> bool {
+        (STEPS_LIMIT.0..=STEPS_LIMIT.1).contains(&self.grid.steps_per_year)
     }
 
     fn check_needs(&self) -> Vec<Fault> {
@@ -370,45 +332,60 @@ impl RunSpec {
     }
 
     fn carbon_dioxide(&self, folder: &Path, faults: &mut Faults) -> Option<CarbonDioxide> {
-        let built = match &self.co2 {
-            CarbonDioxideSpec::Constant { co2_ppm } => CarbonDioxide::constant(*co2_ppm),
+        match &self.co2 {
+            CarbonDioxideSpec::Constant { co2_ppm } => {
+                let built = CarbonDioxide::constant(*co2_ppm);
+                faults.take(built, Fault::CarbonDioxide)
+            }
             CarbonDioxideSpec::Linear {
                 from_kyr,
                 from_ppm,
                 to_kyr,
                 to_ppm,
-            } => CarbonDioxide::table(vec![*to_kyr, *from_kyr], vec![*to_ppm, *from_ppm]),
-            CarbonDioxideSpec::Table { path } => {
-                let read = tables::read_columns(&folder.join(path), &["age_kyr", "co2_ppm"]);
-                let mut columns = faults.take(read, Fault::Table)?.into_iter();
-                let (age, ppm) = (
-                    columns.next().unwrap_or_default(),
-                    columns.next().unwrap_or_default(),
-                );
-                CarbonDioxide::table(age, ppm)
+            } => {
+                let built = CarbonDioxide::linear([*from_kyr, *from_ppm], [*to_kyr, *to_ppm]);
+                faults.take_all(built, Fault::CarbonDioxide)
             }
-        };
-        faults.take(built, Fault::CarbonDioxide)
+            CarbonDioxideSpec::Table { path } => {
+                let path = folder.join(path);
+                let read = tables::read_columns(&path, &["age_kyr", "co2_ppm"]);
+                let Columns { values, lines } = faults.take(read, Fault::Table)?;
+                let mut values = values.into_iter();
+                let (age, ppm) = (values.next()?, values.next()?);
+                faults.take_all(CarbonDioxide::table(age, ppm), |error| {
+                    Fault::in_table(error, &path, &lines)
+                })
+            }
+        }
     }
 
     fn check_ages(&self, orbit: Option<&Orbit>, co2: Option<&CarbonDioxide>, faults: &mut Faults) {
-        let (start, end) = (self.time.start_kyr, self.time.end_kyr);
-        if let Some(orbit) = orbit {
-            faults.take(orbit.check_range(start, end), Fault::Orbit);
-        }
-        if let Some(co2) = co2 {
-            for age in [start, end] {
-                faults.take(co2.at(age), Fault::CarbonDioxide);
+        for (key, age) in [
+            ("time.start_kyr", self.time.start_kyr),
+            ("time.end_kyr", self.time.end_kyr),
+        ] {
+            // What is no age at all was told already.
+            if !is_age(age) {
+                continue;
+            }
+            if let Some(orbit) = orbit {
+                let reached = orbit.check_range(age, age);
+                faults.take(reached, |error| Fault::OrbitAge { key, error });
+            }
+            if let Some(co2) = co2 {
+                faults.take(co2.at(age), |error| Fault::CarbonDioxideAge { key, error });
             }
         }
     }
 
     fn setting(&self, faults: &mut Faults) -> Option<Setting> {
-        let bands = LatitudeBands::new(self.grid.bands, self.grid.spacing);
-        let bands = faults.take(bands, Fault::Bands)?;
+        // Unusable numbers were told already; a huge one must not take all memory either.
+        if !self.steps_usable() {
+            return None;
+        }
+        let bands = LatitudeBands::new(self.grid.bands, self.grid.spacing).ok()?;
         let surface = faults.take_all(self.surface.build(&bands), Fault::Range);
-        let months = MonthWeights::new(self.grid.steps_per_year);
-        let months = faults.take(months, |e| Fault::Grid(e.to_string()));
+        let months = MonthWeights::new(self.grid.steps_per_year).ok();
         Some(Setting {
             surface: surface?,
             months: months?,

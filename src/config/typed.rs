@@ -4,8 +4,10 @@
 //! from the origins. The wording of serde is read here ("unknown field `x`, expected ..."); tests
 //! hold it fast.
 
-use super::error::{ConfigError, Place, Unknown, nearest};
+use super::error::{ConfigError, KindAlone, Place, Unknown, nearest};
 use super::origin::{Origins, join, one_line, parent};
+use super::read::KIND;
+use super::set;
 use serde::de::DeserializeOwned;
 use toml::{Table, Value};
 
@@ -14,26 +16,43 @@ pub(super) fn read<T: DeserializeOwned>(
     table: &Table,
     origins: &Origins,
 ) -> Result<T, ConfigError> {
+    parse(table).map_err(|(path, message)| {
+        let complaint = |table: &Table| parse::<T>(table).err().map(|(_, message)| message);
+        explain(table, origins, &path, &message, &complaint)
+    })
+}
+
+/// Reads, or gives the reader's words and the key path that it names; empty for the top.
+fn parse<T: DeserializeOwned>(table: &Table) -> Result<T, (String, String)> {
     serde_path_to_error::deserialize(Value::Table(table.clone())).map_err(|e| {
         let path = match e.path().to_string() {
             top if top == "." => String::new(),
             path => path,
         };
-        explain(table, origins, &path, e.inner().message())
+        (path, one_line(e.inner().message()))
     })
 }
 
 /// What the reader meant.
-fn explain(table: &Table, origins: &Origins, path: &str, message: &str) -> ConfigError {
-    let message = one_line(message);
-    if let Some(key) = quoted_after(&message, "missing field ") {
-        return ConfigError::Missing {
-            place: place(origins, path),
-            key: key.to_owned(),
-            table: path.to_owned(),
-        };
+fn explain(
+    table: &Table,
+    origins: &Origins,
+    path: &str,
+    message: &str,
+    complaint: &dyn Fn(&Table) -> Option<String>,
+) -> ConfigError {
+    if let Some(key) = quoted_after(message, "missing field ") {
+        let keys = vec![key.to_owned()];
+        let path = &home(table, path, key, complaint);
+        return kind_alone(table, origins, path, key, &keys).unwrap_or_else(|| {
+            ConfigError::Missing {
+                place: place(origins, path),
+                keys,
+                table: path.to_owned(),
+            }
+        });
     }
-    if let Some(name) = quoted_after(&message, "unknown field ") {
+    if let Some(name) = quoted_after(message, "unknown field ") {
         let above = match parent(path) {
             Some(above) if path == join(above, name) && !has_key(table, path, name) => above,
             _ => path,
@@ -44,22 +63,55 @@ fn explain(table: &Table, origins: &Origins, path: &str, message: &str) -> Confi
             key => only_below(table, above, &named).unwrap_or(key),
         };
         let above = parent(&key).unwrap_or(above);
-        return unknown(origins, "key", name, above, &key, &message);
+        let known: Vec<_> = names_in(allowed_in(message)).map(str::to_owned).collect();
+        return kind_alone(table, origins, above, name, &known)
+            .unwrap_or_else(|| unknown(origins, "key", name, above, &key, message));
     }
-    if let Some(name) = quoted_after(&message, "unknown variant ") {
+    if let Some(name) = quoted_after(message, "unknown variant ") {
         let at = if has_kind(table, path, name) {
-            join(path, "kind")
+            join(path, KIND)
         } else {
-            path.to_owned()
+            let named = |_: &str, value: &Value| value.as_str() == Some(name);
+            only_below(table, path, &named).unwrap_or_else(|| path.to_owned())
         };
-        return unknown(origins, "choice", name, &at, &at, &message);
+        return unknown(origins, "choice", name, &at, &at, message);
     }
-    let path = culprit(table, path, &message).unwrap_or_else(|| path.to_owned());
+    let path = culprit(table, path, message).unwrap_or_else(|| path.to_owned());
     ConfigError::Value {
         place: place(origins, &path),
         key: path,
-        message: plain(&message),
+        message: plain(message),
     }
+}
+
+/// The table that lacks `key`. Within a table with a `kind` the reader names that table for all
+/// below it; the one meant is where adding the key changes what the reader says.
+fn home(
+    table: &Table,
+    path: &str,
+    key: &str,
+    complaint: &dyn Fn(&Table) -> Option<String>,
+) -> String {
+    let about_key = |message: &String| {
+        let start = ["missing field ", "unknown field "];
+        start
+            .iter()
+            .any(|start| quoted_after(message, start) == Some(key))
+    };
+    let meant = |path: &String| {
+        let mut copy = table.clone();
+        let Some(Value::Table(within)) = set::slot(&mut copy, path) else {
+            return false;
+        };
+        within.insert(key.to_owned(), Value::Boolean(true));
+        !complaint(&copy).as_ref().is_some_and(about_key)
+    };
+    let lacks = |_: &str, value: &Value| value.as_table().is_some_and(|t| !t.contains_key(key));
+    let tables = all_below(table, path, &lacks);
+    tables
+        .into_iter()
+        .find(meant)
+        .unwrap_or_else(|| path.to_owned())
 }
 
 /// The reader's message in words of the user instead of the program's types.
@@ -73,6 +125,8 @@ fn plain(message: &str) -> String {
         tagged if tagged.starts_with("internally tagged enum") => {
             "a table with a `kind`, such as {kind=\"...\"} (in quotes on the command line)"
         }
+        tagged if tagged.starts_with("struct ") => "a table",
+        "variant identifier" | "string or map" => "a text that names a choice",
         other => other,
     };
     format!("{found}, expected {expected}")
@@ -104,11 +158,21 @@ fn seen_as(value: &Value) -> String {
 
 /// The path of the only key below `path` that `is_it`; `None` if there is none or more.
 fn only_below(table: &Table, path: &str, is_it: &dyn Fn(&str, &Value) -> bool) -> Option<String> {
+    let mut found = all_below(table, path, is_it);
+    let first = found.pop()?;
+    found.is_empty().then_some(first)
+}
+
+/// The paths of all keys below `path` that `is_it`.
+fn all_below(table: &Table, path: &str, is_it: &dyn Fn(&str, &Value) -> bool) -> Vec<String> {
+    let mut found = Vec::new();
     let top = match path {
         "" => table,
-        _ => at(table, path)?.as_table()?,
+        _ => match at(table, path).and_then(Value::as_table) {
+            Some(inner) => inner,
+            None => return found,
+        },
     };
-    let mut found = Vec::new();
     let mut open = vec![(path.to_owned(), top)];
     while let Some((path, inner)) = open.pop() {
         for (key, value) in inner {
@@ -121,8 +185,45 @@ fn only_below(table: &Table, path: &str, is_it: &dyn Fn(&str, &Value) -> bool) -
             }
         }
     }
-    let first = found.pop()?;
-    found.is_empty().then_some(first)
+    found
+}
+
+/// The error when `name` is unknown or missing in the table `above` since an edit changed the
+/// `kind` of that table alone.
+fn kind_alone(
+    table: &Table,
+    origins: &Origins,
+    above: &str,
+    name: &str,
+    keys: &[String],
+) -> Option<ConfigError> {
+    let kind = join(above, KIND);
+    let place = origins.get(&kind)?;
+    let written = origins.get(&join(above, name));
+    if !matches!(place, Place::CommandLine { .. })
+        || matches!(written, Some(Place::CommandLine { .. }))
+    {
+        return None;
+    }
+    Some(ConfigError::KindAlone(Box::new(KindAlone {
+        place: place.clone(),
+        table: above.to_owned(),
+        kind: at(table, &kind)?.as_str()?.to_owned(),
+        keys: keys.to_vec(),
+        fault: name.to_owned(),
+    })))
+}
+
+/// What the reader's message says was expected.
+fn allowed_in(message: &str) -> &str {
+    message
+        .split_once(", ")
+        .map_or("none is known here", |(_, rest)| rest)
+}
+
+/// The names in backquotes.
+pub(super) fn names_in(text: &str) -> impl Iterator<Item = &str> {
+    text.split('`').skip(1).step_by(2)
 }
 
 /// The error for a key or choice that is not known.
@@ -134,16 +235,13 @@ fn unknown(
     at: &str,
     message: &str,
 ) -> ConfigError {
-    let allowed = message
-        .split_once(", ")
-        .map_or("none is known here", |(_, rest)| rest);
-    let known = allowed.split('`').skip(1).step_by(2);
+    let allowed = allowed_in(message);
     ConfigError::Unknown(Box::new(Unknown {
         place: place(origins, at),
         what,
         name: name.to_owned(),
         table: table.to_owned(),
-        nearest: nearest(name, known),
+        nearest: nearest(name, names_in(allowed)),
         allowed: allowed.to_owned(),
     }))
 }
@@ -164,7 +262,8 @@ fn quoted_after<'a>(message: &'a str, start: &str) -> Option<&'a str> {
         .next()
 }
 
-fn at<'a>(table: &'a Table, path: &str) -> Option<&'a Value> {
+/// The value at a key path.
+pub(super) fn at<'a>(table: &'a Table, path: &str) -> Option<&'a Value> {
     let mut steps = path.split(['.', '[']).map(|s| s.trim_end_matches(']'));
     let mut value = table.get(steps.next()?)?;
     for step in steps {
@@ -187,7 +286,7 @@ fn has_key(table: &Table, path: &str, name: &str) -> bool {
 
 fn has_kind(table: &Table, path: &str, name: &str) -> bool {
     at(table, path)
-        .and_then(|value| value.get("kind"))
+        .and_then(|value| value.get(KIND))
         .and_then(Value::as_str)
         == Some(name)
 }

@@ -5,6 +5,7 @@
 //! linearly. Ages outside what was given are an error, never extrapolated.
 
 use crate::numerics::profile;
+use crate::numerics::shown::Shown;
 use serde::{Deserialize, Serialize};
 
 /// Concentrations that can be meant, ppm (chosen here): below are fractions given by mistake, above is no
@@ -42,23 +43,37 @@ pub enum CarbonDioxideSpec {
 /// Why carbon dioxide cannot be used.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum CarbonDioxideError {
-    /// A concentration that is not positive.
-    #[error("co2: {value} ppm{} is not a concentration in ppm: it must lie between 1 and 100000", at(*age_kyr))]
-    NotPositive {
+    /// A number that is no concentration.
+    #[error("{key} = {} is out of range: must lie between 1 and 100000 ppm{}", Shown(*value), more(*others))]
+    Concentration {
+        /// Key or column.
+        key: &'static str,
         /// The value.
         value: f64,
-        /// Its age, kyr, in a table.
-        age_kyr: Option<f64>,
+        /// Row of a table, from 0.
+        row: usize,
+        /// How many rows below are out of range too.
+        others: usize,
     },
-    /// Ages out of order.
-    #[error(
-        "co2: ages must differ and increase down the table; {first} kyr is followed by {second} kyr"
-    )]
+    /// Two ages in the wrong order.
+    #[error("co2.from_kyr = {from_kyr} must be older (larger) than co2.to_kyr = {to_kyr}")]
+    Backwards {
+        /// Where the concentration begins to change, kyr.
+        from_kyr: f64,
+        /// Where it ends, kyr.
+        to_kyr: f64,
+    },
+    /// Ages of a table out of order.
+    #[error("age_kyr = {second} follows {first}: ages must increase down the table{}", more(*others))]
     Order {
         /// One age, kyr.
         first: f64,
         /// The next, kyr.
         second: f64,
+        /// Row of the second, from 0.
+        row: usize,
+        /// How many rows below are out of order too.
+        others: usize,
     },
     /// An age that was not given.
     #[error(
@@ -85,32 +100,59 @@ impl CarbonDioxide {
     /// The same concentration at all ages.
     ///
     /// # Errors
-    /// When it is not positive.
+    /// When it is out of range.
     pub fn constant(co2_ppm: f64) -> Result<Self, CarbonDioxideError> {
-        check(None, co2_ppm)?;
-        Ok(Self {
-            age_kyr: Vec::new(),
-            co2_ppm: vec![co2_ppm],
-        })
+        match concentration("co2.co2_ppm", &[co2_ppm]) {
+            Some(error) => Err(error),
+            None => Ok(Self {
+                age_kyr: Vec::new(),
+                co2_ppm: vec![co2_ppm],
+            }),
+        }
+    }
+
+    /// Linear in time from an older age, kyr, and its concentration, ppm, to a younger one.
+    ///
+    /// # Errors
+    /// All that is wrong: concentrations out of range, ages in the wrong order.
+    pub fn linear(
+        [from_kyr, from_ppm]: [f64; 2],
+        [to_kyr, to_ppm]: [f64; 2],
+    ) -> Result<Self, Vec<CarbonDioxideError>> {
+        let mut wrong = Vec::new();
+        if !(from_kyr > to_kyr && from_kyr.is_finite() && to_kyr.is_finite()) {
+            wrong.push(CarbonDioxideError::Backwards { from_kyr, to_kyr });
+        }
+        wrong.extend(concentration("co2.from_ppm", &[from_ppm]));
+        wrong.extend(concentration("co2.to_ppm", &[to_ppm]));
+        if wrong.is_empty() {
+            let (age_kyr, co2_ppm) = (vec![to_kyr, from_kyr], vec![to_ppm, from_ppm]);
+            return Ok(Self { age_kyr, co2_ppm });
+        }
+        Err(wrong)
     }
 
     /// Linear interpolation between ages, which must increase (older last).
     ///
     /// # Errors
-    /// When ages do not increase or a concentration is not positive.
-    pub fn table(age_kyr: Vec<f64>, co2_ppm: Vec<f64>) -> Result<Self, CarbonDioxideError> {
-        for (age, ppm) in age_kyr.iter().zip(&co2_ppm) {
-            check(Some(*age), *ppm)?;
+    /// All that is wrong: the first concentration out of range, the first age out of order, each
+    /// with the number of those below.
+    pub fn table(age_kyr: Vec<f64>, co2_ppm: Vec<f64>) -> Result<Self, Vec<CarbonDioxideError>> {
+        let mut wrong: Vec<_> = concentration("co2_ppm", &co2_ppm).into_iter().collect();
+        let rising = |pair: &[f64]| pair[0] < pair[1];
+        let mut falls = (1..age_kyr.len()).filter(|row| !rising(&age_kyr[row - 1..=*row]));
+        if let Some(row) = falls.next() {
+            wrong.push(CarbonDioxideError::Order {
+                first: age_kyr[row - 1],
+                second: age_kyr[row],
+                row,
+                others: falls.count(),
+            });
         }
-        for pair in age_kyr.windows(2) {
-            if pair[0].partial_cmp(&pair[1]) != Some(std::cmp::Ordering::Less) {
-                return Err(CarbonDioxideError::Order {
-                    first: pair[0],
-                    second: pair[1],
-                });
-            }
+        if wrong.is_empty() {
+            return Ok(Self { age_kyr, co2_ppm });
         }
-        Ok(Self { age_kyr, co2_ppm })
+        Err(wrong)
     }
 
     /// Concentration at an age, ppm.
@@ -133,17 +175,27 @@ impl CarbonDioxide {
     }
 }
 
-fn check(age_kyr: Option<f64>, value: f64) -> Result<(), CarbonDioxideError> {
-    if CONCENTRATIONS_PPM.contains(&value) {
-        return Ok(());
-    }
-    Err(CarbonDioxideError::NotPositive { value, age_kyr })
+/// The first value that is no concentration.
+fn concentration(key: &'static str, values: &[f64]) -> Option<CarbonDioxideError> {
+    let mut wrong = values
+        .iter()
+        .enumerate()
+        .filter(|(_, ppm)| !CONCENTRATIONS_PPM.contains(ppm));
+    let (row, &value) = wrong.next()?;
+    Some(CarbonDioxideError::Concentration {
+        key,
+        value,
+        row,
+        others: wrong.count(),
+    })
 }
 
-fn at(age_kyr: Option<f64>) -> String {
-    age_kyr
-        .map(|age| format!(" at {age} kyr"))
-        .unwrap_or_default()
+fn more(others: usize) -> String {
+    match others {
+        0 => String::new(),
+        1 => " (and one row below)".to_owned(),
+        _ => format!(" (and {others} rows below)"),
+    }
 }
 
 #[cfg(test)]
@@ -167,5 +219,15 @@ mod tests {
         assert!(CarbonDioxide::constant(0.0).is_err());
         assert!(CarbonDioxide::constant(f64::NAN).is_err());
         assert!(CarbonDioxide::table(vec![5.0, 5.0], vec![280.0, 280.0]).is_err());
+        let all = CarbonDioxide::table(vec![0.0, 9.0, 5.0, f64::NAN], vec![280.0, 0.0, 1.0, -1.0]);
+        let all: Vec<_> = all.unwrap_err().iter().map(ToString::to_string).collect();
+        assert!(all[0].starts_with("co2_ppm = 0 is out of range") && all[0].contains("one row"));
+        assert!(all[1].starts_with("age_kyr = 5 follows 9") && all.len() == 2);
+        assert_eq!(
+            CarbonDioxide::linear([1.0, 0.0], [2.0, 1e6])
+                .unwrap_err()
+                .len(),
+            3
+        );
     }
 }

@@ -51,12 +51,17 @@ impl LatitudeBands {
     /// Most bands: a tenth of a degree.
     pub const MAX: usize = 1800;
 
+    /// Whether this many bands can be built: a multiple of 4 within [`Self::MIN`]..=[`Self::MAX`].
+    pub fn usable(bands: usize) -> bool {
+        bands.is_multiple_of(4) && (Self::MIN..=Self::MAX).contains(&bands)
+    }
+
     /// Builds `bands` bands.
     ///
     /// # Errors
-    /// When the number is not a multiple of 4 within [`Self::MIN`]..=[`Self::MAX`].
+    /// When the number is not [`Self::usable`].
     pub fn new(bands: usize, spacing: Spacing) -> Result<Self, BandsError> {
-        if !bands.is_multiple_of(4) || !(Self::MIN..=Self::MAX).contains(&bands) {
+        if !Self::usable(bands) {
             return Err(BandsError { bands });
         }
         let fraction = |j: usize| 2.0 * j as f64 / bands as f64 - 1.0;

@@ -1,5 +1,6 @@
 //! The run's calendar of years: from an older to a younger age in whole records.
 
+use crate::numerics::shown::Shown;
 use serde::{Deserialize, Serialize};
 use std::fmt;
 
@@ -42,9 +43,26 @@ impl SpinUp {
     }
 }
 
+/// Farthest age from 1950, kyr: the Earth is not older (Patterson 1956, Geochim. Cosmochim. Acta
+/// 10:230; memory), so a larger number is another unit.
+const FARTHEST_KYR: f64 = 4.55e6;
+
+/// Whether a number can be an age, kyr before 1950: not farther than the Earth is old.
+pub fn is_age(kyr: f64) -> bool {
+    (-FARTHEST_KYR..=FARTHEST_KYR).contains(&kyr)
+}
+
 /// Times that make no run.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum PlanError {
+    /// Not an age.
+    #[error("{key} = {} is out of range: must lie within 4550000 kyr of 1950", Shown(*value))]
+    Age {
+        /// The key.
+        key: &'static str,
+        /// Its value, kyr.
+        value: f64,
+    },
     /// Start not older than end.
     #[error("time.start_kyr = {start_kyr} must be older (larger) than time.end_kyr = {end_kyr}")]
     Backwards {
@@ -53,19 +71,15 @@ pub enum PlanError {
         /// End, kyr.
         end_kyr: f64,
     },
-    /// A length of zero.
-    #[error("{key} must be at least 1 year")]
-    Zero {
-        /// The key.
-        key: &'static str,
-    },
-    /// A pace that cannot be meant.
-    #[error("{key} = {value} is out of range: must lie between 1 and 1000 years")]
-    Pace {
-        /// The key.
+    /// A number of years that cannot be meant.
+    #[error("{key} = {} is out of range: {limit}", Shown(*value))]
+    Years {
+        /// The key, or the sum of keys.
         key: &'static str,
         /// Its value.
         value: f64,
+        /// What is allowed, in words.
+        limit: &'static str,
     },
     /// Lengths that do not divide.
     #[error("{what} ({long} years) must be a multiple of {unit} ({short} years)")]
@@ -81,8 +95,75 @@ pub enum PlanError {
     },
 }
 
+impl PlanError {
+    /// The keys that do not fit together, or the one that is wrong.
+    pub fn keys(&self) -> Vec<&'static str> {
+        let run = ["time.start_kyr", "time.end_kyr"];
+        match self {
+            Self::Age { key, .. } => vec![key],
+            Self::Years { key, .. } => vec![key.split(' ').next().unwrap_or(key)],
+            Self::Backwards { .. } => run.to_vec(),
+            Self::Multiple { what, unit, .. } if what.starts_with("time.") => vec![what, unit],
+            Self::Multiple { unit, .. } => [&run[..], &[unit]].concat(),
+        }
+    }
+}
+
 /// Lengths this close are the same, years: ages in kyr are rounded to some nanoyears.
 const SAME_YR: f64 = 1e-3;
+
+impl TimeSpec {
+    fn check_ages(&self) -> Vec<PlanError> {
+        let (start_kyr, end_kyr) = (self.start_kyr, self.end_kyr);
+        let ages = [("time.start_kyr", start_kyr), ("time.end_kyr", end_kyr)];
+        let wrong = ages.into_iter().filter(|(_, age)| !is_age(*age));
+        let mut wrong: Vec<_> = wrong
+            .map(|(key, value)| PlanError::Age { key, value })
+            .collect();
+        if wrong.is_empty() && start_kyr <= end_kyr {
+            wrong.push(PlanError::Backwards { start_kyr, end_kyr });
+        }
+        wrong
+    }
+
+    fn check_years(&self) -> Vec<PlanError> {
+        let spin_up = &self.spin_up;
+        let one = "must be at least 1 year";
+        let pace = "must lie between 1 and 1000 years";
+        let all = [
+            (
+                "time.record_every_yr",
+                f64::from(self.record_every_yr),
+                f64::INFINITY,
+                one,
+            ),
+            (
+                "time.slow_years_per_seasonal_year",
+                f64::from(self.slow_years_per_seasonal_year),
+                f64::from(LARGEST_PACE_YR),
+                pace,
+            ),
+            (
+                "time.spin_up.seasonal_yr + settling_yr",
+                f64::from(spin_up.seasonal_yr) + f64::from(spin_up.settling_yr),
+                f64::INFINITY,
+                one,
+            ),
+            (
+                "time.spin_up.slow_years_per_seasonal_year",
+                spin_up.slow_years_per_seasonal_year,
+                f64::from(LARGEST_PACE_YR),
+                pace,
+            ),
+        ];
+        let wrong = all
+            .into_iter()
+            .filter(|(_, value, most, _)| !(1.0..=*most).contains(value));
+        wrong
+            .map(|(key, value, _, limit)| PlanError::Years { key, value, limit })
+            .collect()
+    }
+}
 
 /// A checked plan.
 #[derive(Clone, Debug, PartialEq)]
@@ -99,48 +180,20 @@ impl Plan {
     /// # Errors
     /// When start and end, record and seasonal year do not fit together.
     pub fn new(spec: &TimeSpec) -> Result<Self, Vec<PlanError>> {
-        let mut wrong = Vec::new();
-        let (start_kyr, end_kyr) = (spec.start_kyr, spec.end_kyr);
-        if !(start_kyr > end_kyr && start_kyr.is_finite() && end_kyr.is_finite()) {
-            wrong.push(PlanError::Backwards { start_kyr, end_kyr });
-        }
-        let (record, slow) = (spec.record_every_yr, spec.slow_years_per_seasonal_year);
-        for (key, value) in [
-            ("time.record_every_yr", f64::from(record)),
-            ("time.slow_years_per_seasonal_year", f64::from(slow)),
-            (
-                "time.spin_up.seasonal_yr + settling_yr",
-                f64::from(spec.spin_up.seasonal_yr) + f64::from(spec.spin_up.settling_yr),
-            ),
-            (
-                "time.spin_up.slow_years_per_seasonal_year",
-                spec.spin_up.slow_years_per_seasonal_year,
-            ),
-        ] {
-            if !(value >= 1.0 && value.is_finite()) {
-                wrong.push(PlanError::Zero { key });
-            }
-        }
-        for (key, value) in [
-            ("time.slow_years_per_seasonal_year", f64::from(slow)),
-            (
-                "time.spin_up.slow_years_per_seasonal_year",
-                spec.spin_up.slow_years_per_seasonal_year,
-            ),
-        ] {
-            if value > f64::from(LARGEST_PACE_YR) {
-                wrong.push(PlanError::Pace { key, value });
-            }
-        }
+        let mut wrong = spec.check_ages();
+        wrong.extend(spec.check_years());
         if !wrong.is_empty() {
             return Err(wrong);
         }
-        let years = (start_kyr - end_kyr) * 1000.0;
+        let start_kyr = spec.start_kyr;
+        let (record, slow) = (spec.record_every_yr, spec.slow_years_per_seasonal_year);
+        let years = (start_kyr - spec.end_kyr) * 1000.0;
         let records = (years / f64::from(record)).round();
         if (records * f64::from(record) - years).abs() > SAME_YR || records < 1.0 {
             wrong.push(PlanError::Multiple {
                 what: "the run",
-                long: years,
+                // Rounded for the reader: ages in kyr have some rounding of their own.
+                long: (years * 1000.0).round() / 1000.0,
                 unit: "time.record_every_yr",
                 short: f64::from(record),
             });

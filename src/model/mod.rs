@@ -27,7 +27,7 @@ pub enum RunError<E: std::error::Error + 'static> {
     Drive(#[from] DriveError),
     /// The physics broke down.
     #[error(
-        "at {age_kyr:.3} kyr before 1950 ({}): {source}; look first at the change that led here and at grid.steps_per_year",
+        "at {age_kyr:.3} kyr before 1950 ({}): {source}; look first at the change that led here",
         when(*year)
     )]
     Physics {

@@ -5,5 +5,6 @@
 pub mod dispatch;
 pub mod lanes;
 pub mod profile;
+pub mod shown;
 pub mod sum;
 pub mod tridiagonal;

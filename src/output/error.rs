@@ -46,7 +46,7 @@ pub enum OutputError {
         reason: &'static str,
     },
     /// The operating system refused.
-    #[error("cannot {action} {path}: {source}")]
+    #[error("cannot {action} {path}: {source}{}", advice(source))]
     Io {
         /// What was tried.
         action: &'static str,
@@ -56,7 +56,7 @@ pub enum OutputError {
         source: std::io::Error,
     },
     /// The HDF5 library refused.
-    #[error("{path}: cannot {action}: {source}")]
+    #[error("{path}: cannot {action}: {}", plain(source))]
     Hdf5 {
         /// What was tried, with the variable or attribute.
         action: String,
@@ -141,6 +141,41 @@ pub enum OutputError {
         /// What is needed.
         needed: &'static str,
     },
+}
+
+/// What the library said, on one line. When the operating system refused, its word alone counts: the
+/// library adds addresses and the time of day.
+fn plain(source: &hdf5::Error) -> String {
+    let text = source.to_string();
+    let system = |mark: &str, end: char| {
+        let (_, rest) = text.split_once(mark)?;
+        rest.split(end).next()
+    };
+    let number = system("errno = ", ',').and_then(|n| n.trim().parse().ok());
+    match (number, system("error message = '", '\'')) {
+        (Some(number), Some(message)) => {
+            let system = std::io::Error::from_raw_os_error(number);
+            format!("{message} (os error {number}){}", advice(&system))
+        }
+        _ => text.split_whitespace().collect::<Vec<_>>().join(" "),
+    }
+}
+
+/// The way out of what the operating system refused.
+fn advice(error: &std::io::Error) -> &'static str {
+    use std::io::ErrorKind::{
+        AlreadyExists, FileTooLarge, NotADirectory, PermissionDenied, QuotaExceeded,
+        ReadOnlyFilesystem, StorageFull,
+    };
+    match error.kind() {
+        StorageFull | QuotaExceeded => {
+            "; free space or choose an output elsewhere: complete files stay as they are"
+        }
+        FileTooLarge => "; raise the limit of file sizes (ulimit -f) or record less often",
+        AlreadyExists | NotADirectory => "; a file stands where the folder should be",
+        PermissionDenied | ReadOnlyFilesystem => "; choose an output elsewhere",
+        _ => "",
+    }
 }
 
 /// Result of this module's functions.

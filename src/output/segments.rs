@@ -73,6 +73,15 @@ pub(crate) fn remove(files: &[PathBuf]) -> Result<()> {
     Ok(())
 }
 
+/// Deletes a file that could not be completed: it is of no use, and on a full disk in the way.
+pub(crate) fn clearing<T>(temporary: &Path, outcome: Result<T>) -> Result<T> {
+    if outcome.is_err() {
+        // What stopped the writing is told; that clearing failed too would hide it.
+        let _ = fs::remove_file(temporary);
+    }
+    outcome
+}
+
 /// Gives a finished, closed file its final name, so that a crash leaves the old or the new state.
 pub(crate) fn seal(temporary: &Path, path: &Path) -> Result<()> {
     let file = OpenOptions::new().write(true).open(temporary);

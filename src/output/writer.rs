@@ -157,10 +157,12 @@ impl RunWriter {
         if self.saved < self.buffer.len() {
             let path = self.claim.path();
             let temporary = segments::temporary(path, self.full);
-            let layout = Layout::create(&temporary, &self.schema)?;
-            layout.write(0, &Block::gather(&self.schema, &self.buffer))?;
-            layout.finish(&self.restart)?;
-            segments::seal(&temporary, &segments::path(path, self.full))?;
+            let written = Layout::create(&temporary, &self.schema).and_then(|layout| {
+                layout.write(0, &Block::gather(&self.schema, &self.buffer))?;
+                layout.finish(&self.restart)?;
+                segments::seal(&temporary, &segments::path(path, self.full))
+            });
+            segments::clearing(&temporary, written)?;
             self.saved = self.buffer.len();
         }
         self.saved_at = Instant::now();
@@ -184,9 +186,11 @@ impl RunWriter {
             return Err(OutputError::Empty { path });
         }
         let temporary = segments::merging(&path);
-        self.merge(&temporary)?;
-        self.claim.refuse_output(self.overwrite)?;
-        segments::seal(&temporary, &path)?;
+        let merged = self.merge(&temporary).and_then(|()| {
+            self.claim.refuse_output(self.overwrite)?;
+            segments::seal(&temporary, &path)
+        });
+        segments::clearing(&temporary, merged)?;
         let files: Vec<_> = (0..self.segments())
             .rev()
             .map(|n| segments::path(&path, n))
@@ -259,7 +263,7 @@ impl RunWriter {
             if let Some(value) = own.iter().find(too_large) {
                 let name = variable.name;
                 return Err(format!(
-                    "`{name}` is {value}, too large to store; the run diverged"
+                    "`{name}` is {value} at {age:.3} kyr before 1950, too large to store; the run diverged"
                 ));
             }
             rest = others;

@@ -17,6 +17,7 @@ pub mod surface;
 
 use crate::forcing::YearForcing;
 use crate::grid::calendar::MonthWeights;
+use crate::numerics::shown::Shown;
 use crate::series::Variable;
 use budget::{Account, Quantity};
 use exchange::Exchange;
@@ -25,7 +26,7 @@ use serde::{Deserialize, Serialize};
 
 /// A parameter outside the range in which the equations hold.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
-#[error("{key} = {value} is out of range: {limit}")]
+#[error("{key} = {} is out of range: {limit}", Shown(*value))]
 pub struct RangeError {
     /// Key path below the component's table, such as `sea_ice.conductivity_w_m_k`.
     pub key: String,

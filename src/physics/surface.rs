@@ -77,13 +77,13 @@ impl SurfaceSpec {
             fits,
             limit,
         );
-        for &fraction in &self.land_fraction {
-            r.fraction("surface.land_fraction", fraction);
+        for (i, &fraction) in self.land_fraction.iter().enumerate() {
+            r.fraction(&format!("surface.land_fraction[{i}]"), fraction);
         }
-        for &height in &self.land_elevation_m {
+        for (i, &height) in self.land_elevation_m.iter().enumerate() {
             let limit = "must lie between -500 and 9000 m";
             r.require(
-                "surface.land_elevation_m",
+                &format!("surface.land_elevation_m[{i}]"),
                 height,
                 (-500.0..=9000.0).contains(&height),
                 limit,

@@ -26,9 +26,10 @@ pub(crate) struct Outcome {
 }
 
 impl Outcome {
-    /// Asserts that it failed, with nothing but a message that holds all fragments.
+    /// Asserts that it failed of itself, with nothing but a message that holds all fragments.
     pub(crate) fn says(&self, fragments: &[&str]) {
-        assert!(!self.ok && self.out.is_empty(), "{self:?}");
+        let failed = matches!(self.code, Some(1 | 2));
+        assert!(failed && self.out.is_empty(), "{self:?}");
         for fragment in fragments {
             assert!(
                 self.err.contains(fragment),
@@ -67,10 +68,16 @@ impl Folder {
 
     /// Names of all files, sorted.
     pub(crate) fn files(&self) -> Vec<String> {
-        let entries = std::fs::read_dir(self.0.path()).expect("a folder");
+        self.files_in("")
+    }
+
+    /// Names of all files in a folder within, sorted; logs are left out.
+    pub(crate) fn files_in(&self, name: &str) -> Vec<String> {
+        let entries = std::fs::read_dir(self.path(name)).expect("a folder");
         let name = |e: std::io::Result<std::fs::DirEntry>| e.expect("an entry").file_name();
         let mut names: Vec<_> = entries
             .map(|e| name(e).to_string_lossy().into_owned())
+            .filter(|n| !n.ends_with("nc.log"))
             .collect();
         names.sort();
         names

@@ -17,12 +17,13 @@ pub use spec::{EccentricitySource, ObliquitySource, OrbitSpec, PerihelionSource}
 use thiserror::Error;
 
 use super::elements::{Elements, PerihelionLongitude};
+use crate::numerics::shown::Shown;
 
 /// Why an orbit cannot be built or asked.
 #[derive(Clone, Debug, Error, PartialEq)]
 pub enum OrbitError {
     /// A number of the specification has no meaning.
-    #[error("orbit.{key} = {value}: {limit}")]
+    #[error("orbit.{key} = {}: {limit}", Shown(*value))]
     Value {
         /// Place of the number in the specification.
         key: &'static str,

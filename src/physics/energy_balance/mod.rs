@@ -141,7 +141,16 @@ impl EnergyBalance {
                 self.surface.bands.centre_deg()[band]
             )
         };
-        if let Some((variable, band)) = self.state.broken() {
+        // Within a year all bands break; the one that was farthest from 0 degC began.
+        let reach = |band: usize| {
+            let ends = [
+                self.means.sum(band, |row| row.coldest),
+                self.means.sum(band, |row| row.warmest),
+            ];
+            ends[0].abs().max(ends[1].abs())
+        };
+        let nearer = |a: &(_, usize), b: &(_, usize)| reach(b.1).total_cmp(&reach(a.1));
+        if let Some((variable, band)) = self.state.broken().min_by(nearer) {
             return Err(PhysicsError::NotFinite {
                 component,
                 variable,

@@ -343,17 +343,16 @@ impl Params {
             lengths,
             limit,
         );
-        for &depth in &m.depth_m {
-            r.positive("mixed_layer.depth_m", depth);
+        for (i, &depth) in m.depth_m.iter().enumerate() {
+            r.positive(&format!("mixed_layer.depth_m[{i}]"), depth);
         }
-        for pair in m.latitude_deg.windows(2) {
-            let limit = "latitudes must increase";
-            r.require(
-                "mixed_layer.latitude_deg",
-                pair[1],
-                pair[1] > pair[0],
-                limit,
-            );
+        let mut south = -90.0;
+        for (i, &latitude) in m.latitude_deg.iter().enumerate() {
+            let key = format!("mixed_layer.latitude_deg[{i}]");
+            let fine = (south..=90.0).contains(&latitude) && (i == 0 || latitude > south);
+            let limit = "latitudes must increase, from -90 to 90 degrees north";
+            r.require(&key, latitude, fine, limit);
+            south = if fine { latitude } else { south };
         }
     }
 

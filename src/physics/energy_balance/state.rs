@@ -226,18 +226,18 @@ impl State {
         }
     }
 
-    /// First field and band that is not finite.
-    pub(super) fn broken(&self) -> Option<(&'static str, usize)> {
-        self.rows.iter().enumerate().find_map(|(r, row)| {
+    /// Fields and bands that are not finite, from the south.
+    pub(super) fn broken(&self) -> impl Iterator<Item = (&'static str, usize)> {
+        self.rows.iter().enumerate().flat_map(|(r, row)| {
             let fields = [
                 ("air temperature", row.air.now),
                 ("land temperature", row.land.now),
                 ("ocean enthalpy", row.enthalpy.now),
                 ("seasonal thermocline temperature", row.sub.now),
             ];
-            fields.into_iter().find_map(|(name, lanes)| {
-                let lane = lanes.0.iter().position(|v| !v.is_finite())?;
-                Some((name, WIDTH * r + lane))
+            fields.into_iter().flat_map(move |(name, lanes)| {
+                let broken = (0..WIDTH).filter(move |lane| !lanes.0[*lane].is_finite());
+                broken.map(move |lane| (name, WIDTH * r + lane))
             })
         })
     }

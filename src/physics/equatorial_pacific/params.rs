@@ -126,12 +126,19 @@ impl Coast {
             (10.0..=300.0).contains(&self.source_depth_m),
             "must lie between 10 and 300 m",
         );
-        for latitude in &self.coastal_latitudes_deg {
+        let coasts = &self.coastal_latitudes_deg;
+        r.require(
+            "coast.coastal_latitudes_deg (number of values)",
+            coasts.len() as f64,
+            !coasts.is_empty(),
+            "needs at least one latitude",
+        );
+        for (i, latitude) in coasts.iter().enumerate() {
             r.require(
-                "coast.coastal_latitudes_deg",
+                &format!("coast.coastal_latitudes_deg[{i}]"),
                 *latitude,
-                (-60.0..=60.0).contains(latitude),
-                "must lie between 60S and 60N",
+                (-60.0..=60.0).contains(latitude) && (i == 0 || *latitude > coasts[i - 1]),
+                "must lie between 60S and 60N and increase",
             );
         }
     }

@@ -31,6 +31,10 @@ pub struct Params {
     pub sinking: Sinking,
 }
 
+/// Depths that a column may have, m: chosen here, from one that still holds a thermocline to one far
+/// below any sea floor, as comparisons with an endless ocean need it.
+const DEPTHS_M: std::ops::RangeInclusive<f64> = 100.0..=20_000.0;
+
 /// Whether the column evolves.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 #[serde(rename_all = "snake_case")]
@@ -48,7 +52,7 @@ pub enum Evolution {
 pub struct Levels {
     /// Number of levels, 5-400. Tuned here (40; 80 lift the 20 degC isotherm by 1.2 m).
     pub count: usize,
-    /// Depth of the column, m, > 0. Mean ocean depth between 30 degrees north and south (ETOPO5).
+    /// Depth of the column, m, 100-20000. Mean ocean depth between 30 degrees north and south (ETOPO5).
     pub depth_m: f64,
     /// Thickness of the top level, m, > 0. Tuned here (15): its mean is the water the mixed layers meet, so
     /// it belongs to the calibration (half of it lifts the 20 degC isotherm by 0.6 m).
@@ -263,11 +267,16 @@ impl Levels {
         let count = self.count as f64;
         let usable = (5..=400).contains(&self.count);
         r.require("levels.count", count, usable, "must be 5 to 400 levels");
-        r.positive("levels.depth_m", self.depth_m);
+        // The first level is held against a depth and a number that are themselves fine.
+        let deep = DEPTHS_M.contains(&self.depth_m);
+        let limit = "must lie between 100 and 20000 m";
+        r.require("levels.depth_m", self.depth_m, deep, limit);
         r.require(
             "levels.first_m",
             self.first_m,
-            self.first_m > 0.0 && self.first_m * count < self.depth_m,
+            self.first_m > 0.0
+                && self.first_m.is_finite()
+                && (!usable || !deep || self.first_m * count < self.depth_m),
             "must be positive and less than the depth over the number of levels",
         );
     }
@@ -299,6 +308,7 @@ impl Mixing {
 impl Upwelling {
     fn check(&self, r: &mut Ranges, bottom_m: f64) {
         let (limit, south) = (self.broad_limit_deg, self.southern_latitude_deg);
+        let has_bottom = DEPTHS_M.contains(&bottom_m); // Otherwise the depth is told to be wrong, not the source.
         within(r, "upwelling.broad_limit_deg", limit, 5.0..=60.0);
         r.positive("upwelling.broad_width_deg", self.broad_width_deg);
         r.positive("upwelling.equatorial_width_deg", self.equatorial_width_deg);
@@ -307,7 +317,9 @@ impl Upwelling {
         r.require(
             "upwelling.southern_source_m",
             self.southern_source_m,
-            self.southern_source_m > 0.0 && self.southern_source_m < bottom_m,
+            self.southern_source_m > 0.0
+                && self.southern_source_m.is_finite()
+                && (!has_bottom || self.southern_source_m < bottom_m),
             "must be positive and above the bottom of the column",
         );
         r.not_negative("upwelling.southern_wind_m3_s", self.southern_wind_m3_s);
