@@ -5,6 +5,7 @@
 
 use orbicline::config::run::{Built, Experiment};
 use orbicline::forcing::YearForcing;
+use orbicline::grid::calendar::Calendar;
 use orbicline::model::clock::{Plan, SpinUp, TimeSpec};
 use orbicline::model::observer::{Keep, Nobody};
 use orbicline::orbit::elements::{Elements, PerihelionLongitude};
@@ -108,6 +109,7 @@ fn shares(experiment: &Experiment) -> Result<Vec<(String, f64)>, Box<dyn Error>>
                 greenhouse_w_m2: 0.0,
                 insolation_w_m2: &table.daily_mean_w_m2,
                 zenith_cosine: &table.zenith_cosine,
+                month_bounds: Calendar.month_bounds_fraction(),
                 slow_years: 1.0,
             };
             for (component, time) in components.iter_mut().zip(&mut times) {

@@ -70,7 +70,7 @@ fn messages(experiment: &Experiment, fault: Fault, slow_years: f64) -> Vec<Strin
     }
     found.extend(books(model.components()));
     found.extend(shapes(model.components(), experiment));
-    found.extend(metadata(model.components()));
+    found.extend(metadata(model.drive().sources(), model.components()));
     found.extend(restores(model.components(), fresh));
     found
 }
@@ -93,7 +93,7 @@ fn every_component_of_the_list_is_there() {
 fn conserves_every_component_keeps_books_shapes_metadata_and_state() {
     for edits in [
         &[][..],
-        &["grid.bands=72"],
+        &["grid.bands=72", "calendar.kind=fixed_angle"],
         &["physics.ocean_column.evolution=frozen"],
     ] {
         let experiment = reference::experiment(edits);

@@ -7,6 +7,7 @@
 
 use std::path::Path;
 
+use orbicline::output::schema::MonthCells;
 use orbicline::output::{AxisValues, OutputError, Overwrite, RunFile, RunWriter, Schema};
 use orbicline::series::{Axis, Record, Scale, Statistic, Variable};
 
@@ -86,8 +87,10 @@ fn schema() -> Schema {
             by_latitude: Vec::new(),
             latitude_edges_deg: (0..=6).map(|i| 30.0 * f64::from(i) - 90.0).collect(),
             depth_edges_m: vec![0.0, 10.0, 30.0, 70.0],
-            month_edges_year: (0..=12).map(|m| f64::from(m) / 12.0).collect(),
-            month_lengths_day: vec![365.0 / 12.0; 12],
+            months: MonthCells::Fixed {
+                edges_year: (0..=12).map(|m| f64::from(m) / 12.0).collect(),
+                lengths_day: vec![365.0 / 12.0; 12],
+            },
             coastal_latitudes_deg: vec![-25.0, 35.0],
         },
         variables: variables(),

@@ -2,6 +2,8 @@
 
 use super::Place;
 use crate::forcing::carbon_dioxide::CarbonDioxideError;
+use crate::forcing::mask::MaskError;
+use crate::forcing::months::CalendarError;
 use crate::model::clock::PlanError;
 use crate::orbit::solution::OrbitError;
 use crate::physics::RangeError;
@@ -20,6 +22,12 @@ pub enum Fault {
     /// The orbit.
     #[error(transparent)]
     Orbit(OrbitError),
+    /// The mask of another orbit.
+    #[error(transparent)]
+    Mask(MaskError),
+    /// The calendar.
+    #[error(transparent)]
+    Calendar(CalendarError),
     /// Carbon dioxide.
     #[error(transparent)]
     CarbonDioxide(CarbonDioxideError),
@@ -93,6 +101,13 @@ impl Fault {
                 return vec![format!("orbit.{key}")];
             }
             Self::Orbit(_) => vec!["orbit"],
+            Self::Mask(MaskError::Value { key, .. }) => return vec![format!("orbit_mask.{key}")],
+            Self::Mask(MaskError::Orbit(OrbitError::Value { key, .. })) => {
+                let key = key.split(' ').next().unwrap_or(key);
+                return vec![format!("orbit_mask.orbit.{key}")];
+            }
+            Self::Mask(_) => vec!["orbit_mask"],
+            Self::Calendar(_) => vec!["calendar.equinox_day"],
             Self::CarbonDioxide(error) => match error {
                 CarbonDioxideError::Concentration { key, .. } => vec![*key],
                 CarbonDioxideError::Backwards { .. } => vec!["co2.from_kyr", "co2.to_kyr"],

@@ -5,6 +5,7 @@
 //! names the file and line that the key came from. This module knows no physics: which keys exist
 //! is said by the type that is read, which values are allowed is checked where the part is built.
 
+mod build;
 pub mod difference;
 pub mod error;
 pub mod fault;

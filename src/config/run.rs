@@ -7,27 +7,17 @@ pub use super::fault::BuildError;
 use super::fault::{Fault, PlacedFault};
 use super::repair::is_doubtful;
 use super::{ConfigError, Identity, InputFile, Tree, read_text};
-use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideSpec};
-use crate::forcing::drive::{Drive, DriveNumbers};
-use crate::grid::calendar::MonthWeights;
-use crate::grid::latitude::{LatitudeBands, Spacing};
+use crate::forcing::carbon_dioxide::CarbonDioxideSpec;
+use crate::forcing::mask::MaskSpec;
+use crate::forcing::months::CalendarSpec;
+use crate::grid::latitude::Spacing;
 use crate::model::Model;
-use crate::model::clock::{Plan, TimeSpec, is_age};
-use crate::orbit::solution::{Orbit, OrbitSpec};
-use crate::physics::exchange::Exchange;
+use crate::model::clock::{Plan, TimeSpec};
+use crate::orbit::solution::OrbitSpec;
 use crate::physics::surface::SurfaceSpec;
-use crate::physics::{PhysicsSpec, RangeError, Ranges, Setting};
-use crate::tables::{self, Columns};
+use crate::physics::{PhysicsSpec, Setting};
 use serde::{Deserialize, Serialize};
 use std::path::{Path, PathBuf};
-
-/// Fewest and most seasonal steps in a year. Below 24 the scheme was never measured; above 5000
-/// nothing is gained.
-const STEPS_LIMIT: (usize, usize) = (24, 5000);
-
-/// Most latitude bands of a run: with 360, 72 steps a year break down in the narrow polar bands
-/// (measured; 288 are fine).
-const MOST_BANDS: usize = 288;
 
 /// Everything that defines a run.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
@@ -41,8 +31,13 @@ pub struct RunSpec {
     pub grid: GridSpec,
     /// Orbital elements, each with its own source.
     pub orbit: OrbitSpec,
+    /// Part of Earth and year that another orbit lights; none when not given.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub orbit_mask: Option<MaskSpec>,
     /// Sunlight.
     pub insolation: InsolationSpec,
+    /// Months and the date of the March equinox.
+    pub calendar: CalendarSpec,
     /// Carbon dioxide against age.
     pub co2: CarbonDioxideSpec,
     /// Its radiative forcing.
@@ -199,196 +194,5 @@ impl Experiment {
             place: self.tree.latest_origin(&keys),
             fault,
         }
-    }
-}
-
-/// Keeps what worked and collects what did not.
-struct Faults(Vec<Fault>);
-
-impl Faults {
-    fn take<T, E>(&mut self, result: Result<T, E>, fault: impl Fn(E) -> Fault) -> Option<T> {
-        result.map_err(|e| self.0.push(fault(e))).ok()
-    }
-
-    fn take_all<T, E>(
-        &mut self,
-        result: Result<T, Vec<E>>,
-        fault: impl Fn(E) -> Fault,
-    ) -> Option<T> {
-        result
-            .map_err(|all| self.0.extend(all.into_iter().map(fault)))
-            .ok()
-    }
-}
-
-impl RunSpec {
-    /// Builds the model; `folder` is where relative paths start.
-    fn build(&self, folder: &Path) -> Result<Built, Vec<Fault>> {
-        let mut faults = Faults(Vec::new());
-        let plan = faults.take_all(Plan::new(&self.time), Fault::Plan);
-        faults.take_all(self.check_numbers(), Fault::Range);
-        faults.0.extend(self.check_needs());
-        let orbit = faults.take_all(Orbit::build(&self.orbit), Fault::Orbit);
-        let co2 = self.carbon_dioxide(folder, &mut faults);
-        self.check_ages(orbit.as_ref(), co2.as_ref(), &mut faults);
-        let setting = self.setting(&mut faults);
-        let mut exchange = Exchange::new(setting.as_ref().map_or(0, |s| s.surface.bands.len()));
-        if setting.is_none() {
-            faults.take_all(self.physics.check(), Fault::Range);
-        }
-        let components = setting
-            .as_ref()
-            .and_then(|s| faults.take_all(self.physics.build(s, &mut exchange), Fault::Range));
-        let (Some(plan), Some(orbit), Some(co2), Some(setting), Some(components)) =
-            (plan, orbit, co2, setting, components)
-        else {
-            return Err(faults.0);
-        };
-        let numbers = DriveNumbers {
-            solar_constant_w_m2: self.insolation.solar_constant_w_m2,
-            refresh_yr: self.insolation.refresh_every_yr,
-            co2_reference_ppm: self.co2_forcing.co2_reference_ppm,
-            co2_forcing_w_m2: self.co2_forcing.co2_forcing_w_m2,
-            end_kyr: self.time.end_kyr,
-        };
-        let edges = setting.surface.bands.edge_sine();
-        let drive = Drive::new(orbit, co2, numbers, edges, setting.steps_per_year());
-        match faults.take(drive, |e| Fault::Grid(e.to_string())) {
-            Some(drive) if faults.0.is_empty() => Ok(Built {
-                model: Model::new(components, exchange, drive),
-                plan,
-                setting,
-            }),
-            _ => Err(faults.0),
-        }
-    }
-
-    fn check_numbers(&self) -> Result<(), Vec<RangeError>> {
-        let mut r = Ranges::default();
-        let sun = self.insolation.solar_constant_w_m2;
-        let limit = "must lie between 500 and 3000 W m-2";
-        r.require(
-            "insolation.solar_constant_w_m2",
-            sun,
-            (500.0..=3000.0).contains(&sun),
-            limit,
-        );
-        let refresh = self.insolation.refresh_every_yr;
-        let limit = "must lie between 1 and 1000 years";
-        r.require(
-            "insolation.refresh_every_yr",
-            refresh,
-            (1.0..=1000.0).contains(&refresh),
-            limit,
-        );
-        r.positive(
-            "co2_forcing.co2_reference_ppm",
-            self.co2_forcing.co2_reference_ppm,
-        );
-        r.not_negative(
-            "co2_forcing.co2_forcing_w_m2",
-            self.co2_forcing.co2_forcing_w_m2,
-        );
-        let bands = self.grid.bands;
-        r.require(
-            "grid.bands",
-            bands as f64,
-            bands <= MOST_BANDS && LatitudeBands::usable(bands),
-            "must be a multiple of 4 from 12 to 288 (36 is 5 degrees; more than 288 need steps \
-             shorter than a day near the poles)",
-        );
-        let steps = self.grid.steps_per_year;
-        r.require(
-            "grid.steps_per_year",
-            steps as f64,
-            self.steps_usable(),
-            "must lie between 24 and 5000",
-        );
-        r.finish()
-    }
-
-    fn steps_usable(&self) -> bool {
-        (STEPS_LIMIT.0..=STEPS_LIMIT.1).contains(&self.grid.steps_per_year)
-    }
-
-    fn check_needs(&self) -> Vec<Fault> {
-        let p = &self.physics;
-        let wanted = [
-            (
-                "physics",
-                "physics.energy_balance",
-                p.energy_balance.is_some(),
-            ),
-            (
-                "physics.equatorial_pacific",
-                "physics.ocean_column",
-                p.equatorial_pacific.is_none() || p.ocean_column.is_some(),
-            ),
-        ];
-        let missing = wanted.into_iter().filter(|(.., there)| !there);
-        missing
-            .map(|(key, needs, _)| Fault::Needs { key, needs })
-            .collect()
-    }
-
-    fn carbon_dioxide(&self, folder: &Path, faults: &mut Faults) -> Option<CarbonDioxide> {
-        match &self.co2 {
-            CarbonDioxideSpec::Constant { co2_ppm } => {
-                let built = CarbonDioxide::constant(*co2_ppm);
-                faults.take(built, Fault::CarbonDioxide)
-            }
-            CarbonDioxideSpec::Linear {
-                from_kyr,
-                from_ppm,
-                to_kyr,
-                to_ppm,
-            } => {
-                let built = CarbonDioxide::linear([*from_kyr, *from_ppm], [*to_kyr, *to_ppm]);
-                faults.take_all(built, Fault::CarbonDioxide)
-            }
-            CarbonDioxideSpec::Table { path } => {
-                let path = folder.join(path);
-                let read = tables::read_columns(&path, &["age_kyr", "co2_ppm"]);
-                let Columns { values, lines } = faults.take(read, Fault::Table)?;
-                let mut values = values.into_iter();
-                let (age, ppm) = (values.next()?, values.next()?);
-                faults.take_all(CarbonDioxide::table(age, ppm), |error| {
-                    Fault::in_table(error, &path, &lines)
-                })
-            }
-        }
-    }
-
-    fn check_ages(&self, orbit: Option<&Orbit>, co2: Option<&CarbonDioxide>, faults: &mut Faults) {
-        for (key, age) in [
-            ("time.start_kyr", self.time.start_kyr),
-            ("time.end_kyr", self.time.end_kyr),
-        ] {
-            // What is no age at all was told already.
-            if !is_age(age) {
-                continue;
-            }
-            if let Some(orbit) = orbit {
-                let reached = orbit.check_range(age, age);
-                faults.take(reached, |error| Fault::OrbitAge { key, error });
-            }
-            if let Some(co2) = co2 {
-                faults.take(co2.at(age), |error| Fault::CarbonDioxideAge { key, error });
-            }
-        }
-    }
-
-    fn setting(&self, faults: &mut Faults) -> Option<Setting> {
-        // Unusable numbers were told already; a huge one must not take all memory either.
-        if !self.steps_usable() {
-            return None;
-        }
-        let bands = LatitudeBands::new(self.grid.bands, self.grid.spacing).ok()?;
-        let surface = faults.take_all(self.surface.build(&bands), Fault::Range);
-        let months = MonthWeights::new(self.grid.steps_per_year).ok();
-        Some(Setting {
-            surface: surface?,
-            months: months?,
-        })
     }
 }

@@ -10,7 +10,7 @@ use crate::grid::calendar::Calendar;
 use crate::grid::column::ColumnLevels;
 use crate::model::Model;
 use crate::model::records::model_variables;
-use crate::output::schema::{AxisValues, FixedField, Schema};
+use crate::output::schema::{AxisValues, FixedField, MonthCells, Schema};
 use crate::physics::Setting;
 
 /// The commands that made a file.
@@ -42,15 +42,22 @@ pub(super) fn schema(
         .equatorial_pacific
         .as_ref()
         .map(|p| &p.coast.coastal_latitudes_deg);
+    let sources = model.drive().sources();
     let axes = AxisValues {
         by_latitude: fixed(setting),
         latitude_edges_deg: setting.surface.bands.edge_deg().to_vec(),
         depth_edges_m: levels.map(|l| l.edge_m().to_vec()).unwrap_or_default(),
-        month_edges_year: Calendar.month_bounds_fraction().to_vec(),
-        month_lengths_day: Calendar.month_lengths_days().to_vec(),
+        months: if sources.months.move_with_the_orbit() {
+            MonthCells::OfRecord
+        } else {
+            MonthCells::Fixed {
+                edges_year: Calendar.month_bounds_fraction().to_vec(),
+                lengths_day: Calendar.month_lengths_days().to_vec(),
+            }
+        },
         coastal_latitudes_deg: coast.cloned().unwrap_or_default(),
     };
-    let mut variables = model_variables();
+    let mut variables = model_variables(sources);
     variables.extend(model.components().iter().flat_map(|c| c.variables()));
     Ok(Schema {
         axes,

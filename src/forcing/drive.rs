@@ -7,7 +7,8 @@
 
 use super::YearForcing;
 use super::carbon_dioxide::{CarbonDioxide, CarbonDioxideError};
-use crate::grid::calendar::Calendar;
+use super::mask::Mask;
+use super::months::{MonthBounds, Months};
 use crate::orbit::elements::Elements;
 use crate::orbit::insolation::{InsolationTable, TableError};
 use crate::orbit::solution::{Orbit, OrbitError};
@@ -15,8 +16,7 @@ use crate::orbit::solution::{Orbit, OrbitError};
 /// What is needed to force the model.
 #[derive(Clone, Debug)]
 pub struct Drive {
-    orbit: Orbit,
-    carbon_dioxide: CarbonDioxide,
+    sources: Sources,
     solar_constant_w_m2: f64,
     co2_reference_ppm: f64,
     co2_forcing_w_m2: f64,
@@ -25,6 +25,20 @@ pub struct Drive {
     table: InsolationTable,
     table_interval: Option<i64>,
     table_orbit: Option<Elements>,
+    month_bounds: MonthBounds,
+}
+
+/// Where the forcing comes from.
+#[derive(Clone, Debug)]
+pub struct Sources {
+    /// Orbit of the run.
+    pub orbit: Orbit,
+    /// Part of Earth and year that another orbit lights.
+    pub mask: Option<Mask>,
+    /// Carbon dioxide.
+    pub carbon_dioxide: CarbonDioxide,
+    /// Calendar.
+    pub months: Months,
 }
 
 /// Numbers of a [`Drive`] besides orbit and carbon dioxide.
@@ -59,15 +73,13 @@ impl Drive {
     /// # Errors
     /// When the edges or the steps make no table.
     pub fn new(
-        orbit: Orbit,
-        carbon_dioxide: CarbonDioxide,
+        sources: Sources,
         numbers: DriveNumbers,
         edge_sine: &[f64],
         steps: usize,
     ) -> Result<Self, TableError> {
         Ok(Self {
-            orbit,
-            carbon_dioxide,
+            sources,
             solar_constant_w_m2: numbers.solar_constant_w_m2,
             co2_reference_ppm: numbers.co2_reference_ppm,
             co2_forcing_w_m2: numbers.co2_forcing_w_m2,
@@ -76,6 +88,7 @@ impl Drive {
             table: InsolationTable::new(edge_sine, steps)?,
             table_interval: None,
             table_orbit: None,
+            month_bounds: [0.0; 13],
         })
     }
 
@@ -84,7 +97,12 @@ impl Drive {
     /// # Errors
     /// When the orbital solution does not reach there.
     pub fn orbit_at(&self, age_kyr: f64) -> Result<Elements, OrbitError> {
-        self.orbit.at(age_kyr)
+        self.sources.orbit.at(age_kyr)
+    }
+
+    /// What makes up the forcing.
+    pub fn sources(&self) -> &Sources {
+        &self.sources
     }
 
     /// Carbon dioxide at an age, ppm.
@@ -92,7 +110,7 @@ impl Drive {
     /// # Errors
     /// When it was not given there.
     pub fn co2_at(&self, age_kyr: f64) -> Result<f64, CarbonDioxideError> {
-        self.carbon_dioxide.at(age_kyr)
+        self.sources.carbon_dioxide.at(age_kyr)
     }
 
     /// Radiative forcing of a concentration against the reference, W m-2.
@@ -112,7 +130,7 @@ impl Drive {
         slow_years: f64,
     ) -> Result<YearForcing<'_>, DriveError> {
         let age_kyr = start_kyr - years / 1000.0;
-        let co2_ppm = self.carbon_dioxide.at(age_kyr)?;
+        let co2_ppm = self.sources.carbon_dioxide.at(age_kyr)?;
         #[expect(
             clippy::cast_possible_truncation,
             reason = "runs are far shorter than 2^63 intervals"
@@ -122,10 +140,9 @@ impl Drive {
             Some(orbit) if self.table_interval == Some(interval) => orbit,
             _ => {
                 let middle_yr = (interval as f64 + 0.5) * self.refresh_yr;
-                let orbit = self
-                    .orbit
-                    .at((start_kyr - middle_yr / 1000.0).max(self.end_kyr))?;
-                self.renew(orbit);
+                let middle_kyr = (start_kyr - middle_yr / 1000.0).max(self.end_kyr);
+                let orbit = self.sources.orbit.at(middle_kyr)?;
+                self.renew(orbit, middle_kyr)?;
                 self.table_interval = Some(interval);
                 orbit
             }
@@ -138,22 +155,28 @@ impl Drive {
     /// # Errors
     /// When orbit or carbon dioxide do not reach there.
     pub fn held(&mut self, age_kyr: f64, slow_years: f64) -> Result<YearForcing<'_>, DriveError> {
-        let co2_ppm = self.carbon_dioxide.at(age_kyr)?;
-        let orbit = self.orbit.at(age_kyr)?;
-        if self.table_orbit != Some(orbit) {
-            self.renew(orbit);
+        let co2_ppm = self.sources.carbon_dioxide.at(age_kyr)?;
+        let orbit = self.sources.orbit.at(age_kyr)?;
+        // The orbit of the mask may move where the run's stands still.
+        if self.table_orbit != Some(orbit) || self.sources.mask.is_some() {
+            self.renew(orbit, age_kyr)?;
         }
         self.table_interval = None;
         Ok(self.forcing(age_kyr, orbit, co2_ppm, slow_years))
     }
 
-    fn renew(&mut self, orbit: Elements) {
-        self.table.update(
-            &orbit,
+    fn renew(&mut self, orbit: Elements, age_kyr: f64) -> Result<(), OrbitError> {
+        let (sun, equinox) = (
             self.solar_constant_w_m2,
-            Calendar.equinox_fraction(),
+            self.sources.months.equinox_fraction(),
         );
+        self.table.update(&orbit, sun, equinox);
+        if let Some(mask) = &mut self.sources.mask {
+            mask.apply(&mut self.table, &orbit, age_kyr, sun, equinox)?;
+        }
         self.table_orbit = Some(orbit);
+        self.month_bounds = self.sources.months.bounds(&orbit);
+        Ok(())
     }
 
     fn forcing(
@@ -170,6 +193,7 @@ impl Drive {
             greenhouse_w_m2: self.greenhouse_w_m2(co2_ppm),
             insolation_w_m2: &self.table.daily_mean_w_m2,
             zenith_cosine: &self.table.zenith_cosine,
+            month_bounds: self.month_bounds,
             slow_years,
         }
     }

@@ -4,6 +4,8 @@
 
 pub mod carbon_dioxide;
 pub mod drive;
+pub mod mask;
+pub mod months;
 
 use crate::orbit::elements::Elements;
 
@@ -22,6 +24,8 @@ pub struct YearForcing<'a> {
     pub insolation_w_m2: &'a [f64],
     /// Insolation-weighted daily-mean cosine of the zenith angle, `[step][band]`.
     pub zenith_cosine: &'a [f64],
+    /// Bounds of the months, fractions of the year; see [`months`].
+    pub month_bounds: months::MonthBounds,
     /// Years that slow components advance in this one seasonal year (1: synchronous).
     pub slow_years: f64,
 }

@@ -22,7 +22,7 @@ const MONTH_BOUNDS_DAY: [f64; MONTHS + 1] = [
     0.0, 31.0, 59.0, 90.0, 120.0, 151.0, 181.0, 212.0, 243.0, 273.0, 304.0, 334.0, 365.0,
 ];
 /// Days of the calendar year.
-const CALENDAR_DAYS: f64 = 365.0;
+pub const CALENDAR_DAYS: f64 = 365.0;
 /// 21 March, noon, in days since 1 January 0 h.
 const EQUINOX_DAY: f64 = 79.5;
 
@@ -65,6 +65,8 @@ impl Calendar {
 /// Weights of the nodes k/steps, k = 0..=steps, in the monthly means.
 #[derive(Clone, Debug, PartialEq)]
 pub struct MonthWeights {
+    /// Bounds of the months, fractions of the year.
+    bounds: [f64; MONTHS + 1],
     /// Month and weight of all nodes, one node after another.
     entries: Vec<(usize, f64)>,
     /// Where each node's entries begin, and the end.
@@ -74,7 +76,7 @@ pub struct MonthWeights {
 }
 
 impl MonthWeights {
-    /// Weights for a year of `steps` equal steps.
+    /// Weights for a year of `steps` equal steps, with the months of the [`Calendar`].
     ///
     /// # Errors
     /// When there is no step.
@@ -83,24 +85,47 @@ impl MonthWeights {
             return Err(CalendarError::NoSteps);
         }
         let bounds = Calendar.month_bounds_fraction();
+        let month_at = |time: f64| bounds[1..MONTHS].partition_point(|b| *b <= time);
+        let middle = |step: usize| (step as f64 + 0.5) / steps as f64;
+        let mut weights = Self {
+            bounds,
+            entries: Vec::new(),
+            starts: Vec::new(),
+            step_months: (0..steps).map(|step| month_at(middle(step))).collect(),
+        };
+        weights.weigh();
+        Ok(weights)
+    }
+
+    /// Takes other months, bounded by fractions of the year; what lies before its beginning or
+    /// beyond its end is taken from the other end of the same year. The months that physics
+    /// happens in ([`Self::month_of_step`]) stay those of the [`Calendar`].
+    pub fn set_bounds(&mut self, bounds: &[f64; MONTHS + 1]) {
+        let same = |(a, b): (&f64, &f64)| a.to_bits() == b.to_bits();
+        if !self.bounds.iter().zip(bounds).all(same) {
+            self.bounds = *bounds;
+            self.weigh();
+        }
+    }
+
+    /// Length of each month as a fraction of the year.
+    pub fn shares(&self) -> [f64; MONTHS] {
+        std::array::from_fn(|m| self.bounds[m + 1] - self.bounds[m])
+    }
+
+    fn weigh(&mut self) {
+        let (bounds, steps) = (self.bounds, self.steps());
         let (mut entries, mut starts) = (Vec::new(), vec![0]);
         for node in 0..=steps {
             for month in 0..MONTHS {
-                let bound = |b: f64| hat_integral(node, steps, b);
-                let share = bound(bounds[month + 1]) - bound(bounds[month]);
+                let share = share_of(node, steps, [bounds[month], bounds[month + 1]]);
                 if share > 0.0 {
                     entries.push((month, share / (bounds[month + 1] - bounds[month])));
                 }
             }
             starts.push(entries.len());
         }
-        let month_at = |time: f64| bounds[1..MONTHS].partition_point(|b| *b <= time);
-        let middle = |step: usize| (step as f64 + 0.5) / steps as f64;
-        Ok(Self {
-            entries,
-            starts,
-            step_months: (0..steps).map(|step| month_at(middle(step))).collect(),
-        })
+        (self.entries, self.starts) = (entries, starts);
     }
 
     /// Number of steps in the year.
@@ -122,6 +147,15 @@ impl MonthWeights {
     pub fn month_of_step(&self, k: usize) -> usize {
         self.step_months[k % self.step_months.len()]
     }
+}
+
+/// Integral of the hat function of a node over an interval, which may reach into the years beside.
+fn share_of(node: usize, steps: usize, interval: [f64; 2]) -> f64 {
+    let within = |shift: f64| {
+        let [from, to] = interval.map(|time| hat_integral(node, steps, (time + shift).max(0.0)));
+        to - from
+    };
+    within(0.0) + within(1.0) + within(-1.0)
 }
 
 /// Integral from the beginning of the year to `time` of the hat function of a node, limited to the

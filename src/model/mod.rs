@@ -27,7 +27,7 @@ pub enum RunError<E: std::error::Error + 'static> {
     Drive(#[from] DriveError),
     /// The physics broke down.
     #[error(
-        "at {age_kyr:.3} kyr before 1950 ({}): {source}; look first at the change that led here",
+        "at {age_kyr:.3} kyr before 1950 ({}): {source}; look first at the change that led here and at grid.steps_per_year",
         when(*year)
     )]
     Physics {
@@ -71,6 +71,11 @@ impl Model {
     /// The components, in the order in which they are advanced.
     pub fn components(&self) -> &[Box<dyn Component>] {
         &self.components
+    }
+
+    /// What forces it.
+    pub fn drive(&self) -> &Drive {
+        &self.drive
     }
 
     /// Interface fields of the year just run.

@@ -4,14 +4,18 @@
 //! at its end; everything else is the mean over its years.
 
 use super::clock::Plan;
-use crate::forcing::drive::{Drive, DriveError};
+use crate::forcing::drive::{Drive, DriveError, Sources};
+use crate::orbit::elements::Elements;
 use crate::physics::Component;
 use crate::physics::budget::Ledger;
-use crate::series::{Record, Scale, Statistic, Variable};
+use crate::series::{Axis, Record, Scale, Statistic, Variable};
+use crate::units::YEAR_DAYS;
 
 /// Variables that the model itself adds (orbit and carbon dioxide of the middle of the record, the
 /// ledger at its end) in front of those of the components.
-pub fn model_variables() -> Vec<Variable> {
+///
+/// Months of fixed angle and a mask have variables of their own.
+pub fn model_variables(sources: &Sources) -> Vec<Variable> {
     let scalar = |name, units, long_name, standard_name| Variable {
         name,
         axes: &[],
@@ -21,7 +25,7 @@ pub fn model_variables() -> Vec<Variable> {
         scale: Scale::Plain,
         statistic: Statistic::Point,
     };
-    vec![
+    let mut variables = vec![
         scalar("eccentricity", "1", "eccentricity of the orbit", None),
         scalar("obliquity", "degree", "obliquity of the ecliptic", None),
         scalar(
@@ -66,7 +70,70 @@ pub fn model_variables() -> Vec<Variable> {
             "change of the heat on the planet since the end of the first year",
             None,
         ),
-    ]
+    ];
+    if sources.mask.is_some() {
+        variables.extend([
+            scalar(
+                "mask_eccentricity",
+                "1",
+                "eccentricity of the orbit inside the mask",
+                None,
+            ),
+            scalar(
+                "mask_obliquity",
+                "degree",
+                "obliquity inside the mask",
+                None,
+            ),
+            scalar(
+                "mask_perihelion_longitude",
+                "degree",
+                "heliocentric longitude of perihelion inside the mask, from the moving equinox",
+                None,
+            ),
+            scalar(
+                "mask_insolation_change",
+                "W m-2",
+                "global annual mean insolation added by the mask, at the end of the record",
+                None,
+            ),
+        ]);
+    }
+    if sources.months.move_with_the_orbit() {
+        let by_month = |name, units, long_name| Variable {
+            axes: &[Axis::Month],
+            ..scalar(name, units, long_name, None)
+        };
+        variables.extend([
+            by_month(
+                "month_begin",
+                "1",
+                "beginning of the month, fraction of the year since 1 January 0 h; may be negative",
+            ),
+            by_month("month_length", "day", "length of the month"),
+        ]);
+    }
+    variables
+}
+
+/// Values of the variables that a mask and moving months add.
+fn of_sources(drive: &Drive, orbit: &Elements, age_kyr: f64) -> Result<Vec<f64>, DriveError> {
+    let (sources, mut values) = (drive.sources(), Vec::new());
+    if let Some(mask) = &sources.mask {
+        let inside = mask.orbit_at(age_kyr)?;
+        values.extend([
+            inside.eccentricity,
+            inside.obliquity_deg,
+            inside.perihelion.heliocentric_deg(),
+            mask.change_w_m2(),
+        ]);
+    }
+    if sources.months.move_with_the_orbit() {
+        let bounds = sources.months.bounds(orbit);
+        values.extend(&bounds[..12]);
+        values.extend(bounds.windows(2).map(|b| (b[1] - b[0]) * YEAR_DAYS));
+    }
+    Ok(values)
 }
 
 /// Running sums.
@@ -127,6 +194,7 @@ impl Records {
             ledger.relative_residual(),
             ledger.net_change(),
         ];
+        values.extend(of_sources(drive, &orbit, age_kyr)?);
         let share = 1.0 / self.count as f64;
         values.extend(self.sums.iter().map(|sum| sum * share));
         self.sums.fill(0.0);

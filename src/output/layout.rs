@@ -117,7 +117,7 @@ impl Layout {
                 missing: Missing::Nan,
             };
             let id = file.define(&definition)?;
-            for (name, value) in schema::attributes(variable) {
+            for (name, value) in schema::attributes(schema, variable) {
                 file.text(Some(id), name, &value)?;
             }
             variables.push((id, kind));

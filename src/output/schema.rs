@@ -70,12 +70,27 @@ pub struct AxisValues {
     pub latitude_edges_deg: Vec<f64>,
     /// Edges of the levels, m below the surface, from top to bottom.
     pub depth_edges_m: Vec<f64>,
-    /// The thirteen edges of the twelve months, fractions of the year.
-    pub month_edges_year: Vec<f64>,
-    /// Lengths of the twelve months, days.
-    pub month_lengths_day: Vec<f64>,
+    /// Where the months lie in the year.
+    pub months: MonthCells,
     /// Coastal latitudes, degrees north, increasing.
     pub coastal_latitudes_deg: Vec<f64>,
+}
+
+/// Where the months lie in the year.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub enum MonthCells {
+    /// There are none.
+    #[default]
+    None,
+    /// The same in all records.
+    Fixed {
+        /// The thirteen edges of the twelve months, fractions of the year.
+        edges_year: Vec<f64>,
+        /// Lengths of the twelve months, days.
+        lengths_day: Vec<f64>,
+    },
+    /// Told by the variables of each record, since they depend on the orbit.
+    OfRecord,
 }
 
 /// Everything the file says about its numbers.
@@ -99,7 +114,10 @@ impl Schema {
         match axis {
             Axis::Latitude => axes.latitude_edges_deg.len().saturating_sub(1),
             Axis::LatitudeEdge => axes.latitude_edges_deg.len(),
-            Axis::Month => axes.month_edges_year.len().saturating_sub(1),
+            Axis::Month => match axes.months {
+                MonthCells::None => 0,
+                MonthCells::Fixed { .. } | MonthCells::OfRecord => 12,
+            },
             Axis::Depth => axes.depth_edges_m.len().saturating_sub(1),
             Axis::Hemisphere => 2,
             Axis::CoastalLatitude => axes.coastal_latitudes_deg.len(),
@@ -144,7 +162,7 @@ pub(crate) fn dimension(axis: Axis) -> &'static str {
 }
 
 /// CF attributes of a variable of records.
-pub(crate) fn attributes(variable: &Variable) -> Vec<(&'static str, String)> {
+pub(crate) fn attributes(schema: &Schema, variable: &Variable) -> Vec<(&'static str, String)> {
     let mut list = vec![("long_name", variable.long_name.to_owned())];
     list.extend(
         variable
@@ -165,7 +183,7 @@ pub(crate) fn attributes(variable: &Variable) -> Vec<(&'static str, String)> {
     };
     list.push(("cell_methods", method.to_owned()));
     let auxiliary = |axis: &Axis| match axis {
-        Axis::Month => Some("month_middle"),
+        Axis::Month if schema.axes.months != MonthCells::OfRecord => Some("month_middle"),
         Axis::Hemisphere => Some("hemisphere_name"),
         _ => None,
     };

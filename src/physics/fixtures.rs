@@ -2,6 +2,7 @@
 
 use super::exchange::Surface;
 use crate::forcing::YearForcing;
+use crate::grid::calendar::Calendar;
 use crate::grid::latitude::{LatitudeBands, Spacing};
 use crate::orbit::elements::{Elements, PerihelionLongitude};
 
@@ -43,6 +44,7 @@ pub(crate) fn year(slow_years: f64) -> YearForcing<'static> {
         greenhouse_w_m2: 0.0,
         insolation_w_m2: &[],
         zenith_cosine: &[],
+        month_bounds: Calendar.month_bounds_fraction(),
         slow_years,
     }
 }

@@ -51,7 +51,8 @@ pub enum PhysicsError {
     },
     /// A state left the range in which the equations mean something.
     #[error(
-        "{component}: {variable} reaches {value:.1} at {place}; the equations hold from {low} to {high}"
+        "{component}: {variable} reaches {} at {place}; the equations hold from {low} to {high}",
+        Shown(round_if_small(*value))
     )]
     OutOfBounds {
         /// Component that noticed.
@@ -68,9 +69,7 @@ pub enum PhysicsError {
         place: String,
     },
     /// A step is too long for the feedbacks at work.
-    #[error(
-        "{component}: {steps} steps a year are too few at {place}: melting outruns a step; raise grid.steps_per_year"
-    )]
+    #[error("{component}: {steps} steps a year are too few at {place}: melting outruns a step")]
     StepTooLong {
         /// Component that noticed.
         component: &'static str,
@@ -91,6 +90,15 @@ pub enum PhysicsError {
         /// Numbers needed.
         needed: usize,
     },
+}
+
+/// A number to one decimal, where that is short.
+fn round_if_small(value: f64) -> f64 {
+    if value.abs() < 1e6 {
+        (value * 10.0).round() / 10.0
+    } else {
+        value
+    }
 }
 
 /// What every component is built on.

@@ -3,6 +3,7 @@
 use super::accounts::flows;
 use super::balance::imbalance;
 use orbicline::config::run::Experiment;
+use orbicline::forcing::drive::Sources;
 use orbicline::model::records::model_variables;
 use orbicline::physics::Component;
 use orbicline::physics::budget::Account;
@@ -76,10 +77,10 @@ pub(crate) fn shapes(components: &[Box<dyn Component>], experiment: &Experiment)
 }
 
 /// Names are unique over the whole file; units and words are there.
-pub(crate) fn metadata(components: &[Box<dyn Component>]) -> Vec<String> {
+pub(crate) fn metadata(sources: &Sources, components: &[Box<dyn Component>]) -> Vec<String> {
     let mut found = Vec::new();
     let mut names = BTreeSet::new();
-    let mut all = model_variables();
+    let mut all = model_variables(sources);
     all.extend(components.iter().flat_map(|c| c.variables()));
     for v in all {
         if !names.insert(v.name) {

@@ -2,7 +2,8 @@
 
 use orbicline::config::run::Experiment;
 use orbicline::forcing::carbon_dioxide::CarbonDioxide;
-use orbicline::forcing::drive::{Drive, DriveNumbers};
+use orbicline::forcing::drive::{Drive, DriveNumbers, Sources};
+use orbicline::forcing::months::Months;
 use orbicline::orbit::solution::Orbit;
 use orbicline::physics::Setting;
 
@@ -20,5 +21,12 @@ pub(crate) fn drive(experiment: &Experiment, setting: &Setting) -> Drive {
     let carbon_dioxide = CarbonDioxide::constant(280.0).expect("a concentration");
     let edges = setting.surface.bands.edge_sine();
     let steps = setting.steps_per_year();
-    Drive::new(orbit, carbon_dioxide, numbers, edges, steps).expect("a forcing")
+    let months = Months::new(run.calendar).expect("a calendar");
+    let sources = Sources {
+        orbit,
+        mask: None,
+        carbon_dioxide,
+        months,
+    };
+    Drive::new(sources, numbers, edges, steps).expect("a forcing")
 }

@@ -3,6 +3,7 @@
 
 use orbicline::config::run::Experiment;
 use orbicline::forcing::YearForcing;
+use orbicline::grid::calendar::Calendar;
 use orbicline::grid::calendar::MonthWeights;
 use orbicline::grid::latitude::{LatitudeBands, Spacing};
 use orbicline::physics::energy_balance::EnergyBalance;
@@ -171,6 +172,7 @@ pub(crate) fn run_with(
         greenhouse_w_m2,
         insolation_w_m2,
         zenith_cosine,
+        month_bounds: Calendar.month_bounds_fraction(),
         slow_years: 1.0,
     };
     for _ in 0..years {

@@ -1,10 +1,9 @@
 //! Orbital elements, Kepler's equation, seasons and months. Equations and tolerances: README.md.
 
+use orbicline::forcing::months::{CalendarSpec, Months};
 use orbicline::grid::calendar::Calendar;
 use orbicline::orbit::elements::Elements;
-use orbicline::orbit::kepler::{
-    eccentric_anomaly_rad, sun_longitude_deg, true_anomaly_rad, years_since_equinox,
-};
+use orbicline::orbit::kepler::{eccentric_anomaly_rad, true_anomaly_rad, years_since_equinox};
 use orbicline::orbit::solution::{Orbit, OrbitSpec};
 
 use crate::csv::{fields, numbers, orbit, published_orbit};
@@ -156,14 +155,11 @@ fn observed_season_lengths() {
     }
 }
 
-/// Lengths of months with the angles of the calendar at 0 ka, and the shift of 1 January, days,
-/// with the equinox held `equinox_days` after the beginning of the year.
-fn angular_months_days(elements: &Elements, equinox_days: f64) -> [f64; 13] {
-    let present = published_orbit(0.0);
-    let bounds = Calendar.month_bounds_fraction().map(|fraction| {
-        let angle = sun_longitude_deg(&present, fraction - equinox_days / 365.0);
-        years_since_equinox(elements, angle) * 365.0 + equinox_days
-    });
+/// Lengths of months of fixed angle, and the shift of 1 January, days of a 365-day year, with the
+/// equinox held `equinox_day` after the beginning of the year.
+fn angular_months_days(elements: &Elements, equinox_day: f64) -> [f64; 13] {
+    let months = Months::new(CalendarSpec::FixedAngle { equinox_day }).unwrap();
+    let bounds = months.bounds(elements).map(|fraction| fraction * 365.0);
     std::array::from_fn(|m| match m {
         12 => bounds[0],
         _ => bounds[m + 1] - bounds[m],

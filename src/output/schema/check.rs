@@ -7,7 +7,9 @@ use std::collections::BTreeSet;
 
 use super::super::error::Result;
 use super::super::netcdf4::MAX_TEXT;
-use super::{AGE, AGE_BOUNDS, AxisValues, REQUIRED_GLOBAL, RESTART, Schema, dimension, wrong};
+use super::{
+    AGE, AGE_BOUNDS, AxisValues, MonthCells, REQUIRED_GLOBAL, RESTART, Schema, dimension, wrong,
+};
 use crate::series::{Scale, Variable};
 
 /// Units that some readers silently turn into time differences.
@@ -29,7 +31,9 @@ const TEMPERATURES: [&str; 6] = ["K", "kelvin", "degC", "degree_C", "degrees_C",
 pub(super) fn axes(axes: &AxisValues) -> Result<()> {
     increasing("latitude edges", &axes.latitude_edges_deg, -90.0, 90.0)?;
     increasing("depth edges", &axes.depth_edges_m, 0.0, f64::MAX)?;
-    increasing("month edges", &axes.month_edges_year, -1.0, 2.0)?;
+    if let MonthCells::Fixed { edges_year, .. } = &axes.months {
+        increasing("month edges", edges_year, -1.0, 2.0)?;
+    }
     increasing(
         "coastal latitudes",
         &axes.coastal_latitudes_deg,
@@ -51,12 +55,17 @@ pub(super) fn axes(axes: &AxisValues) -> Result<()> {
 }
 
 fn months(axes: &AxisValues) -> Result<()> {
-    let (edges, lengths) = (&axes.month_edges_year, &axes.month_lengths_day);
+    let MonthCells::Fixed {
+        edges_year: edges,
+        lengths_day: lengths,
+    } = &axes.months
+    else {
+        return Ok(());
+    };
     match (edges.len(), lengths.len()) {
-        (0, 0) => return Ok(()),
         (13, 12) => {}
         (e, l) => {
-            let problem = format!("{e} edges and {l} lengths given; give 13 and 12, or none");
+            let problem = format!("{e} edges and {l} lengths given; give 13 and 12");
             return Err(wrong("months", problem));
         }
     }

@@ -5,7 +5,7 @@
 //! coordinate `month_middle` and not the month number. The hemispheres are named by a string
 //! auxiliary coordinate (6.1). Only `lat` and `depth` declare an axis.
 
-use super::{AxisValues, BOUNDS, LETTERS, Schema};
+use super::{AxisValues, BOUNDS, LETTERS, MonthCells, Schema};
 use crate::series::Axis;
 
 /// Values of a coordinate.
@@ -171,10 +171,16 @@ fn latitude(axes: &AxisValues, list: &mut Vec<Coordinate>) {
 }
 
 fn month(axes: &AxisValues, list: &mut Vec<Coordinate>) {
-    let edges = &axes.month_edges_year;
     let attributes = text(&[("long_name", "month of the year"), ("units", "1")]);
     let numbers = Content::Integers((1..=12).collect());
     list.push(coordinate("month", &["month"], numbers, attributes));
+    let MonthCells::Fixed {
+        edges_year: edges,
+        lengths_day: lengths,
+    } = &axes.months
+    else {
+        return;
+    };
     let attributes = text(&[
         ("long_name", "middle of the month, fraction of the year"),
         ("units", "1"),
@@ -193,7 +199,7 @@ fn month(axes: &AxisValues, list: &mut Vec<Coordinate>) {
         Vec::new(),
     ));
     let attributes = text(&[("long_name", "length of the month"), ("units", "day")]);
-    let lengths = Content::Numbers(axes.month_lengths_day.clone());
+    let lengths = Content::Numbers(lengths.clone());
     list.push(coordinate("month_length", &["month"], lengths, attributes));
 }
 

@@ -6,7 +6,6 @@
 use super::coefficients::Coefficients;
 use super::state::StateRow;
 use super::work::Work;
-use crate::grid::calendar::Calendar;
 use crate::numerics::lanes::{Lanes, Rows, WIDTH};
 use crate::numerics::sum::CompensatedSum;
 use crate::units::SEA_WATER_FREEZING_C;
@@ -205,10 +204,10 @@ impl Means {
     }
 
     /// Annual means of a field, one per band, each month counting by its length.
-    pub(super) fn annual(&self, field: Field) -> Vec<f64> {
+    pub(super) fn annual(&self, c: &Coefficients, field: Field) -> Vec<f64> {
         let mut mean = vec![0.0; self.rows.len() * WIDTH];
         let months = self.monthly.chunks_exact(self.rows.len());
-        for (rows, share) in months.zip(Calendar.month_shares()) {
+        for (rows, share) in months.zip(c.months.shares()) {
             for (mean, row) in mean.chunks_exact_mut(WIDTH).zip(rows) {
                 (Lanes::load(mean, 0) + row[field as usize] * share).store(mean, 0);
             }

@@ -267,6 +267,7 @@ impl Component for EnergyBalance {
         forcing: &YearForcing<'_>,
         exchange: &mut Exchange,
     ) -> Result<(), PhysicsError> {
+        self.coefficients.months.set_bounds(&forcing.month_bounds);
         let column = ColumnSide {
             heat_w: &exchange.column_heat_w,
             upwelling_m3_s: &exchange.upwelling_m3_s,

@@ -14,7 +14,6 @@ use super::coefficients::Coefficients;
 use super::means::{Field, Means};
 use super::params::Params;
 use super::state::State;
-use crate::grid::calendar::Calendar;
 use crate::numerics::lanes::Lanes;
 use crate::numerics::sum::{CompensatedSum, compensated};
 use crate::physics::budget::{Account, Flow, Quantity};
@@ -142,7 +141,7 @@ impl Report {
     fn tell(&self, c: &Coefficients, m: &Means, exchange: &mut Exchange) {
         let n = c.bands;
         let per_step = 1.0 / c.steps as f64;
-        exchange.mixed_layer_temperature_c = m.annual(Field::Water);
+        exchange.mixed_layer_temperature_c = m.annual(c, Field::Water);
         for (i, told) in exchange.atmosphere_energy_input_w_m2.iter_mut().enumerate() {
             *told = m.sum(i, |row| row.air_input) * per_step;
         }
@@ -248,14 +247,14 @@ impl Report {
             .collect();
         self.values.extend_from_slice(&absorbed);
         self.values.extend_from_slice(&emitted);
-        self.sums(m, &gain, exchange);
-        self.global(m, &absorbed, &emitted);
+        self.sums(c, m, &gain, exchange);
+        self.global(c, m, &absorbed, &emitted);
     }
 
-    fn sums(&mut self, m: &Means, gain: &[f64], exchange: &Exchange) {
+    fn sums(&mut self, c: &Coefficients, m: &Means, gain: &[f64], exchange: &Exchange) {
         let latitude = self.surface.bands.centre_deg();
         let area = &self.bands.ocean_area;
-        let cover = m.annual(Field::IceCover);
+        let cover = m.annual(c, Field::IceCover);
         let (mut ice, mut loss) = ([0.0; 2], [0.0; 2]);
         let mut tropics = 0.0;
         for i in 0..area.len() {
@@ -274,16 +273,16 @@ impl Report {
         self.values.push(tropics / PETAWATT_W);
     }
 
-    fn global(&mut self, m: &Means, absorbed: &[f64], emitted: &[f64]) {
+    fn global(&mut self, c: &Coefficients, m: &Means, absorbed: &[f64], emitted: &[f64]) {
         let bands = &self.surface.bands;
         let n = bands.len();
         let two_metre = &self.values[4 * 12 * n..5 * 12 * n];
         let temperature: f64 = two_metre
             .chunks(n)
-            .zip(Calendar.month_shares())
+            .zip(c.months.shares())
             .map(|(month, share)| share * bands.mean(month))
             .sum();
-        let incoming = m.annual(Field::Insolation);
+        let incoming = m.annual(c, Field::Insolation);
         let (taken, given) = (bands.mean(absorbed), bands.mean(emitted));
         let albedo = 1.0 - taken / bands.mean(&incoming);
         self.values.extend([temperature, taken, given, albedo]);

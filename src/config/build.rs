@@ -1,0 +1,241 @@
+//! Builds the model that a configuration describes, or tells everything that is wrong with it.
+
+use super::fault::Fault;
+use super::run::{Built, RunSpec};
+use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideSpec};
+use crate::forcing::drive::{Drive, DriveNumbers, Sources};
+use crate::forcing::mask::Mask;
+use crate::forcing::months::Months;
+use crate::grid::calendar::MonthWeights;
+use crate::grid::latitude::LatitudeBands;
+use crate::model::Model;
+use crate::model::clock::{Plan, is_age};
+use crate::orbit::solution::Orbit;
+use crate::physics::exchange::Exchange;
+use crate::physics::{RangeError, Ranges, Setting};
+use crate::tables::{self, Columns};
+use std::path::Path;
+
+/// Fewest and most seasonal steps in a year. Below 24 the scheme was never measured; above 5000
+/// nothing is gained.
+const STEPS_LIMIT: (usize, usize) = (24, 5000);
+
+/// Most latitude bands of a run: with 360, 72 steps a year break down in the narrow polar bands
+/// (measured; 288 are fine).
+const MOST_BANDS: usize = 288;
+
+/// Keeps what worked and collects what did not.
+struct Faults(Vec<Fault>);
+
+impl Faults {
+    fn take<T, E>(&mut self, result: Result<T, E>, fault: impl Fn(E) -> Fault) -> Option<T> {
+        result.map_err(|e| self.0.push(fault(e))).ok()
+    }
+
+    fn take_all<T, E>(
+        &mut self,
+        result: Result<T, Vec<E>>,
+        fault: impl Fn(E) -> Fault,
+    ) -> Option<T> {
+        result
+            .map_err(|all| self.0.extend(all.into_iter().map(fault)))
+            .ok()
+    }
+}
+
+impl RunSpec {
+    /// Builds the model; `folder` is where relative paths start.
+    pub(super) fn build(&self, folder: &Path) -> Result<Built, Vec<Fault>> {
+        let mut faults = Faults(Vec::new());
+        let plan = faults.take_all(Plan::new(&self.time), Fault::Plan);
+        faults.take_all(self.check_numbers(), Fault::Range);
+        faults.0.extend(self.check_needs());
+        let setting = self.setting(&mut faults);
+        let mut exchange = Exchange::new(setting.as_ref().map_or(0, |s| s.surface.bands.len()));
+        let drive = self.drive(folder, setting.as_ref(), &mut faults);
+        if setting.is_none() {
+            faults.take_all(self.physics.check(), Fault::Range);
+        }
+        let components = setting
+            .as_ref()
+            .and_then(|s| faults.take_all(self.physics.build(s, &mut exchange), Fault::Range));
+        match (plan, setting, components, drive) {
+            (Some(plan), Some(setting), Some(components), Some(drive)) if faults.0.is_empty() => {
+                Ok(Built {
+                    model: Model::new(components, exchange, drive),
+                    plan,
+                    setting,
+                })
+            }
+            _ => Err(faults.0),
+        }
+    }
+
+    /// The forcing, when everything about it is right.
+    fn drive(&self, folder: &Path, on: Option<&Setting>, faults: &mut Faults) -> Option<Drive> {
+        let orbit = faults.take_all(Orbit::build(&self.orbit), Fault::Orbit);
+        let mask = self.orbit_mask.as_ref();
+        let inside = mask.and_then(|mask| faults.take_all(mask.check(), Fault::Mask));
+        let co2 = self.carbon_dioxide(folder, faults);
+        self.check_ages([orbit.as_ref(), inside.as_ref()], co2.as_ref(), faults);
+        let months = faults.take(Months::new(self.calendar), Fault::Calendar);
+        let (orbit, carbon_dioxide, months) = (orbit?, co2?, months?);
+        let (edges, steps) = (on?.surface.bands.edge_sine(), on?.steps_per_year());
+        let mask = match mask {
+            Some(spec) => {
+                let laid = Mask::new(spec, inside?, edges, steps);
+                Some(faults.take(laid, |e| Fault::Grid(e.to_string()))?)
+            }
+            None => None,
+        };
+        let sources = Sources {
+            orbit,
+            mask,
+            carbon_dioxide,
+            months,
+        };
+        let numbers = DriveNumbers {
+            solar_constant_w_m2: self.insolation.solar_constant_w_m2,
+            refresh_yr: self.insolation.refresh_every_yr,
+            co2_reference_ppm: self.co2_forcing.co2_reference_ppm,
+            co2_forcing_w_m2: self.co2_forcing.co2_forcing_w_m2,
+            end_kyr: self.time.end_kyr,
+        };
+        let drive = Drive::new(sources, numbers, edges, steps);
+        faults.take(drive, |e| Fault::Grid(e.to_string()))
+    }
+
+    fn check_numbers(&self) -> Result<(), Vec<RangeError>> {
+        let mut r = Ranges::default();
+        let sun = self.insolation.solar_constant_w_m2;
+        let limit = "must lie between 500 and 3000 W m-2";
+        r.require(
+            "insolation.solar_constant_w_m2",
+            sun,
+            (500.0..=3000.0).contains(&sun),
+            limit,
+        );
+        let refresh = self.insolation.refresh_every_yr;
+        let limit = "must lie between 1 and 1000 years";
+        r.require(
+            "insolation.refresh_every_yr",
+            refresh,
+            (1.0..=1000.0).contains(&refresh),
+            limit,
+        );
+        r.positive(
+            "co2_forcing.co2_reference_ppm",
+            self.co2_forcing.co2_reference_ppm,
+        );
+        r.not_negative(
+            "co2_forcing.co2_forcing_w_m2",
+            self.co2_forcing.co2_forcing_w_m2,
+        );
+        let bands = self.grid.bands;
+        r.require(
+            "grid.bands",
+            bands as f64,
+            bands <= MOST_BANDS && LatitudeBands::usable(bands),
+            "must be a multiple of 4 from 12 to 288 (36 is 5 degrees; more than 288 need steps \
+             shorter than a day near the poles)",
+        );
+        let steps = self.grid.steps_per_year;
+        r.require(
+            "grid.steps_per_year",
+            steps as f64,
+            self.steps_usable(),
+            "must lie between 24 and 5000",
+        );
+        r.finish()
+    }
+
+    fn steps_usable(&self) -> bool {
+        (STEPS_LIMIT.0..=STEPS_LIMIT.1).contains(&self.grid.steps_per_year)
+    }
+
+    fn check_needs(&self) -> Vec<Fault> {
+        let p = &self.physics;
+        let wanted = [
+            (
+                "physics",
+                "physics.energy_balance",
+                p.energy_balance.is_some(),
+            ),
+            (
+                "physics.equatorial_pacific",
+                "physics.ocean_column",
+                p.equatorial_pacific.is_none() || p.ocean_column.is_some(),
+            ),
+        ];
+        let missing = wanted.into_iter().filter(|(.., there)| !there);
+        missing
+            .map(|(key, needs, _)| Fault::Needs { key, needs })
+            .collect()
+    }
+
+    fn carbon_dioxide(&self, folder: &Path, faults: &mut Faults) -> Option<CarbonDioxide> {
+        match &self.co2 {
+            CarbonDioxideSpec::Constant { co2_ppm } => {
+                let built = CarbonDioxide::constant(*co2_ppm);
+                faults.take(built, Fault::CarbonDioxide)
+            }
+            CarbonDioxideSpec::Linear {
+                from_kyr,
+                from_ppm,
+                to_kyr,
+                to_ppm,
+            } => {
+                let built = CarbonDioxide::linear([*from_kyr, *from_ppm], [*to_kyr, *to_ppm]);
+                faults.take_all(built, Fault::CarbonDioxide)
+            }
+            CarbonDioxideSpec::Table { path } => {
+                let path = folder.join(path);
+                let read = tables::read_columns(&path, &["age_kyr", "co2_ppm"]);
+                let Columns { values, lines } = faults.take(read, Fault::Table)?;
+                let mut values = values.into_iter();
+                let (age, ppm) = (values.next()?, values.next()?);
+                faults.take_all(CarbonDioxide::table(age, ppm), |error| {
+                    Fault::in_table(error, &path, &lines)
+                })
+            }
+        }
+    }
+
+    fn check_ages(
+        &self,
+        orbits: [Option<&Orbit>; 2],
+        co2: Option<&CarbonDioxide>,
+        faults: &mut Faults,
+    ) {
+        for (key, age) in [
+            ("time.start_kyr", self.time.start_kyr),
+            ("time.end_kyr", self.time.end_kyr),
+        ] {
+            // What is no age at all was told already.
+            if !is_age(age) {
+                continue;
+            }
+            for orbit in orbits.into_iter().flatten() {
+                let reached = orbit.check_range(age, age);
+                faults.take(reached, |error| Fault::OrbitAge { key, error });
+            }
+            if let Some(co2) = co2 {
+                faults.take(co2.at(age), |error| Fault::CarbonDioxideAge { key, error });
+            }
+        }
+    }
+
+    fn setting(&self, faults: &mut Faults) -> Option<Setting> {
+        // Unusable numbers were told already; a huge one must not take all memory either.
+        if !self.steps_usable() {
+            return None;
+        }
+        let bands = LatitudeBands::new(self.grid.bands, self.grid.spacing).ok()?;
+        let surface = faults.take_all(self.surface.build(&bands), Fault::Range);
+        let months = MonthWeights::new(self.grid.steps_per_year).ok();
+        Some(Setting {
+            surface: surface?,
+            months: months?,
+        })
+    }
+}
