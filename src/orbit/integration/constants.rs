@@ -22,7 +22,7 @@ const DAY_H: f64 = 24.0;
 /// Years in a Gyr.
 const GYR_YR: f64 = 1e9;
 /// Arc seconds in a radian.
-pub(super) const ARCSEC_PER_RAD: f64 = 648_000.0 / PI;
+const ARCSEC_PER_RAD: f64 = 648_000.0 / PI;
 /// Longest step that the series of the Kepler drift allow, d (see `drift.rs`), with room to spare.
 const LONGEST_STEP_D: f64 = 34.0;
 /// Shortest step, d: at half a day the rounding of the steps outweighs what they gain.
@@ -326,6 +326,11 @@ impl Constants {
     /// Obliquity at J2000.0, rad.
     pub(super) fn obliquity_rad(&self) -> f64 {
         self.axis.obliquity_arcsec / ARCSEC_PER_RAD
+    }
+
+    /// Geodesic precession, rad/yr.
+    pub(super) fn geodesic_rad_yr(&self) -> f64 {
+        self.axis.geodesic_rate_arcsec_yr / ARCSEC_PER_RAD
     }
 
     /// Sidereal day over sidereal year.

@@ -10,6 +10,7 @@
 pub mod berger1978;
 mod berger1978_terms;
 mod idealised;
+pub mod orbit_table;
 mod spec;
 
 use spec::Course;
