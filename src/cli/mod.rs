@@ -1,5 +1,6 @@
 //! The command line: the only part that prints.
 
+mod orbit;
 mod progress;
 mod run;
 
@@ -25,6 +26,8 @@ struct Arguments {
 enum Command {
     /// Run a transient climate into a NetCDF-4 file
     Run(run::RunArguments),
+    /// Compute the orbit from the motion of the planets into a table
+    Orbit(orbit::OrbitArguments),
 }
 
 /// Parses the arguments, does what they ask, prints an error if there is one.
@@ -34,6 +37,7 @@ pub fn main() -> ExitCode {
         .collect();
     let outcome = match Arguments::parse().command {
         Command::Run(arguments) => run::run(&arguments, &words),
+        Command::Orbit(arguments) => orbit::run(&arguments),
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,
@@ -52,6 +56,8 @@ pub fn main() -> ExitCode {
 enum CliError {
     #[error(transparent)]
     Single(#[from] crate::experiment::single::SingleError),
+    #[error(transparent)]
+    Orbit(#[from] crate::experiment::orbit::OrbitCommandError),
     #[error(transparent)]
     Output(#[from] crate::output::OutputError),
     #[error("cannot print: {0}")]

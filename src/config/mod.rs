@@ -6,6 +6,7 @@
 //! is said by the type that is read, which values are allowed is checked where the part is built.
 
 pub mod error;
+pub mod orbit_constants;
 mod origin;
 pub mod provenance;
 pub mod read;

@@ -10,6 +10,7 @@ use crate::grid::calendar::MonthWeights;
 use crate::grid::latitude::{BandsError, LatitudeBands, Spacing};
 use crate::model::Model;
 use crate::model::clock::{Plan, PlanError, TimeSpec};
+use crate::orbit::integration::ConstantsError;
 use crate::orbit::solution::{Orbit, OrbitError, OrbitSpec};
 use crate::physics::exchange::Exchange;
 use crate::physics::surface::SurfaceSpec;
@@ -97,6 +98,9 @@ pub enum Fault {
     /// The orbit.
     #[error(transparent)]
     Orbit(OrbitError),
+    /// A constant of the integration of the orbit.
+    #[error(transparent)]
+    Constants(ConstantsError),
     /// Carbon dioxide.
     #[error(transparent)]
     CarbonDioxide(CarbonDioxideError),
@@ -204,6 +208,7 @@ impl Experiment {
     fn placed(&self, fault: Fault) -> PlacedFault {
         let key = match &fault {
             Fault::Range(e) => e.key.as_str(),
+            Fault::Constants(e) => e.key.as_str(),
             Fault::Bands(_) => "grid.bands",
             Fault::Grid(_) => "grid",
             Fault::Plan(PlanError::Backwards { .. }) => "time.start_kyr",

@@ -10,6 +10,7 @@
 mod error;
 mod layout;
 pub mod netcdf4;
+pub mod plain;
 pub mod reader;
 pub mod schema;
 mod segments;

@@ -233,7 +233,8 @@ impl RunWriter {
     }
 }
 
-fn refuse_existing(path: &Path, overwrite: Overwrite) -> Result<()> {
+/// Refuses what is no regular file and, unless it may be replaced, what exists.
+pub(super) fn refuse_existing(path: &Path, overwrite: Overwrite) -> Result<()> {
     if path.symlink_metadata().is_ok_and(|found| !found.is_file()) {
         return Err(OutputError::BadPath {
             path: path.to_owned(),

@@ -12,9 +12,9 @@ use thiserror::Error;
 use super::eight::PLANETS;
 
 /// Days in a year of time.
-pub(super) const YEAR_D: f64 = 365.25;
+const YEAR_D: f64 = 365.25;
 /// Days in a century.
-pub(super) const CENTURY_D: f64 = 100.0 * YEAR_D;
+const CENTURY_D: f64 = 100.0 * YEAR_D;
 /// Seconds in a day.
 const DAY_S: f64 = 86_400.0;
 /// Hours in a day.
@@ -160,10 +160,14 @@ impl Constants {
     /// # Errors
     /// All numbers that have no meaning, together.
     pub fn check(&self) -> Result<(), Vec<ConstantsError>> {
-        let errors: Vec<_> = [self.wrong_numbers(), self.wrong_steps(), self.wrong_orbits()]
-            .into_iter()
-            .flatten()
-            .collect();
+        let errors: Vec<_> = [
+            self.wrong_numbers(),
+            self.wrong_steps(),
+            self.wrong_orbits(),
+        ]
+        .into_iter()
+        .flatten()
+        .collect();
         if errors.is_empty() {
             Ok(())
         } else {
@@ -182,11 +186,17 @@ impl Constants {
             ("sun.gm_au3_d2", sun.gm_au3_d2),
             ("moon.earth_moon_mass_ratio", moon.earth_moon_mass_ratio),
             ("axis.obliquity_arcsec", axis.obliquity_arcsec),
-            ("axis.precession_rate_arcsec_yr", axis.precession_rate_arcsec_yr),
+            (
+                "axis.precession_rate_arcsec_yr",
+                axis.precession_rate_arcsec_yr,
+            ),
             ("axis.dynamical_ellipticity", axis.dynamical_ellipticity),
             ("axis.sidereal_year_d", axis.sidereal_year_d),
             ("tide.sidereal_day_h", tide.sidereal_day_h),
-            ("tide.moon_distance_earth_radii", tide.moon_distance_earth_radii),
+            (
+                "tide.moon_distance_earth_radii",
+                tide.moon_distance_earth_radii,
+            ),
             ("tide.moon_sidereal_month_d", tide.moon_sidereal_month_d),
         ];
         let not_negative = [
@@ -265,10 +275,10 @@ impl Constants {
     fn wrong_orbits(&self) -> Vec<ConstantsError> {
         let mut errors = Vec::new();
         let mut farthest = 0.0;
-        for planet in &self.planet {
+        for (number, planet) in self.planet.iter().enumerate() {
             let mut say = |key: &str, value, limit| {
                 errors.push(ConstantsError {
-                    key: format!("planet {:?}, {key}", planet.name),
+                    key: format!("planet[{number}].{key}"),
                     value,
                     limit,
                 });
@@ -281,16 +291,16 @@ impl Constants {
                 say("gm_au3_d2", planet.gm_au3_d2, limit);
             }
             if !(binding.is_finite() && binding > 0.0) {
-                let limit = "2 GM/r - v^2 must be above 0 (a bound orbit); check position and \
-                             velocity and their units, AU and AU/d";
-                say("2 GM/r - v^2", binding, limit);
+                let limit = "as 2 GM/r - v^2 it must be above 0 (a bound orbit); check position \
+                             and velocity and their units, AU and AU/d";
+                say("velocity_au_d", binding, limit);
                 continue;
             }
             let a = self.sun.gm_au3_d2 / binding;
             if a <= farthest {
-                let limit = "semi-major axis in AU; the planets must stand in the order of \
-                             their distance from the Sun; reorder them";
-                say("a", a, limit);
+                let limit = "as semi-major axis, AU, it must exceed that of the planet before; \
+                             put the planets in the order of their distance from the Sun";
+                say("position_au", a, limit);
             }
             farthest = a;
         }
@@ -304,8 +314,7 @@ impl Constants {
 
     /// 6 G M_sun / c^2, AU.
     pub(super) fn relativity_au(&self) -> f64 {
-        let light_au_d =
-            self.units.light_speed_km_s * DAY_S / self.units.astronomical_unit_km;
+        let light_au_d = self.units.light_speed_km_s * DAY_S / self.units.astronomical_unit_km;
         6.0 * self.sun.gm_au3_d2 / (light_au_d * light_au_d)
     }
 

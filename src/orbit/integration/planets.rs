@@ -20,7 +20,7 @@
 )]
 
 use super::attraction::{EARTH, Forces};
-use super::constants::{CENTURY_D, Constants};
+use super::constants::Constants;
 use super::drift::drift;
 use super::eight::{Eight, Vectors, combine};
 use crate::numerics::dispatch::{Kernel, widest};

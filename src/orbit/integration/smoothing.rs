@@ -100,7 +100,9 @@ mod tests {
 
     #[test]
     fn analytic_slow_change_is_kept_and_fast_change_taken_away() {
-        for (period_yr, amplitude, tolerance) in [(46e3, 1.0, 1.2e-5), (19e3, 1.0, 1.2e-4), (700.0, 0.0, 3e-3)] {
+        for (period_yr, amplitude, tolerance) in
+            [(46e3, 1.0, 1.2e-5), (19e3, 1.0, 1.2e-4), (700.0, 0.0, 3e-3)]
+        {
             let (past, future) = blocks(period_yr);
             let orbit = MeanOrbit::new(&past, &future);
             for years in [-4000.0, -75.0, 0.0, 25.0, 50.0, 6000.0] {

@@ -11,9 +11,8 @@
 //! precession p = atan2(f.(n x g), f.g) with f the orbit's axis of `planets.rs`, made continuous;
 //! then the longitude of perihelion from the equinox is atan2(h, k) + p.
 //! Units: rad, years from J2000.0.
-//! Numerics: Runge-Kutta of fourth order, a first step of 50 years and then of 100; s is scaled to
-//! length one after each. Against 50 years: obliquity 1e-5 degrees over 5 Myr. Arc tangents by
-//! `libm`, whose digits are the same everywhere.
+//! Numerics: Runge-Kutta of fourth order with steps of 50 years; s is scaled to length one after
+//! each. Arc tangents by `libm`, whose digits are the same everywhere.
 //! Source: precession of a rigid axis averaged over day, month and year (e.g. Laskar et al. 2004,
 //! A&A 428:261; memory).
 
@@ -22,6 +21,9 @@ use std::f64::consts::{PI, TAU};
 use super::constants::Constants;
 use super::planets::{Direction, cross, dot, norm, orbit_axes, orbit_normal};
 use super::smoothing::{BLOCK_YR, MeanOrbit};
+
+/// Steps in 100 years.
+const STEPS: u32 = 2;
 
 /// Attitude of the axis at a moment.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -42,6 +44,8 @@ pub(super) struct Torques {
     lunar_change_1_yr: f64,
     geodesic_rad_yr: f64,
     drift_rad_yr: f64,
+    /// Steps in 100 years.
+    steps: u32,
 }
 
 impl Torques {
@@ -55,6 +59,7 @@ impl Torques {
             lunar_change_1_yr: constants.lunar_torque_rate_1_yr(),
             geodesic_rad_yr: constants.geodesic_rad_yr(),
             drift_rad_yr: constants.obliquity_drift_rad_yr(),
+            steps: STEPS,
         }
     }
 
@@ -70,14 +75,16 @@ impl Torques {
             libm::sin(self.obliquity_rad),
             libm::cos(self.obliquity_rad),
         ];
-        let mut years = 0.0;
-        let mut step = 0.5 * BLOCK_YR * direction.sign();
         let mut last = 0.0;
         let mut attitudes = Vec::with_capacity(count);
-        for _ in 0..count {
-            axis = self.step(orbit, &axis, years, step);
-            years += step;
-            step = BLOCK_YR * direction.sign();
+        for block in 0..count {
+            // From centre to centre; the first stretch begins at the edge of its block.
+            let length = if block == 0 { 0.5 } else { 1.0 } * BLOCK_YR;
+            let step = length * direction.sign() / f64::from(self.steps);
+            let years = (block as f64 + 0.5) * BLOCK_YR * direction.sign();
+            for left in (1..=self.steps).rev() {
+                axis = self.step(orbit, &axis, years - f64::from(left) * step, step);
+            }
             let attitude = attitude(orbit, &axis, years, last);
             last = attitude.precession_rad;
             attitudes.push(attitude);
@@ -132,9 +139,7 @@ impl Torque {
         let turning = self.precession * cosine - self.geodesic;
         // |s x n| is sqrt(1 - c^2); an axis along the normal has no direction to tilt to.
         let tilting = self.drift / norm(&across).max(f64::MIN_POSITIVE);
-        std::array::from_fn(|i| {
-            turning * across[i] + tilting * (cosine * axis[i] - self.normal[i])
-        })
+        std::array::from_fn(|i| turning * across[i] + tilting * (cosine * axis[i] - self.normal[i]))
     }
 }
 

@@ -71,6 +71,13 @@ impl OrbitRow {
     pub fn perihelion_deg(&self) -> f64 {
         (libm::atan2(self.h, self.k) + self.precession_rad).to_degrees()
     }
+
+    /// Climatic precession e sin(heliocentric longitude of perihelion).
+    pub fn climatic_precession(&self) -> f64 {
+        // e sin(w + p), without passing through w.
+        let (sine, cosine) = libm::sincos(self.precession_rad);
+        self.h * cosine + self.k * sine
+    }
 }
 
 /// A table of rows at whole kyr.
@@ -84,13 +91,17 @@ pub struct OrbitTable {
 #[derive(Clone, Debug, Error, PartialEq, Eq)]
 pub enum TableFault {
     /// The text at the beginning is not that of a table.
-    #[error("the file does not begin as an orbit table of version 1 ({problem}); make it again with `orbicline orbit --integrate`")]
+    #[error(
+        "the file does not begin as an orbit table of version 1 ({problem}); make it again with `orbicline orbit --integrate`"
+    )]
     Header {
         /// What is missing.
         problem: &'static str,
     },
     /// The rows are not those that were written.
-    #[error("SHA-256 of the rows is {found}, the file says {expected}: the file is damaged; make it again with `orbicline orbit --integrate`")]
+    #[error(
+        "SHA-256 of the rows is {found}, the file says {expected}: the file is damaged; make it again with `orbicline orbit --integrate`"
+    )]
     Checksum {
         /// Computed.
         found: String,
@@ -98,7 +109,9 @@ pub enum TableFault {
         expected: String,
     },
     /// Fewer rows than an interpolation needs, or a part of a row.
-    #[error("{bytes} bytes of rows: at least 4 whole rows of 32 bytes are needed; make the file again with `orbicline orbit --integrate`")]
+    #[error(
+        "{bytes} bytes of rows: at least 4 whole rows of 32 bytes are needed; make the file again with `orbicline orbit --integrate`"
+    )]
     Rows {
         /// Number of bytes.
         bytes: usize,
