@@ -4,7 +4,7 @@ use super::CliError;
 use super::progress::{Show, YearsBar};
 use crate::experiment::orbit::{self, Integration, IntegrationSummary};
 use crate::output::writer::Overwrite;
-use clap::Args;
+use clap::{ArgGroup, Args};
 use std::io::Write;
 use std::path::PathBuf;
 
@@ -12,12 +12,12 @@ use std::path::PathBuf;
 #[derive(Debug, Args)]
 #[command(
     after_help = "Example, the table inside this program (about two minutes):\n  \
-                  orbicline orbit --integrate --from-kyr 5500 --to-kyr -100 --out integrated.table"
+                  orbicline orbit --integrate --from-kyr 5500 --to-kyr -100 --out integrated.table",
+    group = ArgGroup::new("origin").required(true)
 )]
-#[group(id = "origin", required = true, multiple = false, args = ["integrate"])]
 pub(super) struct OrbitArguments {
     /// Compute the orbit from the motion of the planets
-    #[arg(long)]
+    #[arg(long, group = "origin")]
     integrate: bool,
     /// Older end, kyr before 1950
     #[arg(long, value_name = "AGE", allow_negative_numbers = true)]

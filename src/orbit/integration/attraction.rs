@@ -149,6 +149,12 @@ impl Forces {
         inverse * inverse_square * (correction + 1.0)
     }
 
+    /// The masses that move with the Jacobi coordinates, times G, AU^3 d^-2.
+    #[cfg(test)]
+    pub(super) fn reduced(&self) -> Eight {
+        self.reduced
+    }
+
     /// Total energy times G, AU^5 d^-4, of Jacobi positions and velocities.
     pub(super) fn energy(&self, position: &Vectors, velocity: &Vectors) -> f64 {
         let r = self.to_heliocentric(position);
@@ -255,4 +261,39 @@ orders! {
     odd(a, b) = [a[1], b[1], a[3], b[3]];
     low(a, b) = [a[0], a[1], b[0], b[1]];
     high(a, b) = [a[2], a[3], b[2], b[3]];
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn analytic_every_pair_acts_once() {
+        let place = |axis: usize| {
+            let of = |i: usize| ((3 * i + axis + 1) as f64 * 0.73).sin() * (1.0 + i as f64);
+            Eight::from_array(&std::array::from_fn(of))
+        };
+        let r = [place(0), place(1), place(2)];
+        let mass: [f64; PLANETS] = std::array::from_fn(|i| 1.0 + i as f64 * 0.3);
+        let got = between_planets(&r, Eight::from_array(&mass)).map(Eight::to_array);
+        let r = r.map(Eight::to_array);
+        for i in 0..PLANETS {
+            let mut expected = [0.0; 3];
+            for j in (0..PLANETS).filter(|&j| j != i) {
+                let d = [0, 1, 2].map(|axis| r[axis][j] - r[axis][i]);
+                let cube = d.iter().map(|x| x * x).sum::<f64>().powf(1.5);
+                for (sum, d) in expected.iter_mut().zip(d) {
+                    *sum += mass[j] * d / cube;
+                }
+            }
+            for axis in 0..3 {
+                let error = got[axis][i] - expected[axis];
+                assert!(error.abs() < 1e-13, "{i} {axis}: {error:e}");
+            }
+        }
+        for component in got {
+            let momentum: f64 = component.iter().zip(mass).map(|(a, m)| a * m).sum();
+            assert!(momentum.abs() < 1e-13, "{momentum:e}");
+        }
+    }
 }

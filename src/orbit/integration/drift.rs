@@ -206,3 +206,7 @@ pub(super) fn drift(
     *velocity = combine(position, velocity, |r, v| v + (f_rate * r + g_rate * v));
     *position = moved;
 }
+
+#[cfg(test)]
+#[path = "drift_tests.rs"]
+mod tests;

@@ -201,58 +201,6 @@ impl Watch<'_> {
         blocks
     }
 }
+
 #[cfg(test)]
-mod trial {
-    struct No;
-    impl super::Progress for No {
-        fn passed(&mut self, _: f64, _: f64) {}
-    }
-    #[test]
-    fn trial() {
-        let c: super::Constants =
-            toml::from_str(include_str!("../../../configs/orbit_constants.toml")).unwrap();
-        let from: f64 = std::env::var("FROM").map_or(300.0, |x| x.parse().unwrap());
-        let i = super::integrate(&c, super::Span::new(from, -1.0).unwrap(), &mut No).unwrap();
-        println!("energy {:e}", i.energy_error);
-        for line in std::fs::read_to_string("/work/shared/yardsticks.md")
-            .unwrap()
-            .lines()
-            .skip_while(|l| !l.starts_with("## 7"))
-            .filter(|l| l.starts_with("| "))
-            .skip(1)
-            .filter(|l| !l.contains("---"))
-        {
-            let v: Vec<f64> = line
-                .split('|')
-                .filter_map(|x| x.trim().parse().ok())
-                .collect();
-            if v.len() < 4 {
-                continue;
-            }
-            if let Some(r) = i.table.at(v[0] - 0.05) {
-                println!(
-                    "{} de {:.2e} dobl {:.2e} desin {:.2e}",
-                    v[0],
-                    r.eccentricity() - v[1],
-                    r.obliquity_deg() - v[2],
-                    r.eccentricity() * r.perihelion_deg().to_radians().sin() - v[3]
-                );
-            }
-        }
-        let r = i.table.at(-0.05).unwrap();
-        println!(
-            "J2000 {} {} {} {}",
-            r.eccentricity(),
-            r.obliquity_deg() - 84381.406 / 3600.0,
-            r.perihelion_deg(),
-            r.precession_rad
-        );
-        let (a, b) = (i.table.at(-0.15).unwrap(), i.table.at(0.05).unwrap());
-        println!(
-            "rates per cy e {:e} varpi {} p {}",
-            (a.eccentricity() - b.eccentricity()) / 2.0,
-            (a.perihelion_deg() - b.perihelion_deg()) * 1800.0,
-            (a.precession_rad - b.precession_rad).to_degrees() * 1800.0
-        );
-    }
-}
+mod tests;

@@ -103,6 +103,31 @@ impl Planets {
         self.forces.energy(&self.position, &self.velocity)
     }
 
+    /// Angular momentum times G, AU^5 d^-3, about the centre of mass.
+    #[cfg(test)]
+    pub(super) fn angular_momentum(&self) -> [f64; 3] {
+        let (r, v) = (&self.position, &self.velocity);
+        let reduced = self.forces.reduced();
+        [(1, 2), (2, 0), (0, 1)].map(|(i, j)| (reduced * (r[i] * v[j] - r[j] * v[i])).sum())
+    }
+
+    /// Goes to the end of the century, half a sample after the last look at the elements, and turns
+    /// the other way in time.
+    #[cfg(test)]
+    pub(super) fn turn_round(&mut self) {
+        self.advance(self.steps_per_sample / 2);
+        self.step_d = -self.step_d;
+        self.started = false;
+    }
+
+    /// Largest difference of a coordinate, AU.
+    #[cfg(test)]
+    pub(super) fn distance_from(&self, other: &Self) -> f64 {
+        let pairs = self.position.iter().zip(&other.position);
+        let differences = pairs.flat_map(|(a, b)| (*a - *b).to_array());
+        differences.fold(0.0, |largest, d| largest.max(d.abs()))
+    }
+
     /// A number of steps, from and to the ends of steps.
     #[inline(always)]
     fn advance(&mut self, steps: u32) {
@@ -176,7 +201,7 @@ impl Planets {
 }
 
 /// Computes one block.
-struct Block<'a>(&'a mut Planets);
+pub(super) struct Block<'a>(pub(super) &'a mut Planets);
 
 impl Kernel for Block<'_> {
     type Output = MeanElements;

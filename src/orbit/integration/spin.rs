@@ -158,3 +158,7 @@ fn attitude(orbit: &MeanOrbit, axis: &[f64; 3], years: f64, near: f64) -> Attitu
         precession_rad: angle + turns * TAU,
     }
 }
+
+#[cfg(test)]
+#[path = "spin_tests.rs"]
+mod tests;

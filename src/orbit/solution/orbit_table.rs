@@ -238,3 +238,74 @@ fn hexadecimal(bytes: &[u8]) -> String {
         .map(|byte| format!("{byte:02x}"))
         .collect()
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Rows of slow sinusoids like those of the Earth, from -3 to 97 kyr.
+    fn table() -> OrbitTable {
+        OrbitTable::new(-3, (-3..=97).map(|age| exact(f64::from(age))).collect())
+    }
+
+    fn exact(age_kyr: f64) -> OrbitRow {
+        let angle = age_kyr * std::f64::consts::TAU / 46.0;
+        OrbitRow {
+            k: 0.02 * angle.cos(),
+            h: 0.02 * angle.sin() + 0.01,
+            obliquity_rad: 0.41 + 0.02 * (1.1 * angle).cos(),
+            precession_rad: -0.244 * age_kyr + 0.02 * angle.sin(),
+        }
+    }
+
+    #[test]
+    fn converges_to_the_course_between_rows() {
+        let table = table();
+        assert_eq!(table.range_kyr(), [96.0, -2.0]);
+        for i in 0..=980 {
+            let age = f64::from(i) * 0.1 - 2.0;
+            let (got, expected) = (table.at(age).unwrap(), exact(age));
+            assert!(
+                (got.eccentricity() - expected.eccentricity()).abs() < 4e-7,
+                "{age}"
+            );
+            assert!(
+                (got.obliquity_deg() - expected.obliquity_deg()).abs() < 3e-5,
+                "{age}"
+            );
+            let difference = got.climatic_precession() - expected.climatic_precession();
+            assert!(difference.abs() < 5e-7, "{age}: {difference:e}");
+        }
+    }
+
+    #[test]
+    fn analytic_rows_are_met_exactly_and_ages_outside_refused() {
+        let table = table();
+        for (age, row) in table.rows() {
+            assert_eq!(table.at(f64::from(age)), Some(row));
+        }
+        assert_eq!(table.rows().count(), 99);
+        for age in [-2.001, 96.001, f64::NAN] {
+            assert_eq!(table.at(age), None);
+        }
+    }
+
+    #[test]
+    fn analytic_precession_and_perihelion_agree() {
+        let row = exact(12.3);
+        let direct = row.eccentricity() * row.perihelion_deg().to_radians().sin();
+        assert!((row.climatic_precession() - direct).abs() < 1e-16);
+    }
+
+    #[test]
+    fn regress_bytes_give_the_table_back() {
+        let table = table();
+        let bytes = table.to_bytes(&[("solution", "made up".to_owned())]);
+        assert_eq!(OrbitTable::from_bytes(&bytes).as_ref(), Ok(&table));
+        let cut = OrbitTable::from_bytes(&bytes[..bytes.len() - 8]).unwrap_err();
+        assert!(matches!(cut, TableFault::Checksum { .. }), "{cut}");
+        let short = OrbitTable::new(0, vec![exact(0.0); 3]).to_bytes(&[]);
+        let fault = OrbitTable::from_bytes(&short).unwrap_err();
+        assert_eq!(fault, TableFault::Rows { bytes: 96 });
+    }
+}
