@@ -111,11 +111,24 @@ pub trait Progress {
     fn passed(&mut self, years: f64, of_years: f64);
 }
 
+/// Mean plane of the Earth's orbit at an age, against the ecliptic of J2000.0.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct OrbitPlane {
+    /// Age, kyr before 1950.
+    pub age_kyr: i32,
+    /// tan(i/2) cos(Omega), i the inclination, Omega the longitude of the node.
+    pub q: f64,
+    /// tan(i/2) sin(Omega).
+    pub p: f64,
+}
+
 /// What came out of an integration.
 #[derive(Clone, Debug)]
 pub struct Integrated {
     /// The rows.
     pub table: OrbitTable,
+    /// Planes of the Earth's orbit at the same ages, youngest first.
+    pub planes: Vec<OrbitPlane>,
     /// Largest relative change of the energy of the planets over the run, looked at every century.
     pub energy_error: f64,
 }
@@ -145,30 +158,40 @@ pub fn integrate(
     let torques = Torques::new(constants);
     let before = torques.follow(&orbit, Direction::Past, needed[0]);
     let after = torques.follow(&orbit, Direction::Future, needed[1]);
-    let rows =
-        (span.youngest_kyr..=span.oldest_kyr).map(|age_kyr| row(&orbit, age_kyr, &before, &after));
+    let ages = span.youngest_kyr..=span.oldest_kyr;
+    let rows = ages.clone().map(|age| row(&orbit, age, &before, &after));
     Ok(Integrated {
         table: OrbitTable::new(span.youngest_kyr, rows.collect()),
+        planes: ages.map(|age| plane(&orbit, age)).collect(),
         energy_error,
     })
 }
 
 /// The row of an age, whose time is the centre of a block.
 fn row(orbit: &MeanOrbit, age_kyr: i32, before: &[Attitude], after: &[Attitude]) -> OrbitRow {
-    let years = YEAR_1950 - 1000.0 * f64::from(age_kyr);
     let blocks = usize::try_from(age_kyr.abs()).unwrap_or(0) * BLOCKS_PER_KYR;
     let attitude = if age_kyr >= 0 {
         before[blocks]
     } else {
         after[blocks - 1]
     };
-    let [k, h, ..] = orbit.at(years);
+    let [k, h, ..] = orbit.at(years(age_kyr));
     OrbitRow {
         k,
         h,
         obliquity_rad: attitude.obliquity_rad,
         precession_rad: attitude.precession_rad,
     }
+}
+
+fn plane(orbit: &MeanOrbit, age_kyr: i32) -> OrbitPlane {
+    let [_, _, q, p] = orbit.at(years(age_kyr));
+    OrbitPlane { age_kyr, q, p }
+}
+
+/// Time of an age, years from J2000.0.
+fn years(age_kyr: i32) -> f64 {
+    YEAR_1950 - 1000.0 * f64::from(age_kyr)
 }
 
 /// Blocks of both directions, with progress and energy.
