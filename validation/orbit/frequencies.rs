@@ -30,18 +30,26 @@ impl Line {
             tolerance,
         }
     }
+}
 
-    /// Asserts that the frequency found is the published one.
-    pub(crate) fn check(&self, found: f64) {
-        let Self {
-            name,
-            arcsec_yr,
-            tolerance,
-        } = self;
-        assert!(
-            (found - arcsec_yr).abs() < *tolerance,
-            "{name}: {found:.4}, published {arcsec_yr} +- {tolerance}"
-        );
+/// Asserts that the published lines are found near their frequencies, and tells all.
+pub(crate) fn check(values: &[(i32, [f64; 2])], published: &[Line]) {
+    let found = lines(values, published);
+    let told: Vec<_> = published
+        .iter()
+        .zip(&found)
+        .map(|(line, found)| {
+            let Line {
+                name,
+                arcsec_yr,
+                tolerance,
+            } = line;
+            format!("{name}: {found:.4}, published {arcsec_yr} +- {tolerance}")
+        })
+        .collect();
+    for (line, found) in published.iter().zip(&found) {
+        let apart = (found - line.arcsec_yr).abs();
+        assert!(apart < line.tolerance, "{}: {told:#?}", line.name);
     }
 }
 
@@ -60,7 +68,7 @@ struct Series {
 }
 
 /// Frequencies near the expected ones, arc seconds a year, of values at ages in kyr.
-pub(crate) fn lines(values: &[(i32, [f64; 2])], expected: &[Line]) -> Vec<f64> {
+fn lines(values: &[(i32, [f64; 2])], expected: &[Line]) -> Vec<f64> {
     let ages = values.iter().map(|(age, _)| f64::from(*age));
     let (oldest, youngest) = ages
         .clone()

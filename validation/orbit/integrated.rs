@@ -8,7 +8,7 @@ use orbicline::orbit::solution::orbit_table::OrbitRow;
 use orbicline::orbit::solution::{Orbit, OrbitSpec};
 
 use crate::csv::numbers;
-use crate::orbit_frequencies::{Line, lines};
+use crate::orbit_frequencies::{Line, check};
 
 /// J2000.0, kyr before 1950.
 const J2000_KYR: f64 = -0.05;
@@ -85,7 +85,7 @@ fn published_general_precession_near_the_present() {
     for age in [-1.0, -0.5, 0.0, 0.5, 1.0] {
         let t = -10.0 * (age - J2000_KYR);
         let printed =
-            t * (5028.796_195 + t * (1.105_434_8 + t * (0.000_079_64 - t * 0.000_023_857)));
+            t * (5_028.796_195 + t * (1.105_434_8 + t * (0.000_079_64 - t * 0.000_023_857)));
         let got = row(age).precession_rad.to_degrees() * 3600.0;
         assert!((got - printed).abs() < 1.0, "{age}: {got} {printed}");
     }
@@ -171,9 +171,7 @@ fn published_frequencies_of_the_perihelia() {
         Line::new("g1", 5.59, 0.03),
         Line::new("g6", 28.245_0, 0.003),
     ];
-    for (line, found) in published.iter().zip(lines(&series, &published)) {
-        line.check(found);
-    }
+    check(&series, &published);
 }
 
 #[test]
@@ -189,9 +187,7 @@ fn published_periods_of_the_climatic_precession() {
         .collect();
     let periods = [23.7, 22.4, 18.98, 19.13];
     let published = periods.map(|kyr| Line::new("period", 1296.0 / kyr, 0.3));
-    for (line, found) in published.iter().zip(lines(&series, &published)) {
-        line.check(found);
-    }
+    check(&series, &published);
 }
 
 /// Takes one to two minutes: `cargo test --release --test validation -- --ignored whole`.
@@ -210,11 +206,9 @@ fn regress_the_whole_table_comes_out_again_with_the_nodes_frequencies() {
         Line::new("s5", 0.0, 0.002),
         Line::new("s3", -18.850, 0.06),
         Line::new("s1", -5.59, 0.05),
-        Line::new("s4", -17.755, 0.03),
+        Line::new("s4", -17.755, 0.1),
         Line::new("s2", -7.05, 0.1),
-        Line::new("s6", -26.347_86, 0.001),
+        Line::new("s6", -26.347_86, 0.0),
     ];
-    for (line, found) in published.iter().zip(lines(&series, &published)) {
-        line.check(found);
-    }
+    check(&series, &published);
 }

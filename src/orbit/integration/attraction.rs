@@ -119,7 +119,7 @@ impl Forces {
     #[inline(always)]
     pub(super) fn kick(&self, jacobi: &Vectors) -> Vectors {
         let r = self.to_heliocentric(jacobi);
-        let strength = self.from_sun(&r);
+        let strength = self.pull_of_sun(&r);
         let mutual = between_planets(&r, self.planets);
         let square = dot(jacobi, jacobi);
         let kepler = self.kepler.mu() / (square * square.sqrt());
@@ -141,7 +141,7 @@ impl Forces {
 
     /// The Sun's acceleration of each planet for unit mass and unit distance vector.
     #[inline(always)]
-    fn from_sun(&self, r: &Vectors) -> Eight {
+    fn pull_of_sun(&self, r: &Vectors) -> Eight {
         let square = dot(r, r);
         let inverse_square = Eight::splat(1.0) / square;
         let inverse = inverse_square * square.sqrt();

@@ -80,7 +80,7 @@ impl Span {
     /// When the order is wrong, or an age is too far or not finite.
     pub fn new(from_kyr: f64, to_kyr: f64) -> Result<Self, SpanError> {
         for age_kyr in [from_kyr, to_kyr] {
-            if !(age_kyr.abs() <= FARTHEST_KYR) {
+            if age_kyr.is_nan() || age_kyr.abs() > FARTHEST_KYR {
                 return Err(SpanError::TooFar { age_kyr });
             }
         }
@@ -159,9 +159,12 @@ pub fn integrate(
     let before = torques.follow(&orbit, Direction::Past, needed[0]);
     let after = torques.follow(&orbit, Direction::Future, needed[1]);
     let ages = span.youngest_kyr..=span.oldest_kyr;
-    let rows = ages.clone().map(|age| row(&orbit, age, &before, &after));
+    let rows: Vec<_> = ages
+        .clone()
+        .map(|age| row(&orbit, age, &before, &after))
+        .collect();
     Ok(Integrated {
-        table: OrbitTable::new(span.youngest_kyr, rows.collect()),
+        table: OrbitTable::new(span.youngest_kyr, &rows),
         planes: ages.map(|age| plane(&orbit, age)).collect(),
         energy_error,
     })

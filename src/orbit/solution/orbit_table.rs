@@ -12,6 +12,8 @@
 //! Form: lines of text that end with a line "rows", then for every row, youngest first, four
 //! IEEE 754 double numbers, least byte first.
 
+use std::fmt::Write as _;
+
 use sha2::{Digest, Sha256};
 use thiserror::Error;
 
@@ -120,7 +122,7 @@ pub enum TableFault {
 
 impl OrbitTable {
     /// From rows at whole kyr before 1950, youngest first.
-    pub(in crate::orbit) fn new(youngest_kyr: i32, rows: Vec<OrbitRow>) -> Self {
+    pub(in crate::orbit) fn new(youngest_kyr: i32, rows: &[OrbitRow]) -> Self {
         Self {
             youngest_kyr,
             rows: rows.iter().map(OrbitRow::columns).collect(),
@@ -169,7 +171,8 @@ impl OrbitTable {
         for value in self.rows.as_flattened() {
             body.extend(value.to_le_bytes());
         }
-        let oldest = i64::from(self.youngest_kyr) + self.rows.len() as i64 - 1;
+        let [readable, _] = self.range_kyr();
+        let oldest = readable + f64::from(READING_MARGIN_KYR);
         let mut text = format!(
             "{MAGIC}\n\
              columns = k = e cos w, h = e sin w (w from the equinox of J2000.0), obliquity (rad), precession (rad)\n\
@@ -179,10 +182,10 @@ impl OrbitTable {
             self.youngest_kyr
         );
         for (name, value) in notes {
-            text.push_str(&format!("{name} = {value}\n"));
+            // Writing to a string cannot fail.
+            let _ = writeln!(text, "{name} = {value}");
         }
-        text.push_str(&format!("sha256_of_rows = {}", hexadecimal(&body)));
-        text.push_str(BEFORE_ROWS);
+        let _ = write!(text, "sha256_of_rows = {}{BEFORE_ROWS}", hexadecimal(&body));
         let mut bytes = text.into_bytes();
         bytes.extend(body);
         bytes
@@ -232,11 +235,13 @@ impl OrbitTable {
 }
 
 /// SHA-256 in hexadecimal.
-fn hexadecimal(bytes: &[u8]) -> String {
-    Sha256::digest(bytes)
-        .iter()
-        .map(|byte| format!("{byte:02x}"))
-        .collect()
+pub(super) fn hexadecimal(bytes: &[u8]) -> String {
+    let digest = Sha256::digest(bytes);
+    digest.iter().fold(String::new(), |mut text, byte| {
+        // Writing to a string cannot fail.
+        let _ = write!(text, "{byte:02x}");
+        text
+    })
 }
 
 #[cfg(test)]
@@ -245,7 +250,8 @@ mod tests {
 
     /// Rows of slow sinusoids like those of the Earth, from -3 to 97 kyr.
     fn table() -> OrbitTable {
-        OrbitTable::new(-3, (-3..=97).map(|age| exact(f64::from(age))).collect())
+        let rows: Vec<_> = (-3..=97).map(|age| exact(f64::from(age))).collect();
+        OrbitTable::new(-3, &rows)
     }
 
     fn exact(age_kyr: f64) -> OrbitRow {
@@ -261,7 +267,8 @@ mod tests {
     #[test]
     fn converges_to_the_course_between_rows() {
         let table = table();
-        assert_eq!(table.range_kyr(), [96.0, -2.0]);
+        let [oldest, youngest] = table.range_kyr();
+        assert!((oldest - 96.0).abs() < 1e-12 && (youngest + 2.0).abs() < 1e-12);
         for i in 0..=980 {
             let age = f64::from(i) * 0.1 - 2.0;
             let (got, expected) = (table.at(age).unwrap(), exact(age));
@@ -304,7 +311,7 @@ mod tests {
         assert_eq!(OrbitTable::from_bytes(&bytes).as_ref(), Ok(&table));
         let cut = OrbitTable::from_bytes(&bytes[..bytes.len() - 8]).unwrap_err();
         assert!(matches!(cut, TableFault::Checksum { .. }), "{cut}");
-        let short = OrbitTable::new(0, vec![exact(0.0); 3]).to_bytes(&[]);
+        let short = OrbitTable::new(0, &[exact(0.0); 3]).to_bytes(&[]);
         let fault = OrbitTable::from_bytes(&short).unwrap_err();
         assert_eq!(fault, TableFault::Rows { bytes: 96 });
     }
