@@ -7,6 +7,7 @@ mod contents;
 #[path = "cli/program.rs"]
 mod program;
 
+use orbicline::orbit::solution::orbit_table::OrbitTable;
 use orbicline::output::RunFile;
 use program::{Folder, Outcome, SHORT};
 
@@ -194,7 +195,111 @@ fn steps_too_long_for_a_cold_planet_are_refused_and_not_believed() {
 fn an_age_beyond_the_orbit_is_told_where_it_was_given() {
     let folder = Folder::new();
     let outcome = refused(&folder, &["short.toml", "--set", "time.start_kyr=1200"]);
-    outcome.says(&["--set time.start_kyr=1200: ", "within 1000 kyr"]);
+    outcome.says(&["--set time.start_kyr=1200: ", "from 1000 to -1000 kyr"]);
+}
+
+/// An integration of so few years that it takes a fraction of a second.
+fn integrate<'a>(out: &'a str, more: &[&'a str]) -> Vec<&'a str> {
+    let words = ["orbit", "--integrate", "--from-kyr", "2", "--to-kyr", "-1"];
+    [&words[..], &["--out", out], more].concat()
+}
+
+#[test]
+fn an_orbit_is_integrated_into_text_and_into_the_exact_form() {
+    let folder = Folder::new();
+    let outcome = folder.orbicline(&integrate("orbit.csv", &[]));
+    assert!(outcome.ok, "{outcome:?}");
+    assert_eq!(outcome.err, "", "a progress bar without a terminal");
+    for part in ["orbit.csv\n2 to -1 kyr", "energy", "Not known: the tide"] {
+        assert!(outcome.out.contains(part), "no {part} in\n{}", outcome.out);
+    }
+    let text = String::from_utf8(folder.read("orbit.csv")).expect("text");
+    let lines: Vec<_> = text.lines().filter(|l| !l.starts_with('#')).collect();
+    let names =
+        "age_kyr,eccentricity,obliquity_deg,perihelion_heliocentric_deg,climatic_precession";
+    assert_eq!(lines[0], names);
+    assert_eq!(lines.len(), 5, "{text}");
+    assert!(lines[1].starts_with("2,0.0175155"), "{}", lines[1]);
+    assert!(lines[3].starts_with("0,0.0167295"), "{}", lines[3]);
+    let outcome = folder.orbicline(&integrate("orbit.table", &["--quiet"]));
+    assert_eq!((outcome.ok, outcome.out.as_str()), (true, ""));
+    let table = OrbitTable::from_bytes(&folder.read("orbit.table")).expect("a table");
+    let [oldest, youngest] = table.range_kyr();
+    assert!((oldest - 2.0).abs() < 1e-12 && (youngest + 1.0).abs() < 1e-12);
+}
+
+#[test]
+fn a_weaker_tide_by_file_or_edit_is_the_same_and_changes_the_table() {
+    let folder = Folder::new();
+    folder.write("weak.toml", "[tide]\nscale = 0.5\n");
+    let table = |name: &str, more: &[&str]| {
+        assert!(folder.orbicline(&integrate(name, more)).ok);
+        folder.read(name)
+    };
+    let own = table("own.table", &[]);
+    let file = table("file.table", &["--constants", "weak.toml"]);
+    let edit = table("edit.table", &["--set", "tide.scale=0.5"]);
+    assert!(file == edit && file != own);
+}
+
+#[test]
+fn an_orbit_that_cannot_be_made_is_refused_before_anything_is_written() {
+    let folder = Folder::new();
+    folder.write("there.csv", "somebody's work");
+    let says = |words: &[&str], fragments: &[&str]| folder.orbicline(words).says(fragments);
+    says(
+        &integrate("there.csv", &[]),
+        &["there.csv", "exists already"],
+    );
+    says(&integrate("a.nc", &[]), &["a.nc", ".table", ".csv"]);
+    says(
+        &integrate("a.csv", &["--set", "tide.scal=1"]),
+        &["`tide.scal`", "`tide.scale`"],
+    );
+    says(
+        &integrate("a.csv", &["--set", "map.steps_per_century=900"]),
+        &["map.steps_per_century = 900", "between 1075"],
+    );
+    let turned = ["orbit", "--integrate", "--from-kyr", "0", "--to-kyr", "9"];
+    says(
+        &[&turned[..], &["--out", "a.csv"]].concat(),
+        &["exchange them"],
+    );
+    let nothing = [
+        "orbit",
+        "--from-kyr",
+        "2",
+        "--to-kyr",
+        "0",
+        "--out",
+        "a.csv",
+    ];
+    says(&nothing, &["--integrate"]);
+    assert_eq!(folder.read("there.csv"), b"somebody's work");
+    assert_eq!(folder.files(), ["short.toml", "there.csv"]);
+}
+
+#[test]
+fn a_run_with_the_integrated_orbit_goes_back_millions_of_years_and_no_farther() {
+    let folder = Folder::new();
+    let kinds = ["eccentricity", "obliquity", "perihelion"];
+    let edits = kinds.map(|element| format!("orbit.{element}={{kind=\"integrated\"}}"));
+    let words = |times: [&'static str; 2]| {
+        let edits = edits.iter().map(String::as_str).chain(times);
+        let sets: Vec<_> = edits.flat_map(|edit| ["--set", edit]).collect();
+        [
+            &["run", "short.toml", "--out", "old.nc", "--quiet"][..],
+            &sets,
+        ]
+        .concat()
+    };
+    let old = words(["time.start_kyr=4000.14", "time.end_kyr=4000"]);
+    let outcome = folder.orbicline(&old);
+    assert!(outcome.ok, "{outcome:?}");
+    let older = words(["time.start_kyr=5600.14", "time.end_kyr=5600"]);
+    folder
+        .orbicline(&older)
+        .says(&["time.start_kyr", "5600.14", "\"integrated\"", "5500"]);
 }
 
 #[test]

@@ -50,6 +50,12 @@ mod insolation_tables;
 #[path = "orbit/case.rs"]
 mod orbit;
 #[cfg(test)]
+#[path = "orbit/frequencies.rs"]
+mod orbit_frequencies;
+#[cfg(test)]
+#[path = "orbit/integrated.rs"]
+mod orbit_integrated;
+#[cfg(test)]
 #[path = "present_day/case.rs"]
 mod present_day;
 #[cfg(test)]

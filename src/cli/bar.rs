@@ -1,6 +1,7 @@
 //! A progress bar on standard error, only where a person looks at it.
 
 use crate::model::clock::Plan;
+use crate::orbit::integration;
 use indicatif::{HumanDuration, ProgressBar, ProgressDrawTarget, ProgressState, ProgressStyle};
 use std::fmt::Write;
 use std::io::IsTerminal;
@@ -27,14 +28,8 @@ pub(super) enum Show {
 
 impl Bar {
     pub(super) fn new(show: Show) -> Self {
-        let visible = show == Show::OnTerminal && std::io::stderr().is_terminal();
-        let target = if visible {
-            ProgressDrawTarget::stderr()
-        } else {
-            ProgressDrawTarget::hidden()
-        };
         Self {
-            bar: ProgressBar::with_draw_target(None, target),
+            bar: hidden_unless_seen(show),
             next_yr: 0.0,
         }
     }
@@ -79,6 +74,52 @@ impl Bar {
     /// Does something that writes to the terminal, without the bar in its way.
     pub(super) fn aside<T>(&self, what: impl FnOnce() -> T) -> T {
         self.bar.suspend(what)
+    }
+}
+
+/// A bar without length.
+fn hidden_unless_seen(show: Show) -> ProgressBar {
+    let visible = show == Show::OnTerminal && std::io::stderr().is_terminal();
+    let target = if visible {
+        ProgressDrawTarget::stderr()
+    } else {
+        ProgressDrawTarget::hidden()
+    };
+    ProgressBar::with_draw_target(None, target)
+}
+
+/// Progress of an integration of the orbit.
+pub(super) struct YearsBar {
+    bar: ProgressBar,
+    next_yr: f64,
+}
+
+impl YearsBar {
+    /// Years between two looks at the clock.
+    const BETWEEN_YR: f64 = 5000.0;
+
+    /// A bar with a word in front of it.
+    pub(super) fn new(show: Show, message: &'static str) -> Self {
+        let bar = hidden_unless_seen(show);
+        bar.set_style(style());
+        bar.set_message(message);
+        Self { bar, next_yr: 0.0 }
+    }
+}
+
+impl integration::Progress for YearsBar {
+    fn passed(&mut self, years: f64, of_years: f64) {
+        if years >= self.next_yr {
+            self.next_yr = years + Self::BETWEEN_YR;
+            self.bar.set_length(whole(of_years));
+            self.bar.set_position(whole(years));
+        }
+    }
+}
+
+impl Drop for YearsBar {
+    fn drop(&mut self) {
+        self.bar.finish_and_clear();
     }
 }
 

@@ -4,6 +4,7 @@ mod attendant;
 mod bar;
 mod dry_run;
 mod figures;
+mod orbit;
 mod run;
 mod signals;
 
@@ -38,6 +39,8 @@ struct Arguments {
 enum Command {
     /// Run a transient climate into a NetCDF-4 file
     Run(run::RunArguments),
+    /// Compute the orbit from the motion of the planets into a table
+    Orbit(orbit::OrbitArguments),
 }
 
 /// Parses the arguments, does what they ask, prints an error if there is one.
@@ -47,6 +50,7 @@ pub fn main() -> ExitCode {
         .collect();
     let outcome = match Arguments::parse().command {
         Command::Run(arguments) => run::run(&arguments, &words),
+        Command::Orbit(arguments) => orbit::run(&arguments),
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,
@@ -77,6 +81,8 @@ pub fn main() -> ExitCode {
 enum CliError {
     #[error(transparent)]
     Single(#[from] crate::experiment::single::SingleError),
+    #[error(transparent)]
+    Orbit(#[from] crate::experiment::orbit::OrbitCommandError),
     #[error(transparent)]
     Output(#[from] crate::output::OutputError),
     #[error("stopped: {kept}")]

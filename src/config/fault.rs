@@ -5,6 +5,7 @@ use crate::forcing::carbon_dioxide::CarbonDioxideError;
 use crate::forcing::mask::MaskError;
 use crate::forcing::months::CalendarError;
 use crate::model::clock::PlanError;
+use crate::orbit::integration::ConstantsError;
 use crate::orbit::solution::OrbitError;
 use crate::physics::RangeError;
 use crate::tables::TableError;
@@ -22,6 +23,9 @@ pub enum Fault {
     /// The orbit.
     #[error(transparent)]
     Orbit(OrbitError),
+    /// A constant of the integration of the orbit.
+    #[error(transparent)]
+    Constants(ConstantsError),
     /// The mask of another orbit.
     #[error(transparent)]
     Mask(MaskError),
@@ -101,6 +105,7 @@ impl Fault {
                 return vec![format!("orbit.{key}")];
             }
             Self::Orbit(_) => vec!["orbit"],
+            Self::Constants(e) => vec![e.key.as_str()],
             Self::Mask(MaskError::Value { key, .. }) => return vec![format!("orbit_mask.{key}")],
             Self::Mask(MaskError::Orbit(OrbitError::Value { key, .. })) => {
                 let key = key.split(' ').next().unwrap_or(key);

@@ -10,6 +10,7 @@ pub mod difference;
 pub mod error;
 pub mod fault;
 pub mod identity;
+pub mod orbit_constants;
 mod origin;
 pub mod provenance;
 pub mod read;

@@ -38,23 +38,47 @@ impl Tree {
     /// # Errors
     /// When a file cannot be read or is not TOML, or when files extend one another in a ring.
     pub fn load(file: &Path) -> Result<Self, ConfigError> {
-        let (layers, files) = read_chain(file)?;
-        let mut tree = Self {
+        Self::empty().with(file)
+    }
+
+    /// Reads `file`, if one is named, over a text that the program brings along as `name`.
+    ///
+    /// # Errors
+    /// As [`Tree::load`].
+    pub fn load_over(name: &str, text: &str, file: Option<&Path>) -> Result<Self, ConfigError> {
+        let mut tree = Self::empty();
+        tree.lay(parse(Path::new(name), text)?);
+        match file {
+            Some(file) => tree.with(file),
+            None => Ok(tree),
+        }
+    }
+
+    fn empty() -> Self {
+        Self {
             table: Table::new(),
             origins: Origins::default(),
-            files,
-        };
-        for layer in layers.into_iter().rev() {
-            tree.origins.adopt("", &layer.origins);
-            overlay(
-                &mut tree.table,
-                layer.table,
-                "",
-                &mut tree.origins,
-                &layer.origins,
-            );
+            files: Vec::new(),
         }
-        Ok(tree)
+    }
+
+    /// Lays a file and all that it extends on what is there.
+    fn with(mut self, file: &Path) -> Result<Self, ConfigError> {
+        let (layers, files) = read_chain(file)?;
+        self.files.extend(files);
+        layers.into_iter().rev().for_each(|layer| self.lay(layer));
+        Ok(self)
+    }
+
+    fn lay(&mut self, layer: Layer) {
+        self.origins.adopt("", &layer.origins);
+        overlay(
+            &mut self.table,
+            layer.table,
+            "",
+            &mut self.origins,
+            &layer.origins,
+        );
     }
 
     /// Changes one key, as `--set a.b=value` asks. The value is read as TOML; a bare word that is

@@ -4,6 +4,7 @@ pub mod background;
 mod contents;
 pub mod estimate;
 pub mod follow;
+pub mod orbit;
 pub mod resume;
 pub mod single;
 pub mod summary;

@@ -3,6 +3,7 @@
 //! Everything here works on plain numbers and slices; units are the caller's business.
 
 pub mod dispatch;
+pub mod lagrange;
 pub mod lanes;
 pub mod profile;
 pub mod shown;

@@ -6,6 +6,7 @@
 mod arc;
 pub mod elements;
 pub mod insolation;
+pub mod integration;
 pub mod kepler;
 pub mod solution;
 mod table;

@@ -62,13 +62,8 @@ impl Claim {
     pub fn take(path: &Path) -> Result<Self> {
         segments::prepare(path)?;
         let lock = segments::lock(path)?;
+        refuse_existing(path, Overwrite::Replace)?;
         let path = path.to_owned();
-        if path.symlink_metadata().is_ok_and(|found| !found.is_file()) {
-            return Err(OutputError::BadPath {
-                path,
-                reason: "it is not a regular file (a link or a device); name a file",
-            });
-        }
         Ok(Self { path, _lock: lock })
     }
 
@@ -146,11 +141,22 @@ impl Claim {
 
     /// An error if the output exists and may not be replaced.
     pub(super) fn refuse_output(&self, overwrite: Overwrite) -> Result<()> {
-        if overwrite == Overwrite::Refuse && self.exists() {
-            return Err(OutputError::Exists {
-                path: self.path.clone(),
-            });
-        }
-        Ok(())
+        refuse_existing(&self.path, overwrite)
     }
+}
+
+/// Refuses what is no regular file and, unless it may be replaced, what exists.
+pub(super) fn refuse_existing(path: &Path, overwrite: Overwrite) -> Result<()> {
+    if path.symlink_metadata().is_ok_and(|found| !found.is_file()) {
+        return Err(OutputError::BadPath {
+            path: path.to_owned(),
+            reason: "it is not a regular file (a link or a device); name a file",
+        });
+    }
+    if overwrite == Overwrite::Refuse && path.symlink_metadata().is_ok() {
+        return Err(OutputError::Exists {
+            path: path.to_owned(),
+        });
+    }
+    Ok(())
 }

@@ -12,6 +12,7 @@ mod error;
 pub mod journal;
 mod layout;
 pub mod netcdf4;
+pub mod plain;
 pub mod reader;
 pub mod schema;
 mod segments;

@@ -3,16 +3,19 @@
 //! What: [`OrbitSpec`] says in a configuration file where eccentricity, obliquity and perihelion
 //! come from; [`Orbit::build`] checks it, and [`Orbit::at`] gives the elements. So one element can
 //! follow a solution while another stands still.
-//! Equations: in [`berger1978`] and, for made-up courses, in `idealised.rs`.
+//! Equations: in [`integrated`], [`berger1978`] and, for made-up courses, in `idealised.rs`.
 //! Units: ages in kyr before 1950 CE, positive into the past; degrees.
-//! Numerics: closed forms, no state.
+//! Numerics: closed forms and interpolation, no state. Nothing is extrapolated.
 
 pub mod berger1978;
 mod berger1978_terms;
 mod idealised;
+pub mod integrated;
+pub mod orbit_table;
 mod spec;
 
-use spec::Course;
+use orbit_table::{OrbitRow, TableFault};
+use spec::{Course, Element};
 pub use spec::{EccentricitySource, ObliquitySource, OrbitSpec, PerihelionSource};
 use thiserror::Error;
 
@@ -32,19 +35,26 @@ pub enum OrbitError {
         /// The limit, and what to do.
         limit: &'static str,
     },
-    /// The series of Berger (1978) says nothing about this age.
+    /// A solution says nothing about this age.
     #[error(
-        "age {age_kyr} kyr: orbit.{element} of kind \"berger1978\" is valid within {limit_kyr} kyr \
-         of 1950 CE; choose a younger age or another kind for this element"
+        "age {age_kyr} kyr: orbit.{element} of kind \"{kind}\" is valid from {oldest_kyr} to \
+         {youngest_kyr} kyr before 1950 CE; choose an age between or another kind for this element"
     )]
     AgeOutOfRange {
         /// The age asked for, kyr before 1950.
         age_kyr: f64,
         /// Which element's source is limited.
         element: &'static str,
-        /// The limit, kyr.
-        limit_kyr: f64,
+        /// The kind of that source.
+        kind: &'static str,
+        /// Oldest age, kyr before 1950.
+        oldest_kyr: f64,
+        /// Youngest age, kyr before 1950.
+        youngest_kyr: f64,
     },
+    /// The table that comes with the program is damaged.
+    #[error("the table of the integrated orbit in this program is damaged: {0}")]
+    Table(#[from] TableFault),
     /// The age is not a number.
     #[error("age {age_kyr} kyr is not a finite number; give kyr before 1950 CE")]
     AgeNotFinite {
@@ -67,14 +77,11 @@ impl Orbit {
     /// # Errors
     /// All numbers that are out of range, together.
     pub fn build(spec: &OrbitSpec) -> Result<Self, Vec<OrbitError>> {
-        let errors = spec.violations();
-        if !errors.is_empty() {
-            return Err(errors);
-        }
+        let [eccentricity, obliquity, perihelion] = spec.courses()?;
         Ok(Self {
-            eccentricity: spec.eccentricity.course(),
-            obliquity: spec.obliquity.course(),
-            perihelion: spec.perihelion.course(),
+            eccentricity,
+            obliquity,
+            perihelion,
         })
     }
 
@@ -83,12 +90,20 @@ impl Orbit {
     /// # Errors
     /// When a source is not valid at this age, or the age is not finite.
     pub fn at(&self, age_kyr: f64) -> Result<Elements, OrbitError> {
-        self.check_age(age_kyr)?;
-        let perihelion_deg = self.perihelion.at(age_kyr, berger1978::perihelion_deg);
+        let value = |name, course: Course, element: Element| {
+            check_age(name, course, age_kyr)?;
+            let value = course.at(age_kyr, element);
+            value.ok_or(OrbitError::AgeNotFinite { age_kyr })
+        };
+        let [eccentricity, obliquity, perihelion] = self.named();
         Ok(Elements {
-            eccentricity: self.eccentricity.at(age_kyr, berger1978::eccentricity),
-            obliquity_deg: self.obliquity.at(age_kyr, berger1978::obliquity_deg),
-            perihelion: PerihelionLongitude::from_heliocentric_deg(perihelion_deg),
+            eccentricity: value(eccentricity.0, eccentricity.1, ECCENTRICITY)?,
+            obliquity_deg: value(obliquity.0, obliquity.1, OBLIQUITY)?,
+            perihelion: PerihelionLongitude::from_heliocentric_deg(value(
+                perihelion.0,
+                perihelion.1,
+                PERIHELION,
+            )?),
         })
     }
 
@@ -97,35 +112,54 @@ impl Orbit {
     /// # Errors
     /// When one of the ends is out of range of a source, or not finite.
     pub fn check_range(&self, start_kyr: f64, end_kyr: f64) -> Result<(), OrbitError> {
-        self.check_age(start_kyr)?;
-        self.check_age(end_kyr)
+        for age_kyr in [start_kyr, end_kyr] {
+            for (name, course) in self.named() {
+                check_age(name, course, age_kyr)?;
+            }
+        }
+        Ok(())
     }
 
-    fn check_age(&self, age_kyr: f64) -> Result<(), OrbitError> {
-        if !age_kyr.is_finite() {
-            return Err(OrbitError::AgeNotFinite { age_kyr });
-        }
-        let limit_kyr = berger1978::LIMIT_KYR;
-        match self.element_from_series() {
-            Some(element) if age_kyr.abs() > limit_kyr => Err(OrbitError::AgeOutOfRange {
-                age_kyr,
-                element,
-                limit_kyr,
-            }),
-            _ => Ok(()),
-        }
-    }
-
-    /// The first element, if any, that follows the series and its limit in age.
-    fn element_from_series(&self) -> Option<&'static str> {
+    fn named(&self) -> [(&'static str, Course); 3] {
         [
             ("eccentricity", self.eccentricity),
             ("obliquity", self.obliquity),
             ("perihelion", self.perihelion),
         ]
-        .into_iter()
-        .find(|(_, course)| *course == Course::Berger1978)
-        .map(|(name, _)| name)
+    }
+}
+
+const ECCENTRICITY: Element = Element {
+    of_row: OrbitRow::eccentricity,
+    of_series: berger1978::eccentricity,
+};
+const OBLIQUITY: Element = Element {
+    of_row: OrbitRow::obliquity_deg,
+    of_series: berger1978::obliquity_deg,
+};
+const PERIHELION: Element = Element {
+    of_row: OrbitRow::perihelion_deg,
+    of_series: berger1978::perihelion_deg,
+};
+
+/// Whether the course of an element says something about an age.
+fn check_age(element: &'static str, course: Course, age_kyr: f64) -> Result<(), OrbitError> {
+    if !age_kyr.is_finite() {
+        return Err(OrbitError::AgeNotFinite { age_kyr });
+    }
+    match course.limits() {
+        Some((kind, [oldest_kyr, youngest_kyr]))
+            if !(youngest_kyr..=oldest_kyr).contains(&age_kyr) =>
+        {
+            Err(OrbitError::AgeOutOfRange {
+                age_kyr,
+                element,
+                kind,
+                oldest_kyr,
+                youngest_kyr,
+            })
+        }
+        _ => Ok(()),
     }
 }
 
@@ -202,8 +236,37 @@ mod tests {
         let orbit = Orbit::build(&OrbitSpec::berger1978()).unwrap();
         assert!(orbit.check_range(1000.0, -1000.0).is_ok());
         let message = orbit.at(1000.5).unwrap_err().to_string();
-        assert!(message.contains("1000.5") && message.contains("within 1000 kyr"));
+        assert!(message.contains("1000.5") && message.contains("from 1000 to -1000 kyr"));
         assert!(orbit.check_range(0.0, f64::NAN).is_err());
+    }
+
+    #[test]
+    fn analytic_one_element_of_the_integration_and_the_others_still() {
+        let orbit = Orbit::build(&parse(
+            "eccentricity = { kind = 'integrated' }
+             obliquity = { kind = 'constant', obliquity_deg = 23 }
+             perihelion = { kind = 'constant_heliocentric', heliocentric_deg = 90 }",
+        ))
+        .unwrap();
+        let all = Orbit::build(&OrbitSpec::integrated()).unwrap();
+        let (one, all) = (orbit.at(2345.6).unwrap(), all.at(2345.6).unwrap());
+        assert!((one.eccentricity - all.eccentricity).abs() < f64::MIN_POSITIVE);
+        assert!((one.obliquity_deg - 23.0).abs() < f64::MIN_POSITIVE);
+        assert!((one.perihelion.heliocentric_deg() - 90.0).abs() < 1e-12);
+        assert!((all.obliquity_deg - 23.0).abs() > 1e-3);
+    }
+
+    #[test]
+    fn regress_ages_outside_the_table_are_refused() {
+        let orbit = Orbit::build(&OrbitSpec::integrated()).unwrap();
+        assert!(orbit.check_range(5500.0, -100.0).is_ok());
+        assert!(orbit.at(5500.0).is_ok() && orbit.at(-100.0).is_ok());
+        for age in [5500.1, -100.1, f64::NAN] {
+            assert!(orbit.at(age).is_err(), "{age}");
+        }
+        let message = orbit.at(5500.5).unwrap_err().to_string();
+        assert!(message.contains("5500.5") && message.contains("from 5500 to -100 kyr"));
+        assert!(message.contains("orbit.eccentricity") && message.contains("\"integrated\""));
     }
 
     #[test]

@@ -3,12 +3,14 @@
 //! What: one source for each element, tagged by `kind`; the check of every number; the value of
 //! each source at an age.
 //! Units: in the names of the keys. Ages in kyr before 1950 CE.
-//! Numerics: none; see [`super::berger1978`] and `idealised.rs`.
+//! Numerics: none; see [`super::integrated`], [`super::berger1978`] and `idealised.rs`.
 
 use serde::{Deserialize, Serialize};
 
-use super::OrbitError;
+use super::berger1978::LIMIT_KYR;
 use super::idealised::{Sinusoid, rotating_deg};
+use super::orbit_table::{OrbitRow, OrbitTable};
+use super::{OrbitError, integrated};
 use crate::orbit::elements::PerihelionLongitude;
 
 const FINITE: &str = "must be a finite number; correct it";
@@ -30,6 +32,8 @@ pub struct OrbitSpec {
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(tag = "kind", rename_all = "snake_case", deny_unknown_fields)]
 pub enum EccentricitySource {
+    /// Integration of the planets' motion, from the table of the program.
+    Integrated {},
     /// Series of Berger (1978).
     Berger1978 {},
     /// The same at all ages.
@@ -54,6 +58,8 @@ pub enum EccentricitySource {
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(tag = "kind", rename_all = "snake_case", deny_unknown_fields)]
 pub enum ObliquitySource {
+    /// Integration of the planets' motion, from the table of the program.
+    Integrated {},
     /// Series of Berger (1978).
     Berger1978 {},
     /// The same at all ages.
@@ -78,6 +84,8 @@ pub enum ObliquitySource {
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(tag = "kind", rename_all = "snake_case", deny_unknown_fields)]
 pub enum PerihelionSource {
+    /// Integration of the planets' motion, from the table of the program.
+    Integrated {},
     /// Series of Berger (1978).
     Berger1978 {},
     /// The same at all ages, by the Earth's heliocentric longitude (102.9 today).
@@ -113,6 +121,8 @@ pub enum PerihelionSource {
 /// The course of one element, whatever the names of its keys.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) enum Course {
+    /// Rows of an integration.
+    Table(&'static OrbitTable),
     /// Series of Berger (1978).
     Berger1978,
     /// The same at all ages.
@@ -121,6 +131,15 @@ pub(super) enum Course {
     Sinusoid(Sinusoid),
     /// Uniform advance of an angle.
     Rotation { at_1950_deg: f64, period_kyr: f64 },
+}
+
+/// How an element is taken from a solution that holds all three.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Element {
+    /// From a row of a table.
+    pub(super) of_row: fn(&OrbitRow) -> f64,
+    /// From the series of Berger (1978), at an age in kyr before 1950.
+    pub(super) of_series: fn(f64) -> f64,
 }
 
 /// Names of the keys and limits of an element, for messages.
@@ -173,16 +192,26 @@ const PERIHELION_RULES: Rules = Rules {
 };
 
 impl Course {
-    /// Value at an age, kyr before 1950; `series` is the element's series.
-    pub(super) fn at(self, age_kyr: f64, series: fn(f64) -> f64) -> f64 {
-        match self {
-            Self::Berger1978 => series(age_kyr),
+    /// Value at an age, kyr before 1950, of the element; `None` outside the ages of a table.
+    pub(super) fn at(self, age_kyr: f64, element: Element) -> Option<f64> {
+        Some(match self {
+            Self::Table(table) => (element.of_row)(&table.at(age_kyr)?),
+            Self::Berger1978 => (element.of_series)(age_kyr),
             Self::Constant(value) => value,
             Self::Sinusoid(wave) => wave.at(age_kyr),
             Self::Rotation {
                 at_1950_deg,
                 period_kyr,
             } => rotating_deg(at_1950_deg, period_kyr, age_kyr),
+        })
+    }
+
+    /// Name of the kind and the ages, kyr before 1950, outside which it says nothing.
+    pub(super) fn limits(self) -> Option<(&'static str, [f64; 2])> {
+        match self {
+            Self::Table(table) => Some(("integrated", table.range_kyr())),
+            Self::Berger1978 => Some(("berger1978", [LIMIT_KYR, -LIMIT_KYR])),
+            Self::Constant(_) | Self::Sinusoid(_) | Self::Rotation { .. } => None,
         }
     }
 
@@ -199,7 +228,7 @@ impl Course {
             )
         };
         let checks = match self {
-            Self::Berger1978 => Vec::new(),
+            Self::Table(_) | Self::Berger1978 => Vec::new(),
             Self::Constant(value) => vec![(rules.constant, value, allowed(value), rules.limit)],
             Self::Sinusoid(wave) => {
                 let mut checks = vec![
@@ -233,8 +262,9 @@ impl Course {
 
 impl EccentricitySource {
     /// The course without the names.
-    pub(super) fn course(&self) -> Course {
-        match *self {
+    pub(super) fn course(&self) -> Result<Course, OrbitError> {
+        Ok(match *self {
+            Self::Integrated {} => Course::Table(integrated::table()?),
             Self::Berger1978 {} => Course::Berger1978,
             Self::Constant { eccentricity } => Course::Constant(eccentricity),
             Self::Sinusoid {
@@ -248,14 +278,15 @@ impl EccentricitySource {
                 period_kyr,
                 maximum_at_kyr,
             }),
-        }
+        })
     }
 }
 
 impl ObliquitySource {
     /// The course without the names, degrees.
-    pub(super) fn course(&self) -> Course {
-        match *self {
+    pub(super) fn course(&self) -> Result<Course, OrbitError> {
+        Ok(match *self {
+            Self::Integrated {} => Course::Table(integrated::table()?),
             Self::Berger1978 {} => Course::Berger1978,
             Self::Constant { obliquity_deg } => Course::Constant(obliquity_deg),
             Self::Sinusoid {
@@ -269,14 +300,15 @@ impl ObliquitySource {
                 period_kyr,
                 maximum_at_kyr,
             }),
-        }
+        })
     }
 }
 
 impl PerihelionSource {
     /// The course of the heliocentric longitude without the names, degrees.
-    pub(super) fn course(&self) -> Course {
-        match *self {
+    pub(super) fn course(&self) -> Result<Course, OrbitError> {
+        Ok(match *self {
+            Self::Integrated {} => Course::Table(integrated::table()?),
             Self::Berger1978 {} => Course::Berger1978,
             Self::ConstantHeliocentric { heliocentric_deg } => Course::Constant(heliocentric_deg),
             Self::ConstantSunLongitude { sun_longitude_deg } => Course::Constant(
@@ -300,7 +332,7 @@ impl PerihelionSource {
                 at_1950_deg: heliocentric_deg_at_1950,
                 period_kyr,
             },
-        }
+        })
     }
 
     /// The key under which a constant longitude was given.
@@ -322,15 +354,42 @@ impl OrbitSpec {
         }
     }
 
-    /// Every number that is out of range.
-    pub(super) fn violations(&self) -> Vec<OrbitError> {
-        let perihelion = Rules {
+    /// All three elements from the integration of the planets' motion.
+    pub fn integrated() -> Self {
+        Self {
+            eccentricity: EccentricitySource::Integrated {},
+            obliquity: ObliquitySource::Integrated {},
+            perihelion: PerihelionSource::Integrated {},
+        }
+    }
+
+    /// The courses of eccentricity, obliquity and perihelion, or every number that is out of range.
+    pub(super) fn courses(&self) -> Result<[Course; 3], Vec<OrbitError>> {
+        let perihelion_rules = Rules {
             constant: self.perihelion.constant_key(),
             ..PERIHELION_RULES
         };
-        let mut errors = self.eccentricity.course().violations(&ECCENTRICITY_RULES);
-        errors.extend(self.obliquity.course().violations(&OBLIQUITY_RULES));
-        errors.extend(self.perihelion.course().violations(&perihelion));
-        errors
+        let courses = [
+            (self.eccentricity.course(), &ECCENTRICITY_RULES),
+            (self.obliquity.course(), &OBLIQUITY_RULES),
+            (self.perihelion.course(), &perihelion_rules),
+        ];
+        let mut errors = Vec::new();
+        let courses = courses.map(|(course, rules)| match course {
+            Ok(course) => {
+                errors.extend(course.violations(rules));
+                Some(course)
+            }
+            Err(error) => {
+                errors.push(error);
+                None
+            }
+        });
+        match courses {
+            [Some(eccentricity), Some(obliquity), Some(perihelion)] if errors.is_empty() => {
+                Ok([eccentricity, obliquity, perihelion])
+            }
+            _ => Err(errors),
+        }
     }
 }
