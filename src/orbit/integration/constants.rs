@@ -1,20 +1,19 @@
 //! The constants of the integration, as they stand in `configs/orbit_constants.toml`.
 //!
-//! What: the types read from that file, the check of every number, and what follows from them.
+//! What: the types read from that file, and what follows from them (limits in `limits.rs`).
 //! Equations and units: beside each function. Sources of the numbers: in the file.
 //! Numerics: plain arithmetic; sine and cosine from `libm`, whose digits are the same everywhere.
 
 use std::f64::consts::PI;
 
 use serde::{Deserialize, Serialize};
-use thiserror::Error;
 
 use super::eight::PLANETS;
 
 /// Days in a year of time.
 const YEAR_D: f64 = 365.25;
 /// Days in a century.
-const CENTURY_D: f64 = 100.0 * YEAR_D;
+pub(super) const CENTURY_D: f64 = 100.0 * YEAR_D;
 /// Seconds in a day.
 const DAY_S: f64 = 86_400.0;
 /// Hours in a day.
@@ -23,23 +22,6 @@ const DAY_H: f64 = 24.0;
 const GYR_YR: f64 = 1e9;
 /// Arc seconds in a radian.
 const ARCSEC_PER_RAD: f64 = 648_000.0 / PI;
-/// Longest step that the series of the Kepler drift allow, d (see `drift.rs`), with room to spare.
-const LONGEST_STEP_D: f64 = 34.0;
-/// Shortest step, d: at half a day the rounding of the steps outweighs what they gain.
-const SHORTEST_STEP_D: f64 = 0.5;
-
-/// Why constants cannot be used.
-#[derive(Clone, Debug, Error, PartialEq)]
-#[error("{key} = {value}: {limit}")]
-pub struct ConstantsError {
-    /// Place of the number in the file.
-    pub key: String,
-    /// The number given.
-    pub value: f64,
-    /// The limit, and what to do.
-    pub limit: &'static str,
-}
-
 /// All constants of the integration.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
@@ -155,158 +137,6 @@ pub struct Planet {
 }
 
 impl Constants {
-    /// Checks every number.
-    ///
-    /// # Errors
-    /// All numbers that have no meaning, together.
-    pub fn check(&self) -> Result<(), Vec<ConstantsError>> {
-        let errors: Vec<_> = [
-            self.wrong_numbers(),
-            self.wrong_steps(),
-            self.wrong_orbits(),
-        ]
-        .into_iter()
-        .flatten()
-        .collect();
-        if errors.is_empty() {
-            Ok(())
-        } else {
-            Err(errors)
-        }
-    }
-
-    fn wrong_numbers(&self) -> Vec<ConstantsError> {
-        const POSITIVE: &str = "must be a finite number above 0; correct it";
-        const NOT_NEGATIVE: &str = "must be a finite number, not below 0; correct it";
-        let (units, sun, moon, axis, tide) =
-            (&self.units, &self.sun, &self.moon, &self.axis, &self.tide);
-        let positive = [
-            ("units.astronomical_unit_km", units.astronomical_unit_km),
-            ("units.light_speed_km_s", units.light_speed_km_s),
-            ("sun.gm_au3_d2", sun.gm_au3_d2),
-            ("moon.earth_moon_mass_ratio", moon.earth_moon_mass_ratio),
-            ("axis.obliquity_arcsec", axis.obliquity_arcsec),
-            (
-                "axis.precession_rate_arcsec_yr",
-                axis.precession_rate_arcsec_yr,
-            ),
-            ("axis.dynamical_ellipticity", axis.dynamical_ellipticity),
-            ("axis.sidereal_year_d", axis.sidereal_year_d),
-            ("tide.sidereal_day_h", tide.sidereal_day_h),
-            (
-                "tide.moon_distance_earth_radii",
-                tide.moon_distance_earth_radii,
-            ),
-            ("tide.moon_sidereal_month_d", tide.moon_sidereal_month_d),
-        ];
-        let not_negative = [
-            ("sun.radius_km", sun.radius_km),
-            ("sun.j2", sun.j2),
-            ("moon.distance_km", moon.distance_km),
-            ("moon.quadrupole_factor", moon.quadrupole_factor),
-            ("axis.geodesic_rate_arcsec_yr", axis.geodesic_rate_arcsec_yr),
-            ("axis.eccentricity", axis.eccentricity),
-            ("tide.scale", tide.scale),
-            ("tide.sidereal_day_rate_h_gyr", tide.sidereal_day_rate_h_gyr),
-            (
-                "tide.moon_distance_rate_earth_radii_gyr",
-                tide.moon_distance_rate_earth_radii_gyr,
-            ),
-        ];
-        let wrong = |limit| {
-            move |(key, value): (&'static str, f64)| ConstantsError {
-                key: key.to_owned(),
-                value,
-                limit,
-            }
-        };
-        let below = positive
-            .into_iter()
-            .filter(|(_, v)| !(v.is_finite() && *v > 0.0));
-        let negative = not_negative
-            .into_iter()
-            .filter(|(_, v)| !(v.is_finite() && *v >= 0.0));
-        let mut errors: Vec<_> = below.map(wrong(POSITIVE)).collect();
-        errors.extend(negative.map(wrong(NOT_NEGATIVE)));
-        let ranges = [
-            (
-                "axis.obliquity_arcsec",
-                axis.obliquity_arcsec,
-                90.0 * 3600.0,
-                "must be below 324000 arc seconds (90 degrees); correct it",
-            ),
-            (
-                "axis.eccentricity",
-                axis.eccentricity,
-                1.0,
-                "must be below 1; correct it",
-            ),
-        ];
-        let above = ranges.into_iter().filter(|(_, v, limit, _)| v >= limit);
-        errors.extend(above.map(|(key, value, _, limit)| wrong(limit)((key, value))));
-        errors
-    }
-
-    fn wrong_steps(&self) -> Vec<ConstantsError> {
-        let Map {
-            steps_per_century: steps,
-            steps_per_sample: sample,
-        } = self.map;
-        let mut errors = Vec::new();
-        let mut say = |key: &str, value: u32, limit| {
-            errors.push(ConstantsError {
-                key: key.to_owned(),
-                value: f64::from(value),
-                limit,
-            });
-        };
-        let step_d = CENTURY_D / f64::from(steps);
-        if !(SHORTEST_STEP_D..=LONGEST_STEP_D).contains(&step_d) {
-            let limit = "must lie between 1075 and 73050 steps (34 d to 0.5 d); change it";
-            say("map.steps_per_century", steps, limit);
-        }
-        if sample == 0 || sample % 2 == 1 || steps % sample != 0 {
-            let limit = "must be even and divide map.steps_per_century; change one of them";
-            say("map.steps_per_sample", sample, limit);
-        }
-        errors
-    }
-
-    fn wrong_orbits(&self) -> Vec<ConstantsError> {
-        let mut errors = Vec::new();
-        let mut farthest = 0.0;
-        for (number, planet) in self.planet.iter().enumerate() {
-            let mut say = |key: &str, value, limit| {
-                errors.push(ConstantsError {
-                    key: format!("planet[{number}].{key}"),
-                    value,
-                    limit,
-                });
-            };
-            let square = |v: &[f64; 3]| v.iter().map(|x| x * x).sum::<f64>();
-            let r = square(&planet.position_au).sqrt();
-            let binding = 2.0 * self.sun.gm_au3_d2 / r - square(&planet.velocity_au_d);
-            if !(planet.gm_au3_d2.is_finite() && planet.gm_au3_d2 >= 0.0) {
-                let limit = "must be a finite number, not below 0; correct it";
-                say("gm_au3_d2", planet.gm_au3_d2, limit);
-            }
-            if !(binding.is_finite() && binding > 0.0) {
-                let limit = "as 2 GM/r - v^2 it must be above 0 (a bound orbit); check position \
-                             and velocity and their units, AU and AU/d";
-                say("velocity_au_d", binding, limit);
-                continue;
-            }
-            let a = self.sun.gm_au3_d2 / binding;
-            if a <= farthest {
-                let limit = "as semi-major axis, AU, it must exceed that of the planet before; \
-                             put the planets in the order of their distance from the Sun";
-                say("position_au", a, limit);
-            }
-            farthest = a;
-        }
-        errors
-    }
-
     /// One step of the map, d.
     pub(super) fn step_d(&self) -> f64 {
         CENTURY_D / f64::from(self.map.steps_per_century)

@@ -18,11 +18,13 @@ mod attraction;
 mod constants;
 mod drift;
 mod eight;
+mod limits;
 mod planets;
 mod smoothing;
 mod spin;
 
-pub use constants::{Constants, ConstantsError};
+pub use constants::Constants;
+pub use limits::ConstantsError;
 use planets::{Direction, MeanElements, Planets};
 use smoothing::{BLOCK_YR, MARGIN, MeanOrbit};
 use spin::{Attitude, Torques};
