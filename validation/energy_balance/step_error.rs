@@ -16,12 +16,13 @@ const FINE_STEPS: usize = 1152;
 /// Years on the first orbit and on the second.
 const YEARS: [usize; 2] = [20, 40];
 
-/// Limits, K, for air, land, rms of air and annual mean of air; see README.md.
+/// Limits, K, for air, land, rms of air and annual mean of air: the earlier errors of README.md, twice
+/// for land and the annual mean at 48 steps and the annual mean at 72 and 144.
 const LIMITS: [(usize, [f64; 4]); 4] = [
-    (48, [0.19, 1.12, 0.0138, 0.012]),
-    (72, [0.104, 0.25, 0.0062, 0.0085]),
+    (48, [0.19, 1.12, 0.0138, 0.024]),
+    (72, [0.104, 0.25, 0.0062, 0.0050]),
     (96, [0.070, 0.20, 0.0040, 0.0053]),
-    (144, [0.034, 0.109, 0.0015, 0.0025]),
+    (144, [0.034, 0.109, 0.0015, 0.0008]),
 ];
 
 /// Temperatures 40 years after the orbit jumped, degC: air and land at 12 phases of the year,

@@ -87,7 +87,10 @@ pub(super) fn assemble(c: &Coefficients, w: &mut Work, greenhouse: f64) {
     for ((row, b), (rhs, diagonal)) in w.rows.iter().zip(&c.rows).zip(system) {
         let per_land = b.land * row.land_per_newton;
         let per_ocean = b.ocean * row.ocean_per_newton;
-        let (slope, slope_air) = (row.land_flux_slope, row.land_flux_air);
+        let (slope, slope_air) = (
+            row.land_flux_slope + row.air_absorbed_land,
+            row.land_flux_air,
+        );
         let (by_enthalpy, by_air) = (row.ocean_flux_enthalpy, row.ocean_flux_air);
         let emission = b.air_emission_offset + row.air * c.air_emission_slope - greenhouse;
         let local = row.air_absorbed - emission - row.air_lead * storage;

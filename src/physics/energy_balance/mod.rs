@@ -26,6 +26,7 @@ mod ice_line;
 mod means;
 pub mod params;
 mod report;
+mod snow;
 mod state;
 mod surfaces;
 mod update;

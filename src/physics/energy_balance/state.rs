@@ -8,6 +8,7 @@
 //! far below the rounding of y itself.
 
 use super::coefficients::Coefficients;
+use super::snow::{SNOW_LEVELS, SnowLevel};
 use crate::numerics::lanes::{Lanes, WIDTH};
 use crate::numerics::sum::CompensatedSum;
 use crate::units::SEA_WATER_FREEZING_C;
@@ -44,6 +45,17 @@ impl Level {
     #[inline(always)]
     pub(super) fn extrapolated(&self) -> Lanes {
         self.now + (self.last * 2.0 - self.before)
+    }
+
+    /// Share of the end of a step in the temperature of its middle.
+    pub(super) const MIDDLE_SHARE: f64 = 5.0 / 16.0;
+
+    /// Way back from `new`, the end of the step, to its middle on the cubic through the last four
+    /// ends of steps: (5 y_{n+1} + 15 y_n - 5 y_{n-1} + y_{n-2})/16 - y_{n+1}.
+    #[inline(always)]
+    pub(super) fn back_to_middle(&self, new: Lanes) -> Lanes {
+        let past = self.last * 4.0 - self.before;
+        (self.now - new) * (1.0 - Self::MIDDLE_SHARE) + past * (1.0 / 16.0)
     }
 
     /// Extrapolation minus the level of the formula, (15 d0 - 9 d1)/11.
@@ -91,7 +103,7 @@ impl Level {
 /// Numbers that one field keeps per band.
 const LEVELS: usize = 4;
 /// Lanes of one row in a restart state.
-const ROW: usize = 4 * LEVELS + 2;
+const ROW: usize = 4 * LEVELS + 2 + SNOW_LEVELS;
 
 /// Prognostic state of four bands: temperatures in degC, enthalpy in J m-2.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -108,6 +120,8 @@ pub(super) struct StateRow {
     /// Ice surface temperature now and one step before.
     pub ice_surface: Lanes,
     pub ice_surface_before: Lanes,
+    /// Snow cover of the land in the last steps.
+    pub snow: SnowLevel,
 }
 
 impl StateRow {
@@ -117,6 +131,7 @@ impl StateRow {
             .into_iter()
             .flat_map(Level::lanes)
             .chain([self.ice_surface, self.ice_surface_before])
+            .chain(self.snow.lanes())
     }
 
     fn lanes_mut(&mut self) -> impl Iterator<Item = &mut Lanes> {
@@ -130,6 +145,7 @@ impl StateRow {
             .into_iter()
             .flat_map(Level::lanes_mut)
             .chain([&mut self.ice_surface, &mut self.ice_surface_before])
+            .chain(self.snow.lanes_mut())
     }
 }
 
@@ -158,6 +174,7 @@ impl State {
                     sub: Level::new(water),
                     ice_surface: freezing,
                     ice_surface_before: freezing,
+                    snow: SnowLevel::none(),
                 }
             });
         Self {

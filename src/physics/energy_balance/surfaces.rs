@@ -5,8 +5,9 @@
 //! tridiagonal system for the air remains:
 //!   land   dT_l = (R_l + F_a dT_a)/(C_l/gamma + F_s + B_s - S_l'),
 //!   ocean  dE   = (R_o - X_a dT_a)/(1/gamma + X_E - S_E + lambda'/C_w),
-//! R being the residual of the equation at y*. The slope of the snow albedo is kept (implicit):
-//! extrapolating it doubles the largest error, which sits on melting land.
+//! R being the residual of the equation at y*. The slope of the snow albedo is kept (implicit), in
+//! the land's sunlight and in the air's: extrapolating it doubles the largest error, which sits on
+//! melting land. The snow itself is taken at a first guess of the new land temperature (`snow`).
 //!
 //! Sea ice by enthalpy (Wagner & Eisenman 2015) with a zero-layer surface temperature (Semtner
 //! 1976): the branch follows the sign of E*, and E may cross zero freely. Ice surface
@@ -14,6 +15,7 @@
 //! melts. Fluxes in W m-2 per area of the surface they belong to, positive upward out of it.
 
 use super::coefficients::{BandRow, Coefficients, LEAST_ICE_M, LEAST_NEWTON_SHARE};
+use super::snow::{self, Balance};
 use super::state::{State, StateRow};
 use super::work::{Work, WorkRow};
 use crate::numerics::lanes::{Lanes, WIDTH};
@@ -100,9 +102,10 @@ pub(super) fn evaluate(
         w.air_humidity = above.humidity.humidity;
         w.air_humidity_slope = above.humidity.slope;
         w.air_lead = s.air.lead();
-        let land = land(c, b, s, w, &above);
+        let started = land(c, b, s, w, &above);
         let ocean = ocean(c, b, s, w, &above);
-        w.air_absorbed = above.insolation * (b.land * land + b.ocean * ocean) * c.air_share;
+        let land = light_of_land(c, s, w, &above, &started);
+        w.air_absorbed = b.land * land + b.ocean * (above.insolation * ocean * c.air_share);
         *water = w.water_temperature.0;
     }
 }
@@ -113,20 +116,10 @@ fn emission(c: &Coefficients, above: &Above, temperature: Lanes) -> Lanes {
     temperature * c.surface_emission_slope + (c.surface_emission_offset - above.greenhouse)
 }
 
-/// Land of one row; returns its absorptance.
+/// Land of one row up to the snow.
 #[inline(always)]
-fn land(c: &Coefficients, b: &BandRow, s: &StateRow, w: &mut WorkRow, above: &Above) -> Lanes {
-    let one = Lanes::splat(1.0);
+fn land(c: &Coefficients, b: &BandRow, s: &StateRow, w: &mut WorkRow, above: &Above) -> Balance {
     let temperature = s.land.extrapolated();
-    let warmth = (temperature - c.snow_temperature) * c.snow_steepness;
-    let snow = one / (warmth.exp() + 1.0);
-    let bare = above.water_albedo + c.land_excess;
-    let brightening = (b.snow_albedo - bare) * (one - b.sheet);
-    let albedo = bare * (one - b.sheet) + brightening * snow + b.sheet * c.sheet_albedo;
-    let absorptance = one - albedo;
-    let absorbed = above.light * absorptance;
-    let absorbed_slope = above.light * brightening * snow * (one - snow) * c.snow_steepness;
-
     let f = bulk(
         c,
         temperature,
@@ -136,20 +129,59 @@ fn land(c: &Coefficients, b: &BandRow, s: &StateRow, w: &mut WorkRow, above: &Ab
     );
     let emitted = emission(c, above, temperature);
     let storage = c.land_capacity / c.gamma_s;
-    let newton = f.slope + (storage + c.surface_emission_slope) - absorbed_slope;
-    let least = Lanes::splat(storage * LEAST_NEWTON_SHARE);
-    w.strained = newton.at_least(least).select(Lanes::splat(0.0), one);
-    let newton = newton.max(least);
-    w.land_residual = absorbed - f.flux - emitted - s.land.lead() * storage;
-    w.land_per_newton = one / newton;
     w.land_flux = f.flux;
     w.land_flux_slope = f.slope;
     w.land_flux_air = f.slope_air;
     w.land_emission = emitted;
+    let (bare, brightening) = snow::ground(c, b, above.water_albedo);
+    let balance = Balance {
+        bare,
+        brightening,
+        light: above.light,
+        given: f.flux + emitted + s.land.lead() * storage,
+        stiffness: f.slope + (storage + c.surface_emission_slope),
+        least: Lanes::splat(storage * LEAST_NEWTON_SHARE),
+    };
+    w.land_guess = s.snow.guess(c, &s.land, temperature, &balance);
+    balance
+}
+
+/// Snow and sunlight of the land of one row; returns the sunlight that the air above it absorbs.
+///
+/// Snow is taken at a first guess of the new temperature, the step the land would take under the
+/// extrapolated air: melting snow changes too much within a step for the extrapolation. Called
+/// after the ocean, whose arithmetic fills the wait for the guess.
+#[inline(always)]
+fn light_of_land(
+    c: &Coefficients,
+    s: &StateRow,
+    w: &mut WorkRow,
+    above: &Above,
+    balance: &Balance,
+) -> Lanes {
+    let (zero, one) = (Lanes::splat(0.0), Lanes::splat(1.0));
+    let guess = w.land_guess;
+    let snow = s.snow.step(c, &s.land, s.land.extrapolated() + guess);
+    let dimmed = above.light * balance.brightening;
+    let slope = -(dimmed * snow.slope);
+    let absorbed = above.light * balance.bare - dimmed * snow.cover - slope * guess;
+    // All that the column absorbs over the step, less what the land takes.
+    let dimmed = above.insolation * balance.brightening;
+    let all_slope = -(dimmed * snow.summed_slope);
+    let all = above.insolation * balance.bare - dimmed * snow.summed - all_slope * guess;
+    let newton = balance.stiffness - slope;
+    let limited = newton.at_least(balance.least).select(zero, one);
+    w.strained = w.strained.max(limited);
+    w.land_residual = absorbed - balance.given;
+    w.land_per_newton = one / newton.max(balance.least);
     w.land_absorbed = absorbed;
-    w.land_absorbed_slope = absorbed_slope;
-    w.snow = snow;
-    absorptance
+    w.land_absorbed_slope = slope;
+    w.air_absorbed_land = all_slope - slope;
+    w.snow = snow.cover;
+    w.snow_slope = snow.slope;
+    w.snow_mean = snow.mean;
+    w.snow_mean_slope = snow.mean_slope;
+    all - absorbed
 }
 
 /// What the ice of a row contributes.
@@ -259,6 +291,6 @@ fn close_ocean(c: &Coefficients, s: &StateRow, w: &mut WorkRow) {
     let limited = newton
         .at_least(least)
         .select(Lanes::splat(0.0), Lanes::splat(1.0));
-    w.strained = w.strained.max(limited);
+    w.strained = limited;
     w.ocean_per_newton = Lanes::splat(1.0) / newton.max(least);
 }

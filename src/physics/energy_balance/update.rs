@@ -14,6 +14,8 @@ use crate::units::{SEA_ICE_LATENT_HEAT_J_M3, SEA_WATER_FREEZING_C};
 /// Fluxes of one row at the new time, W m-2.
 struct Settled {
     to_air: Lanes,
+    /// Sunlight the air absorbs beyond that at the extrapolated state.
+    air_absorbed: Lanes,
     emitted: Lanes,
 }
 
@@ -49,7 +51,8 @@ pub(super) fn advance(
         let ocean = settle_ocean(c, b, s, row, m, step, brought);
         let air = row.air + step;
         let air_emission = b.air_emission_offset + air * c.air_emission_slope - greenhouse;
-        let input = row.air_absorbed + b.land * land.to_air + b.ocean * ocean.to_air - air_emission;
+        let absorbed = row.air_absorbed + b.land * land.air_absorbed;
+        let input = absorbed + b.land * land.to_air + b.ocean * ocean.to_air - air_emission;
         let increment = if c.massless_air() {
             air - s.air.now
         } else {
@@ -62,7 +65,7 @@ pub(super) fn advance(
         m.set(Field::Air, air);
         m.set(Field::Insolation, Lanes::load(light, 0));
         m.air_input += input;
-        m.absorbed_air.add(row.air_absorbed);
+        m.absorbed_air.add(absorbed);
         m.emitted
             .add(air_emission + b.land * land.emitted + b.ocean * ocean.emitted);
     }
@@ -86,7 +89,16 @@ fn settle_land(
     m.set(Field::Land, s.land.push(increment));
     m.set(Field::Snow, w.snow);
     m.absorbed_land.add(b.land * absorbed);
-    Settled { to_air, emitted }
+    let beyond = step - w.land_guess;
+    s.snow.push(
+        w.snow + w.snow_slope * beyond,
+        w.snow_mean + w.snow_mean_slope * beyond,
+    );
+    Settled {
+        to_air,
+        air_absorbed: w.air_absorbed_land * step,
+        emitted,
+    }
 }
 
 #[inline(always)]
@@ -131,5 +143,9 @@ fn settle_ocean(
         Field::IceThickness,
         (-enthalpy).max(zero) * (1.0 / SEA_ICE_LATENT_HEAT_J_M3),
     );
-    Settled { to_air, emitted }
+    Settled {
+        to_air,
+        air_absorbed: zero,
+        emitted,
+    }
 }

@@ -23,12 +23,16 @@ work_row! {
     air, air_humidity, air_humidity_slope,
     /// Extrapolation of the air minus the level of the formula, and sunlight it absorbs.
     air_lead, air_absorbed,
+    /// Slope of that sunlight with the land's temperature, per area of land.
+    air_absorbed_land,
     /// Land: flux to air F*, slopes F_s and F_a, emission to space, absorbed S* and S'.
     land_flux, land_flux_slope, land_flux_air, land_emission, land_absorbed, land_absorbed_slope,
     /// Land: residual and one over the Newton slope.
     land_residual, land_per_newton,
-    /// Snow cover of the land.
-    snow,
+    /// First guess of the land's step from its extrapolation, about which its snow is linear.
+    land_guess,
+    /// Snow cover of the land at the end of the step, its mean over the step, and slopes.
+    snow, snow_slope, snow_mean, snow_mean_slope,
     /// Ocean: flux to air X*, dX/dE, dX/dT_a.
     ocean_flux, ocean_flux_enthalpy, ocean_flux_air,
     /// Ocean: emission to space and slopes.
