@@ -151,7 +151,7 @@ fn a_signal_closes_the_segment_and_names_the_command_that_goes_on() {
         let words = ["run", "long.toml", "--out", "killed.nc"];
         let outcome = stopped_by(&folder, &words, signal);
         assert_eq!(outcome.code, Some(code), "{outcome:?}");
-        outcome.says(&[
+        outcome.tells(&[
             "stopped: ",
             " of 200 records",
             "kyr before 1950",

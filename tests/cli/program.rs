@@ -29,7 +29,13 @@ impl Outcome {
     /// Asserts that it failed of itself, with nothing but a message that holds all fragments.
     pub(crate) fn says(&self, fragments: &[&str]) {
         let failed = matches!(self.code, Some(1 | 2));
-        assert!(failed && self.out.is_empty(), "{self:?}");
+        assert!(failed, "{self:?}");
+        self.tells(fragments);
+    }
+
+    /// Asserts that it printed nothing but a message that holds all fragments.
+    pub(crate) fn tells(&self, fragments: &[&str]) {
+        assert!(self.out.is_empty(), "{self:?}");
         for fragment in fragments {
             assert!(
                 self.err.contains(fragment),
