@@ -2,6 +2,7 @@
 
 mod attendant;
 mod bar;
+mod describe;
 mod dry_run;
 mod figures;
 mod run;
@@ -29,6 +30,8 @@ struct Arguments {
 enum Command {
     /// Run a transient climate into a NetCDF-4 file
     Run(run::RunArguments),
+    /// Tell what a run file is: what made it, how it differs from the reference, its sizes
+    Describe(describe::DescribeArguments),
 }
 
 /// Parses the arguments, does what they ask, prints an error if there is one.
@@ -38,6 +41,7 @@ pub fn main() -> ExitCode {
         .collect();
     let outcome = match Arguments::parse().command {
         Command::Run(arguments) => run::run(&arguments, &words),
+        Command::Describe(arguments) => describe::run(&arguments),
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,
@@ -68,6 +72,8 @@ pub fn main() -> ExitCode {
 enum CliError {
     #[error(transparent)]
     Single(#[from] crate::experiment::single::SingleError),
+    #[error(transparent)]
+    Describe(#[from] crate::experiment::describe::DescribeError),
     #[error(transparent)]
     Output(#[from] crate::output::OutputError),
     #[error("stopped: {kept}")]
