@@ -145,7 +145,9 @@ fn a_segment_says_which_records_it_holds() {
     let experiment = reference::experiment(&EDITS);
     let stopped = single::run(&experiment, &destination, &words, &mut Until(134.0));
     assert!(matches!(stopped, Ok(Outcome::Stopped(_))), "{stopped:?}");
-    let told = describe(&folder.path("part.nc.seg0000.nc")).expect("a description");
+    let segments = ["part.nc.seg0000.nc", "part.nc.seg0001.nc", "short.toml"];
+    assert_eq!(folder.files(), segments);
+    let told = describe(&folder.path(segments[0])).expect("a description");
     assert_eq!(told.span.part, Part::Segment { first: 1, of: 70 });
     let outcome = folder.orbicline(&["describe", "part.nc.seg0001.nc"]);
     assert!(outcome.ok, "{outcome:?}");
