@@ -29,10 +29,8 @@ build: setup
 test: setup
 	$(cargo) test --locked
 
-# The program of the tests, so that it need not be built again.
-readers: setup
-	$(cargo) build --locked
-	@sh scripts/readers.sh $(target)/debug/orbicline $(RENEW)
+readers: build
+	@sh scripts/readers.sh $(target)/release/orbicline $(RENEW)
 
 bench: setup
 	$(cargo) bench --locked

@@ -22,7 +22,6 @@ if ! cmp -s "$wanted" "$packages/installed.txt"; then
 fi
 
 # No byte code beside the sources; the CF checker lies beside that Python.
-PATH="$PWD/$packages/bin:$PATH"
-case $packages in /*) PATH="$packages/bin:$PATH" ;; esac
-export PATH PYTHONDONTWRITEBYTECODE=1
-exec "$packages/bin/python" tests/readers/check_readers.py "$@"
+packages=$(cd "$packages" && pwd)
+export PATH="$packages/bin:$PATH" PYTHONDONTWRITEBYTECODE=1
+exec python tests/readers/check_readers.py "$@"

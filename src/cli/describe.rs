@@ -140,7 +140,12 @@ impl Page {
             &format!("{count} from the reference configuration of this program:"),
         );
         for d in differences {
-            let text = format!("{}: {} -> {}", d.key, value(&d.first), value(&d.second));
+            let text = format!(
+                "{}: {} -> {}",
+                d.key,
+                value(d.first.as_deref()),
+                value(d.second.as_deref())
+            );
             self.paragraph(2, 6, &text);
         }
     }
@@ -258,13 +263,13 @@ impl Page {
 }
 
 /// The value of a key; long lists are cut.
-fn value(value: &Option<String>) -> String {
+fn value(value: Option<&str>) -> String {
     let Some(text) = value else {
         return "(not there)".to_owned();
     };
     let length = text.chars().count();
     if length <= LONGEST_VALUE {
-        return text.clone();
+        return text.to_owned();
     }
     let start: String = text.chars().take(LONGEST_VALUE).collect();
     format!("{start} ... ({length} characters)")

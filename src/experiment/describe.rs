@@ -7,6 +7,7 @@
 mod configuration;
 
 use super::resume;
+use crate::config::Identity;
 use crate::config::difference::{Difference, differences};
 use crate::config::provenance::{COMMIT, VERSION};
 use crate::output::reader::{RunFile, StoredVariable};
@@ -185,7 +186,6 @@ pub fn describe(path: &Path) -> Result<Description, DescribeError> {
     let mut differences =
         differences(REFERENCE, &identity.configuration).map_err(|e| not_toml(e.message()))?;
     differences.retain(|d| d.key != "title");
-    let sha256 = identity.sha256();
     Ok(Description {
         path: path.to_owned(),
         title: file.global("title")?,
@@ -193,18 +193,7 @@ pub fn describe(path: &Path) -> Result<Description, DescribeError> {
         slow_years: file.global("slow_years_per_seasonal_year")?,
         grid: ["grid.bands", "grid.steps_per_year"].map(|key| configuration.source(key)),
         components: configuration.keys("physics"),
-        origin: Origin {
-            commands: lines(&file.global("history")?),
-            sha256,
-            stored_sha256: file.global("configuration_sha256")?,
-            inputs: lines(&file.global("input_sha256")?)
-                .iter()
-                .filter_map(|line| line.split_once("  "))
-                .map(|(hash, path)| (hash.to_owned(), path.to_owned()))
-                .collect(),
-            version: identity.version,
-            commit: identity.commit,
-        },
+        origin: origin(&file, identity)?,
         differences,
         forcing: forcing(&file, &configuration)?,
         heat: heat(&file)?,
@@ -215,6 +204,21 @@ pub fn describe(path: &Path) -> Result<Description, DescribeError> {
             .collect(),
         file_bytes: file.size_bytes(),
         variables,
+    })
+}
+
+fn origin(file: &RunFile, identity: Identity) -> OutputResult<Origin> {
+    let inputs = lines(&file.global("input_sha256")?);
+    let inputs = inputs.iter().filter_map(|line| line.split_once("  "));
+    Ok(Origin {
+        commands: lines(&file.global("history")?),
+        sha256: identity.sha256(),
+        stored_sha256: file.global("configuration_sha256")?,
+        inputs: inputs
+            .map(|(hash, path)| (hash.to_owned(), path.to_owned()))
+            .collect(),
+        version: identity.version,
+        commit: identity.commit,
     })
 }
 

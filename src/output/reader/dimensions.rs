@@ -47,7 +47,7 @@ pub(super) fn of_scales(file: &File, datasets: &[String]) -> hdf5::Result<Axes> 
             continue;
         };
         for entry in entries {
-            let user = dataset_name(file, &entry.dataset)?;
+            let user = dataset_name(file, entry.dataset)?;
             let axis = usize::try_from(entry.dimension).map_err(|e| e.to_string())?;
             axes.entry(user).or_default().insert(axis, name.clone());
         }
@@ -61,14 +61,14 @@ fn own_list(file: &File, dataset: &Dataset) -> hdf5::Result<Option<Vec<String>>>
     let Some(list) = list else { return Ok(None) };
     let list = list.read_raw::<VarLenArray<ObjectReference1>>()?;
     let name = |axis: &VarLenArray<ObjectReference1>| {
-        let reference = axis.first().ok_or("an axis without dimension")?;
+        let reference = *axis.first().ok_or("an axis without dimension")?;
         dataset_name(file, reference)
     };
     list.iter().map(name).collect::<hdf5::Result<_>>().map(Some)
 }
 
-fn dataset_name(file: &File, reference: &ObjectReference1) -> hdf5::Result<String> {
-    match file.dereference(reference)? {
+fn dataset_name(file: &File, reference: ObjectReference1) -> hdf5::Result<String> {
+    match file.dereference(&reference)? {
         ReferencedObject::Dataset(dataset) => Ok(dataset.name().trim_start_matches('/').to_owned()),
         _ => Err("a reference that leads to no dataset".into()),
     }
