@@ -182,7 +182,7 @@ fn steps_too_long_for_a_cold_planet_are_refused_and_not_believed() {
     let folder = Folder::new();
     let edits = [
         "co2.co2_ppm=20",
-        "grid.steps_per_year=32",
+        "grid.steps_per_year=24",
         "time.spin_up.seasonal_yr=60",
     ];
     let mut words = vec!["short.toml"];

@@ -2,6 +2,7 @@
 
 mod attendant;
 mod bar;
+mod describe;
 mod dry_run;
 mod figures;
 mod orbit;
@@ -39,6 +40,8 @@ struct Arguments {
 enum Command {
     /// Run a transient climate into a NetCDF-4 file
     Run(run::RunArguments),
+    /// Tell what a run file is: what made it, how it differs from the reference, its sizes
+    Describe(describe::DescribeArguments),
     /// Compute the orbit from the motion of the planets into a table
     Orbit(orbit::OrbitArguments),
 }
@@ -50,6 +53,7 @@ pub fn main() -> ExitCode {
         .collect();
     let outcome = match Arguments::parse().command {
         Command::Run(arguments) => run::run(&arguments, &words),
+        Command::Describe(arguments) => describe::run(&arguments),
         Command::Orbit(arguments) => orbit::run(&arguments),
     };
     match outcome {
@@ -81,6 +85,8 @@ pub fn main() -> ExitCode {
 enum CliError {
     #[error(transparent)]
     Single(#[from] crate::experiment::single::SingleError),
+    #[error(transparent)]
+    Describe(#[from] crate::experiment::describe::DescribeError),
     #[error(transparent)]
     Orbit(#[from] crate::experiment::orbit::OrbitCommandError),
     #[error(transparent)]

@@ -2,6 +2,7 @@
 
 pub mod background;
 mod contents;
+pub mod describe;
 pub mod estimate;
 pub mod follow;
 pub mod orbit;

@@ -129,6 +129,14 @@ pub enum OutputError {
         /// What was asked for.
         attribute: String,
     },
+    /// The file is none that this program writes, or it is damaged.
+    #[error("{path} is no readable run file: {reason}")]
+    NotARun {
+        /// The file.
+        path: PathBuf,
+        /// Why, and what to do if anything.
+        reason: String,
+    },
     /// A variable has another shape than the caller needs.
     #[error("{path}: `{variable}` has shape {shape:?}, {needed} is needed")]
     Shape {

@@ -23,6 +23,7 @@ use hdf5::{Dataset, Datatype, Extents, File, Location, SimpleExtents};
 use super::error::{OutputError, Result, hdf5_at};
 use storage::{characters, slab};
 
+pub(crate) use scales::ListEntry;
 pub(crate) use text::read_text;
 
 pub use definition::{Definition, Kind, Length, Missing, Values, VariableId};
