@@ -8,6 +8,7 @@ mod figures;
 mod orbit;
 mod run;
 mod signals;
+mod steady;
 
 use clap::{Parser, Subcommand};
 use std::io::Write;
@@ -40,6 +41,8 @@ struct Arguments {
 enum Command {
     /// Run a transient climate into a NetCDF-4 file
     Run(run::RunArguments),
+    /// Find the repeating seasonal cycle under held forcing
+    Steady(steady::SteadyArguments),
     /// Tell what a run file is: what made it, how it differs from the reference, its sizes
     Describe(describe::DescribeArguments),
     /// Compute the orbit from the motion of the planets into a table
@@ -53,6 +56,7 @@ pub fn main() -> ExitCode {
         .collect();
     let outcome = match Arguments::parse().command {
         Command::Run(arguments) => run::run(&arguments, &words),
+        Command::Steady(arguments) => steady::run(&arguments, &words),
         Command::Describe(arguments) => describe::run(&arguments),
         Command::Orbit(arguments) => orbit::run(&arguments),
     };
@@ -85,6 +89,8 @@ pub fn main() -> ExitCode {
 enum CliError {
     #[error(transparent)]
     Single(#[from] crate::experiment::single::SingleError),
+    #[error(transparent)]
+    Steady(#[from] crate::experiment::steady::SteadyError),
     #[error(transparent)]
     Describe(#[from] crate::experiment::describe::DescribeError),
     #[error(transparent)]

@@ -8,4 +8,5 @@ pub mod follow;
 pub mod orbit;
 pub mod resume;
 pub mod single;
+pub mod steady;
 pub mod summary;
