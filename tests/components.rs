@@ -94,7 +94,7 @@ fn every_component_of_the_list_is_there() {
 fn conserves_every_component_keeps_books_shapes_metadata_and_state() {
     for edits in [
         &[][..],
-        &["grid.bands=72", "calendar.kind=fixed_angle"],
+        &["grid.bands=72", "calendar.months=fixed_angle"],
         &["physics.ocean_column.evolution=frozen"],
     ] {
         let experiment = reference::experiment(edits);

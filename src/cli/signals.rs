@@ -1,9 +1,9 @@
-//! Ctrl-C and SIGTERM: the first asks a run to stop in a way that it can go on; a second ends the
+//! Ctrl-C, SIGTERM and a closed terminal (SIGHUP): the first asks a run to stop in a way that it can go on; a second ends the
 //! program at once, as without a handler.
 //!
 //! Exit status after a stop: 128 plus the number of the signal, as shells count (POSIX, 2.8.2).
 
-use signal_hook::consts::{SIGINT, SIGTERM, SIGXFSZ};
+use signal_hook::consts::{SIGHUP, SIGINT, SIGTERM, SIGXFSZ};
 use signal_hook::flag;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, AtomicUsize, Ordering};
@@ -22,7 +22,7 @@ impl Signals {
     pub(super) fn listen() -> Result<Self, std::io::Error> {
         let number = Arc::new(AtomicUsize::new(0));
         let second = Arc::new(AtomicBool::new(false));
-        for (signal, value) in [(SIGINT, 2), (SIGTERM, 15)] {
+        for (signal, value) in [(SIGHUP, 1), (SIGINT, 2), (SIGTERM, 15)] {
             // In this order: the first signal arms what the second one triggers.
             flag::register_conditional_default(signal, Arc::clone(&second))?;
             flag::register(signal, Arc::clone(&second))?;

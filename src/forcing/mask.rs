@@ -106,8 +106,8 @@ impl MaskSpec {
             let limit = "must lie between latitude.from_deg and 90 degrees north";
             let after = inside(r.to_deg) && (r.to_deg > r.from_deg || !inside(r.from_deg));
             value("latitude.to_deg", r.to_deg, after, limit);
-            let limit = "must lie between 0 and 90 degrees";
-            let usable = (0.0..=90.0).contains(&r.edge_deg);
+            let limit = "must lie between 0 and the width of the range, or the mask never opens";
+            let usable = (0.0..=r.to_deg - r.from_deg).contains(&r.edge_deg);
             value("latitude.edge_deg", r.edge_deg, usable, limit);
         }
         if let Some(r) = self.sun_longitude {
@@ -120,8 +120,10 @@ impl MaskSpec {
                 limit,
             );
             value("sun_longitude.to_deg", r.to_deg, inside(r.to_deg), limit);
-            let limit = "must lie between 0 and 180 degrees";
-            let usable = (0.0..=180.0).contains(&r.edge_deg);
+            let limit = "must lie between 0 and the width of the range, or the mask never opens";
+            let width = (r.to_deg - r.from_deg).rem_euclid(360.0);
+            let width = if width > 0.0 { width } else { 360.0 };
+            let usable = (0.0..=width).contains(&r.edge_deg);
             value("sun_longitude.edge_deg", r.edge_deg, usable, limit);
         }
         if self.latitude.is_none() && self.sun_longitude.is_none() {
@@ -168,6 +170,11 @@ impl Mask {
     /// When its source does not reach there.
     pub fn orbit_at(&self, age_kyr: f64) -> Result<Elements, OrbitError> {
         self.orbit.at(age_kyr)
+    }
+
+    /// Weight of each latitude band, before the season's.
+    pub fn latitude_weight(&self) -> &[f64] {
+        &self.latitude
     }
 
     /// Global annual mean of what the mask added to the table it was last applied to, W m-2.
@@ -362,6 +369,8 @@ mod tests {
              sun_longitude = { from_deg = -5, to_deg = 400, edge_deg = 5 }",
         );
         assert_eq!(wrong.check().unwrap_err().len(), 4);
+        let narrow = "latitude = { from_deg = 45, to_deg = 90, edge_deg = 60 }";
+        assert_eq!(spec(narrow).check().unwrap_err().len(), 1);
         assert_eq!(spec("").check().unwrap_err(), [MaskError::Everywhere]);
     }
 }

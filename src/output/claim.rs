@@ -43,6 +43,14 @@ fn is_segment(leftover: &Path) -> bool {
     leftover.extension().is_some_and(|e| e == "nc")
 }
 
+/// A segment, with advice when it is damaged.
+pub(super) fn opened(segment: &Path) -> Result<RunFile> {
+    RunFile::open(segment).map_err(|source| OutputError::DamagedSegment {
+        path: segment.to_owned(),
+        source: Box::new(source),
+    })
+}
+
 /// Looks at an output without taking it.
 pub fn survey(path: &Path) -> Found {
     // A folder that cannot be listed holds nothing that could go on.
@@ -102,7 +110,7 @@ impl Claim {
     /// If a segment is missing or the last one cannot be read.
     pub fn last_segment(&self) -> Result<Option<RunFile>> {
         let last = self.segments()?.pop();
-        last.map(|path| RunFile::open(&path)).transpose()
+        last.map(|path| opened(&path)).transpose()
     }
 
     /// Deletes all that unfinished runs of this output left behind; the output stays.

@@ -37,6 +37,17 @@ pub enum OutputError {
         /// The segment.
         path: PathBuf,
     },
+    /// The last segment of an unfinished run cannot be read.
+    #[error(
+        "{path} is damaged ({source}): delete it and say --resume again; the run then goes on from \
+         the segment before"
+    )]
+    DamagedSegment {
+        /// The segment.
+        path: PathBuf,
+        /// What is wrong.
+        source: Box<OutputError>,
+    },
     /// The output path cannot name a file.
     #[error("{path} cannot be an output file: {reason}")]
     BadPath {

@@ -98,7 +98,10 @@ impl NetCdfFile {
     fn make(path: &Path, place: Place) -> Result<Self> {
         let file = File::with_options()
             .with_fapl(|p| {
-                let p = p.libver_bounds(LibraryVersion::V18, LibraryVersion::V18);
+                // Chunks are written whole and once: a cache of them would only hold memory.
+                let p = p
+                    .libver_bounds(LibraryVersion::V18, LibraryVersion::V18)
+                    .chunk_cache(1, 0, 1.0);
                 match place {
                     Place::Disk => p,
                     Place::Memory => p.core_options(MEMORY_STEP, false),

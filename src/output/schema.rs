@@ -54,8 +54,8 @@ pub struct FixedField {
     pub units: &'static str,
     /// What it is, in words.
     pub long_name: &'static str,
-    /// CF standard name.
-    pub standard_name: &'static str,
+    /// CF standard name, where the table has one.
+    pub standard_name: Option<&'static str>,
     /// One value for each band.
     pub values: Vec<f64>,
 }

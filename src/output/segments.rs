@@ -94,7 +94,7 @@ pub(crate) fn seal(temporary: &Path, path: &Path) -> Result<()> {
     handle.sync_all().map_err(io_at(folder, "sync"))
 }
 
-/// Makes the folder and makes sure that files can be created in it, before hours of computing.
+/// Makes the folder, if the one above is there, and makes sure that files can be created in it, before hours of computing.
 pub(crate) fn prepare(output: &Path) -> Result<()> {
     let reason = if output.file_name().is_none() {
         Some("it ends without a file name; add one")
@@ -112,8 +112,11 @@ pub(crate) fn prepare(output: &Path) -> Result<()> {
         });
     }
     let folder = folder(output);
-    fs::create_dir_all(folder).map_err(io_at(folder, "create the folder"))?;
-    Ok(())
+    // One folder, such as `out`; a longer path that is not there is a mistyped one.
+    match fs::create_dir(folder) {
+        Err(error) if !folder.is_dir() => Err(io_at(folder, "create the folder")(error)),
+        _ => Ok(()),
+    }
 }
 
 /// Holds an output for one run; see [`super::claim`].
