@@ -141,7 +141,7 @@ fn names(folder: &Path) -> Vec<String> {
 #[test]
 fn records_come_back_with_their_metadata() {
     let folder = tempfile::tempdir().unwrap();
-    let path = folder.path().join("new/deep/run.nc");
+    let path = folder.path().join("new/run.nc");
     write(&path, 150, Overwrite::Refuse).unwrap();
     assert_eq!(names(path.parent().unwrap()), ["run.nc"]);
     let run = RunFile::open(&path).unwrap();

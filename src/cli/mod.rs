@@ -54,11 +54,10 @@ pub fn main() -> ExitCode {
     let words: Vec<String> = std::env::args_os()
         .map(|w| w.to_string_lossy().into_owned())
         .collect();
-    let outcome = match Arguments::parse().command {
-        Command::Run(arguments) => run::run(&arguments, &words),
-        Command::Steady(arguments) => steady::run(&arguments, &words),
-        Command::Describe(arguments) => describe::run(&arguments),
-        Command::Orbit(arguments) => orbit::run(&arguments),
+    let command = Arguments::parse().command;
+    let outcome = match signals::tell_size_limits() {
+        Ok(()) => carry_out(command, &words),
+        Err(error) => Err(error.into()),
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,
@@ -81,6 +80,15 @@ pub fn main() -> ExitCode {
             let _ = writeln!(std::io::stderr(), "error: {error}");
             ExitCode::FAILURE
         }
+    }
+}
+
+fn carry_out(command: Command, words: &[String]) -> Result<(), CliError> {
+    match command {
+        Command::Run(arguments) => run::run(&arguments, words),
+        Command::Steady(arguments) => steady::run(&arguments, words),
+        Command::Describe(arguments) => describe::run(&arguments),
+        Command::Orbit(arguments) => orbit::run(&arguments),
     }
 }
 

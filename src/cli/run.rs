@@ -133,6 +133,8 @@ fn summary(file: &Path) -> Result<(), CliError> {
 fn going_on(words: &[String], replaces: bool) -> String {
     let needed = |w: &&String| *w != "--resume" && (replaces || *w != "--overwrite");
     let mut words: Vec<String> = words.iter().filter(needed).cloned().collect();
-    words.push("--resume".to_owned());
+    // What follows a bare `--` is no option.
+    let end = words.iter().position(|w| w == "--").unwrap_or(words.len());
+    words.insert(end, "--resume".to_owned());
     Provenance::new(&words, &[]).command_line
 }

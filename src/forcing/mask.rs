@@ -15,6 +15,7 @@
 
 use serde::{Deserialize, Serialize};
 
+use crate::numerics::shown::Shown;
 use crate::orbit::elements::Elements;
 use crate::orbit::insolation::{InsolationTable, TableError};
 use crate::orbit::kepler;
@@ -57,7 +58,7 @@ pub enum MaskError {
     #[error("orbit_mask.{0}")]
     Orbit(OrbitError),
     /// A bound is out of range.
-    #[error("orbit_mask.{key} = {value}: {limit}")]
+    #[error("orbit_mask.{key} = {}: {limit}", Shown(*value))]
     Value {
         /// The key.
         key: &'static str,
@@ -126,7 +127,9 @@ impl MaskSpec {
             let usable = (0.0..=width).contains(&r.edge_deg);
             value("sun_longitude.edge_deg", r.edge_deg, usable, limit);
         }
-        if self.latitude.is_none() && self.sun_longitude.is_none() {
+        let whole_year = |r: RangeSpec| r.from_deg <= 0.0 && r.to_deg >= 360.0;
+        let whole_earth = |r: RangeSpec| r.from_deg <= -90.0 && r.to_deg >= 90.0;
+        if self.latitude.is_none_or(whole_earth) && self.sun_longitude.is_none_or(whole_year) {
             wrong.push(MaskError::Everywhere);
         }
         let orbit = match Orbit::build(&self.orbit) {
@@ -350,7 +353,7 @@ mod tests {
         };
         let (summer, winter) = (half(0, 180), half(180, 360));
         let whole = masked(
-            &spec("latitude = { from_deg = -90, to_deg = 90, edge_deg = 5 }"),
+            &spec("latitude = { from_deg = -90, to_deg = 89.999999, edge_deg = 0 }"),
             &run,
         );
         let mut base = InsolationTable::new(&edges(), 360).unwrap();

@@ -14,6 +14,7 @@
 use serde::{Deserialize, Serialize};
 
 use crate::grid::calendar::{CALENDAR_DAYS, Calendar, MONTHS};
+use crate::numerics::shown::Shown;
 use crate::orbit::elements::{Elements, PerihelionLongitude};
 use crate::orbit::kepler;
 
@@ -43,8 +44,9 @@ pub struct CalendarSpec {
 /// An equinox that is no day of the year.
 #[derive(Clone, Copy, Debug, PartialEq, thiserror::Error)]
 #[error(
-    "calendar.equinox_day = {equinox_day}: must lie between 0 and 365 days since 1 January 0 h; \
-     21 March noon is 79.5"
+    "calendar.equinox_day = {}: must lie between 0 and 365 days since 1 January 0 h; 21 March noon \
+     is 79.5",
+    Shown(*equinox_day)
 )]
 pub struct CalendarError {
     /// The value.

@@ -43,14 +43,6 @@ fn is_segment(leftover: &Path) -> bool {
     leftover.extension().is_some_and(|e| e == "nc")
 }
 
-/// A segment, with advice when it is damaged.
-pub(super) fn opened(segment: &Path) -> Result<RunFile> {
-    RunFile::open(segment).map_err(|source| OutputError::DamagedSegment {
-        path: segment.to_owned(),
-        source: Box::new(source),
-    })
-}
-
 /// Looks at an output without taking it.
 pub fn survey(path: &Path) -> Found {
     // A folder that cannot be listed holds nothing that could go on.
@@ -104,13 +96,24 @@ impl Claim {
             .collect()
     }
 
-    /// The last segment of an unfinished run, opened; none if there is no such run.
+    /// Whether there are segments of an unfinished run.
     ///
     /// # Errors
-    /// If a segment is missing or the last one cannot be read.
-    pub fn last_segment(&self) -> Result<Option<RunFile>> {
-        let last = self.segments()?.pop();
-        last.map(|path| opened(&path)).transpose()
+    /// If the folder cannot be read.
+    pub fn holds_segments(&self) -> Result<bool> {
+        let found = segments::leftovers(&self.path)?;
+        Ok(found.iter().any(|file| is_segment(file)))
+    }
+
+    /// Opens a segment.
+    ///
+    /// # Errors
+    /// With advice, if it is damaged.
+    pub fn open_segment(&self, segment: &Path) -> Result<RunFile> {
+        RunFile::open(segment).map_err(|source| OutputError::DamagedSegment {
+            path: segment.to_owned(),
+            source: Box::new(source),
+        })
     }
 
     /// Deletes all that unfinished runs of this output left behind; the output stays.

@@ -30,17 +30,17 @@ pub enum OutputError {
     },
     /// A segment of an unfinished run is gone.
     #[error(
-        "{path} is missing, and the run cannot go on without it: bring it back, or start anew \
-         (--overwrite)"
+        "{path} is missing, and the run cannot go on without it: bring it back; or delete those after \
+         it and say --resume again; or begin anew (--overwrite)"
     )]
     MissingSegment {
         /// The segment.
         path: PathBuf,
     },
-    /// The last segment of an unfinished run cannot be read.
+    /// A segment of an unfinished run cannot be read.
     #[error(
-        "{path} is damaged ({source}): delete it and say --resume again; the run then goes on from \
-         the segment before"
+        "{path} is damaged ({source}): delete it and those after it and say --resume again; the run \
+         then goes on from the segment before"
     )]
     DamagedSegment {
         /// The segment.

@@ -31,6 +31,13 @@ impl Journal {
     /// # Errors
     /// When it cannot be opened.
     pub fn open(&mut self) -> Result<()> {
+        // A pipe of that name would hold the run until somebody reads it.
+        if self.path.symlink_metadata().is_ok_and(|m| !m.is_file()) {
+            return Err(OutputError::BadPath {
+                path: self.path.clone(),
+                reason: "it is not a regular file, so no log is written",
+            });
+        }
         let opened = OpenOptions::new()
             .append(true)
             .create(true)

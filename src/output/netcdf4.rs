@@ -27,6 +27,7 @@ pub(crate) use scales::ListEntry;
 pub(crate) use text::read_text;
 
 pub use definition::{Definition, Kind, Length, Missing, Values, VariableId};
+use definition::{MEMORY_STEP, Place};
 
 mod definition;
 mod scales;
@@ -48,16 +49,6 @@ struct Stored {
     name: String,
     dataset: Dataset,
     kind: Kind,
-}
-
-/// Bytes by which a file in memory grows; its size is known to that.
-const MEMORY_STEP: usize = 4096;
-
-/// Where a file lies.
-#[derive(Clone, Copy, PartialEq, Eq)]
-enum Place {
-    Disk,
-    Memory,
 }
 
 /// A NetCDF-4 file being written.

@@ -12,9 +12,9 @@ use hdf5::{Attribute, Dataset, File, IndexType, IterationOrder};
 use ndarray::ArrayD;
 
 use super::error::{OutputError, Result, hdf5_at};
-use super::layout::{Block, Restart};
+use super::layout::{Block, Restart, state_hash};
 use super::netcdf4::read_text;
-use super::schema::{AGE, AGE_BOUNDS, RESTART, RESTART_PARTS, Schema};
+use super::schema::{AGE, AGE_BOUNDS, RESTART, RESTART_HASH, RESTART_PARTS, Schema};
 use crate::series::TimeSeries;
 
 mod dimensions;
@@ -138,6 +138,13 @@ impl RunFile {
         }
         let all = self.array(RESTART)?.into_raw_vec_and_offset().0;
         let parts = self.attribute(RESTART, RESTART_PARTS)?;
+        if self.attribute(RESTART, RESTART_HASH)? != state_hash(&all) {
+            return Err(OutputError::Layout {
+                path: self.path.clone(),
+                item: RESTART.to_owned(),
+                problem: "its numbers are not those that were written (SHA-256)".to_owned(),
+            });
+        }
         let mut rest = all.as_slice();
         for part in parts.split_whitespace() {
             let split = part.split_once(':').and_then(|(name, length)| {
