@@ -36,8 +36,9 @@ impl Bar {
 
     /// The run begins.
     pub(super) fn begin(&mut self, plan: &Plan) {
-        self.bar.set_length(whole(plan.total_yr()));
+        // The style first: a length alone draws the bar of the library.
         self.bar.set_style(style());
+        self.bar.set_length(whole(plan.total_yr()));
         self.bar.set_message("spinning up");
         self.bar.tick();
     }
