@@ -9,13 +9,14 @@
 
 pub mod berger1978;
 mod berger1978_terms;
+mod course;
 mod idealised;
 pub mod integrated;
 pub mod orbit_table;
 mod spec;
 
+use course::{Course, Element};
 use orbit_table::{OrbitRow, TableFault};
-use spec::{Course, Element};
 pub use spec::{EccentricitySource, ObliquitySource, OrbitSpec, PerihelionSource};
 use thiserror::Error;
 
