@@ -1,6 +1,7 @@
 //! Builds the model that a configuration describes, or tells everything that is wrong with it.
 
-use super::fault::Fault;
+use super::data;
+use super::fault::{Fault, Faults};
 use super::run::{Built, RunSpec};
 use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideSpec};
 use crate::forcing::drive::{Drive, DriveNumbers, Sources};
@@ -13,7 +14,8 @@ use crate::model::clock::{Plan, is_age};
 use crate::orbit::solution::Orbit;
 use crate::physics::exchange::Exchange;
 use crate::physics::{RangeError, Ranges, Setting};
-use crate::tables::{self, Columns};
+use crate::tables::declared::WidestGap;
+use crate::tables::{self, Columns, Layout};
 use std::path::Path;
 
 /// Fewest and most seasonal steps in a year. Below 24 the scheme was never measured; above 5000
@@ -24,32 +26,13 @@ const STEPS_LIMIT: (usize, usize) = (24, 5000);
 /// (measured; 288 are fine).
 const MOST_BANDS: usize = 288;
 
-/// Keeps what worked and collects what did not.
-struct Faults(Vec<Fault>);
-
-impl Faults {
-    fn take<T, E>(&mut self, result: Result<T, E>, fault: impl Fn(E) -> Fault) -> Option<T> {
-        result.map_err(|e| self.0.push(fault(e))).ok()
-    }
-
-    fn take_all<T, E>(
-        &mut self,
-        result: Result<T, Vec<E>>,
-        fault: impl Fn(E) -> Fault,
-    ) -> Option<T> {
-        result
-            .map_err(|all| self.0.extend(all.into_iter().map(fault)))
-            .ok()
-    }
-}
-
 impl RunSpec {
     /// Builds the model; `folder` is where relative paths start.
     pub(super) fn build(&self, folder: &Path) -> Result<Built, Vec<Fault>> {
-        let mut faults = Faults(Vec::new());
+        let mut faults = Faults::default();
         let plan = faults.take_all(Plan::new(&self.time), Fault::Plan);
         faults.take_all(self.check_numbers(), Fault::Range);
-        faults.0.extend(self.check_needs());
+        faults.add(self.check_needs());
         let setting = self.setting(&mut faults);
         let mut exchange = Exchange::new(setting.as_ref().map_or(0, |s| s.surface.bands.len()));
         let drive = self.drive(folder, setting.as_ref(), &mut faults);
@@ -60,22 +43,26 @@ impl RunSpec {
             .as_ref()
             .and_then(|s| faults.take_all(self.physics.build(s, &mut exchange), Fault::Range));
         match (plan, setting, components, drive) {
-            (Some(plan), Some(setting), Some(components), Some(drive)) if faults.0.is_empty() => {
+            (Some(plan), Some(setting), Some(components), Some(drive)) if faults.is_empty() => {
                 Ok(Built {
                     model: Model::new(components, exchange, drive),
                     plan,
                     setting,
                 })
             }
-            _ => Err(faults.0),
+            _ => Err(faults.into_all()),
         }
     }
 
     /// The forcing, when everything about it is right.
     fn drive(&self, folder: &Path, on: Option<&Setting>, faults: &mut Faults) -> Option<Drive> {
-        let orbit = faults.take_all(Orbit::build(&self.orbit), Fault::Orbit);
+        let orbit = data::orbit(&self.orbit, "orbit", folder, faults);
+        let orbit = faults.take_all(Orbit::with_data(&self.orbit, &orbit), Fault::Orbit);
         let mask = self.orbit_mask.as_ref();
-        let inside = mask.and_then(|mask| faults.take_all(mask.check(), Fault::Mask));
+        let inside = mask.and_then(|mask| {
+            let data = data::orbit(&mask.orbit, "orbit_mask.orbit", folder, faults);
+            faults.take_all(mask.check(&data), Fault::Mask)
+        });
         let co2 = self.carbon_dioxide(folder, faults);
         self.check_ages([orbit.as_ref(), inside.as_ref()], co2.as_ref(), faults);
         let months = faults.take(Months::new(self.calendar), Fault::Calendar);
@@ -190,12 +177,24 @@ impl RunSpec {
             }
             CarbonDioxideSpec::Table { path } => {
                 let path = folder.join(path);
-                let read = tables::read_columns(&path, &["age_kyr", "co2_ppm"]);
-                let Columns { values, lines } = faults.take(read, Fault::Table)?;
+                let names = ["age_kyr", "co2_ppm"];
+                let read = tables::read_columns(&path, Layout::Comma, &names);
+                let Columns { values, lines } = faults.take(read, |error| Fault::Table {
+                    table: "co2".to_owned(),
+                    error,
+                })?;
                 let mut values = values.into_iter();
                 let (age, ppm) = (values.next()?, values.next()?);
                 faults.take_all(CarbonDioxide::table(age, ppm), |error| {
                     Fault::in_table(error, &path, &lines)
+                })
+            }
+            CarbonDioxideSpec::DeclaredTable(table) => {
+                let declaration = table.declaration();
+                let series = data::series(&declaration, WidestGap::ANY, "co2", folder, faults)?;
+                let built = CarbonDioxide::table(series.age_kyr, series.values);
+                faults.take_all(built, |error| {
+                    Fault::in_table(error, &series.path, &series.lines)
                 })
             }
         }

@@ -8,16 +8,24 @@
 use super::OrbitError;
 use super::berger1978::LIMIT_KYR;
 use super::idealised::{Sinusoid, rotating_deg};
+use super::nodes::{Nodes, PerihelionNodes};
 use super::orbit_table::{OrbitRow, OrbitTable};
+use std::sync::Arc;
 
 const FINITE: &str = "must be a finite number; correct it";
 const PERIOD: &str = "must be a finite number above 0 kyr; correct the period";
 
 /// The course of one element, whatever the names of its keys.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub(super) enum Course {
-    /// Rows of an integration.
-    Table(&'static OrbitTable),
+    /// Rows of the integration that comes with the program.
+    Integrated(&'static OrbitTable),
+    /// Rows of an integration that the user made.
+    IntegratedTable(Arc<OrbitTable>),
+    /// Values of a user's table.
+    Values(Arc<Nodes<1>>),
+    /// Longitudes of perihelion of a user's table.
+    Longitudes(Arc<PerihelionNodes>),
     /// Series of Berger (1978).
     Berger1978,
     /// The same at all ages.
@@ -88,30 +96,45 @@ pub(super) const PERIHELION_RULES: Rules = Rules {
 
 impl Course {
     /// Value at an age, kyr before 1950, of the element; `None` outside the ages of a table.
-    pub(super) fn at(self, age_kyr: f64, element: Element) -> Option<f64> {
+    pub(super) fn at(&self, age_kyr: f64, element: Element) -> Option<f64> {
         Some(match self {
-            Self::Table(table) => (element.of_row)(&table.at(age_kyr)?),
+            Self::Integrated(table) => (element.of_row)(&table.at(age_kyr)?),
+            Self::IntegratedTable(table) => (element.of_row)(&table.at(age_kyr)?),
+            Self::Values(nodes) => nodes.at(age_kyr)?[0],
+            Self::Longitudes(nodes) => nodes.heliocentric_deg(age_kyr)?,
             Self::Berger1978 => (element.of_series)(age_kyr),
-            Self::Constant(value) => value,
+            Self::Constant(value) => *value,
             Self::Sinusoid(wave) => wave.at(age_kyr),
             Self::Rotation {
                 at_1950_deg,
                 period_kyr,
-            } => rotating_deg(at_1950_deg, period_kyr, age_kyr),
+            } => rotating_deg(*at_1950_deg, *period_kyr, age_kyr),
         })
     }
 
     /// Name of the kind and the ages, kyr before 1950, outside which it says nothing.
-    pub(super) fn limits(self) -> Option<(&'static str, [f64; 2])> {
+    pub(super) fn limits(&self) -> Option<(&'static str, [f64; 2])> {
         match self {
-            Self::Table(table) => Some(("integrated", table.range_kyr())),
+            Self::Integrated(table) => Some(("integrated", table.range_kyr())),
+            Self::IntegratedTable(table) => Some(("integrated_table", table.range_kyr())),
+            Self::Values(nodes) => Some(("table", nodes.range_kyr())),
+            Self::Longitudes(nodes) => Some(("table", nodes.range_kyr())),
             Self::Berger1978 => Some(("berger1978", [LIMIT_KYR, -LIMIT_KYR])),
             Self::Constant(_) | Self::Sinusoid(_) | Self::Rotation { .. } => None,
         }
     }
 
+    /// Whether an age lies at an end of a user's table but for the rounding of its digits.
+    pub(super) fn meets_the_end(&self, age_kyr: f64) -> bool {
+        match self {
+            Self::Values(nodes) => nodes.at(age_kyr).is_some(),
+            Self::Longitudes(nodes) => nodes.heliocentric_deg(age_kyr).is_some(),
+            _ => false,
+        }
+    }
+
     /// Every number out of range.
-    pub(super) fn violations(self, rules: &Rules) -> Vec<OrbitError> {
+    pub(super) fn violations(&self, rules: &Rules) -> Vec<OrbitError> {
         let allowed = rules.allowed;
         let finite = |key, value: f64| (key, value, value.is_finite(), FINITE);
         let period = |value: f64| {
@@ -122,8 +145,13 @@ impl Course {
                 PERIOD,
             )
         };
-        let checks = match self {
-            Self::Table(_) | Self::Berger1978 => Vec::new(),
+        let checks = match *self {
+            // Tables were checked when they were read.
+            Self::Integrated(_)
+            | Self::IntegratedTable(_)
+            | Self::Values(_)
+            | Self::Longitudes(_)
+            | Self::Berger1978 => Vec::new(),
             Self::Constant(value) => vec![(rules.constant, value, allowed(value), rules.limit)],
             Self::Sinusoid(wave) => {
                 let mut checks = vec![

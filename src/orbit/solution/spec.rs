@@ -9,6 +9,9 @@ use serde::{Deserialize, Serialize};
 
 use super::course::{Course, ECCENTRICITY_RULES, OBLIQUITY_RULES, PERIHELION_RULES, Rules};
 use super::idealised::Sinusoid;
+use super::user_table::{
+    self, EccentricityTable, ElementData, ElementSource, ObliquityTable, OrbitData, PerihelionTable,
+};
 use super::{OrbitError, integrated};
 use crate::orbit::elements::PerihelionLongitude;
 
@@ -30,6 +33,13 @@ pub struct OrbitSpec {
 pub enum EccentricitySource {
     /// Integration of the planets' motion, from the table of the program.
     Integrated {},
+    /// A table made by `orbicline orbit --integrate`, with constants of the user's own.
+    IntegratedTable {
+        /// Path of the file, from the folder of the configuration.
+        path: String,
+    },
+    /// A text table of the user's own.
+    Table(EccentricityTable),
     /// Series of Berger (1978).
     Berger1978 {},
     /// The same at all ages.
@@ -56,6 +66,13 @@ pub enum EccentricitySource {
 pub enum ObliquitySource {
     /// Integration of the planets' motion, from the table of the program.
     Integrated {},
+    /// A table made by `orbicline orbit --integrate`, with constants of the user's own.
+    IntegratedTable {
+        /// Path of the file, from the folder of the configuration.
+        path: String,
+    },
+    /// A text table of the user's own.
+    Table(ObliquityTable),
     /// Series of Berger (1978).
     Berger1978 {},
     /// The same at all ages.
@@ -82,6 +99,13 @@ pub enum ObliquitySource {
 pub enum PerihelionSource {
     /// Integration of the planets' motion, from the table of the program.
     Integrated {},
+    /// A table made by `orbicline orbit --integrate`, with constants of the user's own.
+    IntegratedTable {
+        /// Path of the file, from the folder of the configuration.
+        path: String,
+    },
+    /// A text table of the user's own.
+    Table(PerihelionTable),
     /// Series of Berger (1978).
     Berger1978 {},
     /// The same at all ages, by the Earth's heliocentric longitude (102.9 today).
@@ -115,10 +139,21 @@ pub enum PerihelionSource {
 }
 
 impl EccentricitySource {
+    /// The file it comes from.
+    fn file(&self) -> Option<ElementSource<'_>> {
+        match self {
+            Self::IntegratedTable { path } => Some(ElementSource::Integrated(path)),
+            Self::Table(table) => Some(ElementSource::Text(table.declaration())),
+            _ => None,
+        }
+    }
+
     /// The course without the names.
-    pub(super) fn course(&self) -> Result<Course, OrbitError> {
+    pub(super) fn course(&self, data: Option<&ElementData>) -> Result<Course, OrbitError> {
         Ok(match *self {
-            Self::Integrated {} => Course::Table(integrated::table()?),
+            Self::Integrated {} => Course::Integrated(integrated::table()?),
+            Self::IntegratedTable { .. } => user_table::integrated("eccentricity", data)?,
+            Self::Table(_) => EccentricityTable::course(data)?,
             Self::Berger1978 {} => Course::Berger1978,
             Self::Constant { eccentricity } => Course::Constant(eccentricity),
             Self::Sinusoid {
@@ -137,10 +172,21 @@ impl EccentricitySource {
 }
 
 impl ObliquitySource {
+    /// The file it comes from.
+    fn file(&self) -> Option<ElementSource<'_>> {
+        match self {
+            Self::IntegratedTable { path } => Some(ElementSource::Integrated(path)),
+            Self::Table(table) => Some(ElementSource::Text(table.declaration())),
+            _ => None,
+        }
+    }
+
     /// The course without the names, degrees.
-    pub(super) fn course(&self) -> Result<Course, OrbitError> {
+    pub(super) fn course(&self, data: Option<&ElementData>) -> Result<Course, OrbitError> {
         Ok(match *self {
-            Self::Integrated {} => Course::Table(integrated::table()?),
+            Self::Integrated {} => Course::Integrated(integrated::table()?),
+            Self::IntegratedTable { .. } => user_table::integrated("obliquity", data)?,
+            Self::Table(ref table) => table.course(data)?,
             Self::Berger1978 {} => Course::Berger1978,
             Self::Constant { obliquity_deg } => Course::Constant(obliquity_deg),
             Self::Sinusoid {
@@ -159,10 +205,21 @@ impl ObliquitySource {
 }
 
 impl PerihelionSource {
+    /// The file it comes from.
+    fn file(&self) -> Option<ElementSource<'_>> {
+        match self {
+            Self::IntegratedTable { path } => Some(ElementSource::Integrated(path)),
+            Self::Table(table) => Some(ElementSource::Text(table.declaration())),
+            _ => None,
+        }
+    }
+
     /// The course of the heliocentric longitude without the names, degrees.
-    pub(super) fn course(&self) -> Result<Course, OrbitError> {
+    pub(super) fn course(&self, data: Option<&ElementData>) -> Result<Course, OrbitError> {
         Ok(match *self {
-            Self::Integrated {} => Course::Table(integrated::table()?),
+            Self::Integrated {} => Course::Integrated(integrated::table()?),
+            Self::IntegratedTable { .. } => user_table::integrated("perihelion", data)?,
+            Self::Table(ref table) => table.course(data)?,
             Self::Berger1978 {} => Course::Berger1978,
             Self::ConstantHeliocentric { heliocentric_deg } => Course::Constant(heliocentric_deg),
             Self::ConstantSunLongitude { sun_longitude_deg } => Course::Constant(
@@ -217,16 +274,34 @@ impl OrbitSpec {
         }
     }
 
+    /// Names of the elements and the files they come from.
+    pub fn files(&self) -> [(&'static str, Option<ElementSource<'_>>); 3] {
+        [
+            ("eccentricity", self.eccentricity.file()),
+            ("obliquity", self.obliquity.file()),
+            ("perihelion", self.perihelion.file()),
+        ]
+    }
+
     /// The courses of eccentricity, obliquity and perihelion, or every number that is out of range.
-    pub(super) fn courses(&self) -> Result<[Course; 3], Vec<OrbitError>> {
+    pub(super) fn courses(&self, data: &OrbitData) -> Result<[Course; 3], Vec<OrbitError>> {
         let perihelion_rules = Rules {
             constant: self.perihelion.constant_key(),
             ..PERIHELION_RULES
         };
         let courses = [
-            (self.eccentricity.course(), &ECCENTRICITY_RULES),
-            (self.obliquity.course(), &OBLIQUITY_RULES),
-            (self.perihelion.course(), &perihelion_rules),
+            (
+                self.eccentricity.course(data.eccentricity.as_ref()),
+                &ECCENTRICITY_RULES,
+            ),
+            (
+                self.obliquity.course(data.obliquity.as_ref()),
+                &OBLIQUITY_RULES,
+            ),
+            (
+                self.perihelion.course(data.perihelion.as_ref()),
+                &perihelion_rules,
+            ),
         ];
         let mut errors = Vec::new();
         let courses = courses.map(|(course, rules)| match course {
