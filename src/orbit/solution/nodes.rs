@@ -8,6 +8,8 @@
 //! after the mean turning of the table has been taken out, which leaves a slow course. Errors against
 //! the series of Berger (1978) from rows of 1 kyr over 900 kyr: cubic e 1.0e-6, obliquity 2.6e-5
 //! degrees, e sin(perihelion) 2.4e-6; straight lines 3.4e-5, 0.0043 degrees, 2.7e-5.
+//! Where e nearly vanishes (below 0.001) it has a cusp in time, and a column of e loses more: 4e-4 at the
+//! most in the 5.6 million years of the integrated orbit, which is itself read from other columns.
 //! Units: kyr before 1950 CE, degrees.
 //! Source: own choice.
 
