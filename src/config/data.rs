@@ -7,6 +7,7 @@ use super::fault::{Fault, Faults};
 use super::run::RunSpec;
 use super::{ConfigError, InputFile};
 use crate::forcing::carbon_dioxide::CarbonDioxideSpec;
+use crate::forcing::land_ice::LandIceSpec;
 use crate::orbit::solution::orbit_table::OrbitTable;
 use crate::orbit::solution::{ElementData, ElementSource, OrbitData, OrbitSpec, WIDEST_GAP};
 use crate::physics::RangeError;
@@ -93,6 +94,9 @@ impl RunSpec {
             CarbonDioxideSpec::Table { path } => paths.push(path.as_str()),
             CarbonDioxideSpec::DeclaredTable(table) => paths.push(&table.path),
             CarbonDioxideSpec::Constant { .. } | CarbonDioxideSpec::Linear { .. } => {}
+        }
+        if let LandIceSpec::Table(table) = &self.land_ice {
+            paths.push(&table.path);
         }
         let inside = self.orbit_mask.as_ref().map(|mask| &mask.orbit);
         for orbit in [Some(&self.orbit), inside].into_iter().flatten() {

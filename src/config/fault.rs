@@ -2,6 +2,7 @@
 
 use super::Place;
 use crate::forcing::carbon_dioxide::CarbonDioxideError;
+use crate::forcing::land_ice::LandIceError;
 use crate::forcing::mask::MaskError;
 use crate::forcing::months::CalendarError;
 use crate::model::clock::PlanError;
@@ -51,6 +52,17 @@ pub enum Fault {
         key: &'static str,
         /// What is given.
         error: CarbonDioxideError,
+    },
+    /// Land ice.
+    #[error(transparent)]
+    LandIce(LandIceError),
+    /// An age that the table of land ice does not reach.
+    #[error("{error}")]
+    LandIceAge {
+        /// The key of the age.
+        key: &'static str,
+        /// What is given.
+        error: LandIceError,
     },
     /// A row of the table of carbon dioxide.
     #[error("co2.path: {}:{line}: {error}", path.display())]
@@ -117,6 +129,7 @@ impl Fault {
                 .map(|orbit| format!("{orbit}.{element}.path"))
                 .to_vec(),
             Self::CarbonDioxideAge { .. } => vec!["co2.path".to_owned()],
+            Self::LandIceAge { .. } => vec!["land_ice.path".to_owned()],
             _ => Vec::new(),
         }
     }
@@ -129,6 +142,7 @@ impl Fault {
             Self::Plan(error) => error.keys(),
             Self::OrbitAge { key, .. }
             | Self::CarbonDioxideAge { key, .. }
+            | Self::LandIceAge { key, .. }
             | Self::Needs { key, .. } => vec![*key],
             Self::Orbit(error) => return orbit_keys("orbit", error),
             Self::Constants(e) => vec![e.key.as_str()],
@@ -144,6 +158,10 @@ impl Fault {
                 _ => vec!["co2"],
             },
             Self::Row { .. } => vec!["co2.path"],
+            Self::LandIce(LandIceError::Row { .. }) => {
+                vec!["land_ice.path", "land_ice.column", "land_ice.angle_unit"]
+            }
+            Self::LandIce(_) => vec!["land_ice.edge_deg"],
             Self::Table { table, error } => return below(table, declared_keys(error)),
             Self::OrbitTable { table, .. } => return below(table, &["path"]),
             Self::Grid(_) => vec!["grid"],

@@ -10,6 +10,7 @@ mod data;
 pub mod difference;
 pub mod error;
 pub mod fault;
+mod forcing;
 pub mod identity;
 pub mod orbit_constants;
 mod origin;

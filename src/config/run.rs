@@ -8,6 +8,7 @@ use super::fault::{Fault, PlacedFault};
 use super::repair::is_doubtful;
 use super::{ConfigError, Identity, InputFile, Tree};
 use crate::forcing::carbon_dioxide::CarbonDioxideSpec;
+use crate::forcing::land_ice::LandIceSpec;
 use crate::forcing::mask::MaskSpec;
 use crate::forcing::months::CalendarSpec;
 use crate::grid::latitude::Spacing;
@@ -42,6 +43,9 @@ pub struct RunSpec {
     pub co2: CarbonDioxideSpec,
     /// Its radiative forcing.
     pub co2_forcing: CarbonDioxideForcing,
+    /// Northern land ice against age; none when not given.
+    #[serde(default)]
+    pub land_ice: LandIceSpec,
     /// Land and sea.
     pub surface: SurfaceSpec,
     /// The components.
