@@ -85,7 +85,7 @@ fn analytic_the_sheet_covers_the_land_north_of_its_edge_and_brightens_it() {
         }
     }
     let area = array(&with, "northern_ice_sheet_area");
-    for area in area.iter() {
+    for area in &area {
         assert!(
             (area / expected_area - 1.0).abs() < 1e-6,
             "{area} {expected_area}"
