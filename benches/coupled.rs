@@ -107,6 +107,7 @@ fn shares(experiment: &Experiment) -> Result<Vec<(String, f64)>, Box<dyn Error>>
                 orbit,
                 co2_ppm: 280.0,
                 greenhouse_w_m2: 0.0,
+                land_ice_edge_deg: None,
                 insolation_w_m2: &table.daily_mean_w_m2,
                 zenith_cosine: &table.zenith_cosine,
                 month_bounds: Calendar.month_bounds_fraction(),

@@ -194,7 +194,7 @@ fn steps_too_long_for_a_cold_planet_are_refused_and_not_believed() {
 #[test]
 fn an_age_beyond_the_orbit_is_told_where_it_was_given() {
     let folder = Folder::new();
-    let outcome = refused(&folder, &["short.toml", "--set", "time.start_kyr=1200"]);
+    let outcome = refused(&folder, &["short.toml", "--set", "time.start_kyr=5600"]);
     outcome.says(&["--set time.start_kyr=1200: ", "from 1000 to -1000 kyr"]);
 }
 
@@ -441,4 +441,13 @@ fn a_calendar_needs_only_what_differs() {
         outcome.ok && outcome.out.contains("equinox_day = 79.5"),
         "{outcome:?}"
     );
+}
+
+#[test]
+fn a_table_from_a_pipe_is_refused_since_its_hash_would_be_that_of_nothing() {
+    let folder = Folder::new();
+    let edit = "co2={kind=\"table\",path=\"/dev/null\"}";
+    let outcome = folder.orbicline(&["run", "short.toml", "--set", edit]);
+    outcome.says(&["/dev/null"]);
+    assert_eq!(folder.files(), ["short.toml"]);
 }

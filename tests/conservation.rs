@@ -73,6 +73,29 @@ fn conserves_heat_with_an_accelerated_column() {
 }
 
 #[test]
+fn conserves_heat_while_land_ice_comes_and_goes() {
+    let folder = tempfile::tempdir().expect("a folder");
+    let path = folder.path().join("ice.csv");
+    std::fs::write(&path, "age,edge\n-0.2,80\n0,40\n0.2,80\n").expect("a table");
+    let edit = format!(
+        "land_ice={{kind=\"table\",path=\"{}\",layout=\"comma\",age_column=\"age\",\
+         age_unit=\"kyr\",age_zero_ce=1950,age_direction=\"past_positive\",\
+         age_order=\"youngest_first\",largest_gap_kyr=1,column=\"edge\",angle_unit=\"degree\"}}",
+        path.display()
+    );
+    let mut model = stepped(&[&edit]);
+    // Up and down by two degrees a year.
+    for year in 0..300_u32 {
+        let within = year % 40;
+        let age_kyr = 0.01 * f64::from(within.min(40 - within));
+        let outcome = model.held_year::<std::convert::Infallible>(age_kyr, 1.0);
+        outcome.expect("a year without fault");
+    }
+    let [of_net, of_throughput] = residuals("moving land ice, 300 years", model.ledger());
+    assert!(of_net < 1e-11 && of_throughput < 1e-14);
+}
+
+#[test]
 fn heat_that_a_component_slips_to_another_is_caught() {
     // 1e9 W, a millionth of a petawatt, over the whole ocean.
     let mut model = with_stove(1e9);

@@ -10,8 +10,15 @@ use ndarray::ArrayD;
 use orbicline::grid::latitude::{LatitudeBands, Spacing};
 use orbicline::output::RunFile;
 
-/// 127 kyr ago, where perihelion in June shortens the months of summer.
-const THEN: [&str; 2] = ["time.start_kyr=127.14", "time.end_kyr=127.0"];
+/// 127 kyr ago, where perihelion in June shortens the months of summer; the published lengths are
+/// those of the orbit of Berger (1978).
+const THEN: [&str; 5] = [
+    "time.start_kyr=127.14",
+    "time.end_kyr=127.0",
+    "orbit.eccentricity={kind=\"berger1978\"}",
+    "orbit.obliquity={kind=\"berger1978\"}",
+    "orbit.perihelion={kind=\"berger1978\"}",
+];
 
 fn run(edits: &[&str]) -> RunFile {
     let edits = [&short::EDITS[..], edits].concat();
@@ -90,9 +97,9 @@ from_deg = 50.0
 to_deg = 90.0
 edge_deg = 0.0
 [orbit_mask.orbit]
-eccentricity = { kind = \"berger1978\" }
+eccentricity = { kind = \"integrated\" }
 obliquity = { kind = \"constant\", obliquity_deg = 24.5 }
-perihelion = { kind = \"berger1978\" }
+perihelion = { kind = \"integrated\" }
 ";
 
 fn masked(text: &str) -> RunFile {

@@ -94,6 +94,30 @@ fn a_continued_model_is_the_same_bit_for_bit() {
     }
 }
 
+#[test]
+fn a_model_under_moving_land_ice_is_continued_the_same_bit_for_bit() {
+    let folder = tempfile::tempdir().expect("a folder");
+    let path = folder.path().join("ice.csv");
+    // The edge crosses several bands within the 20 years.
+    std::fs::write(&path, "age,edge\n216,75\n220,45\n").expect("a table");
+    let edit = format!(
+        "land_ice={{kind=\"table\",path=\"{}\",layout=\"comma\",age_column=\"age\",\
+         age_unit=\"kyr\",age_zero_ce=1950,age_direction=\"past_positive\",\
+         age_order=\"youngest_first\",largest_gap_kyr=4,column=\"edge\",angle_unit=\"degree\"}}",
+        path.display()
+    );
+    // The run ends where the table does.
+    let edits = [edit.as_str(), "time.start_kyr=220", "time.end_kyr=216"];
+    let [whole, continued] = whole_and_continued(&edits, 1.0, |_| ());
+    let names = different(&whole, &continued);
+    assert!(names.is_empty(), "{names:?}");
+    let [none, _] = whole_and_continued(&edits[1..], 1.0, |_| ());
+    assert!(
+        !different(&whole, &none).is_empty(),
+        "the ice does not matter"
+    );
+}
+
 /// Moves every number of one part by its last bit: not each of them lives on into the next year.
 fn nudge(state: &mut Restart, part: &str) {
     let found = state.0.iter_mut().find(|(name, _)| name == part);

@@ -229,6 +229,27 @@ fn another_configuration_or_version_is_refused_with_the_difference_named() {
 }
 
 #[test]
+fn a_run_under_a_table_of_land_ice_goes_on_unless_the_table_has_changed() {
+    let folder = folder();
+    let ice = "[land_ice]\nkind = \"table\"\npath = \"ice.csv\"\nlayout = \"comma\"\n\
+               age_column = \"age\"\nage_unit = \"kyr\"\nage_zero_ce = 1950\n\
+               age_direction = \"past_positive\"\nage_order = \"youngest_first\"\n\
+               largest_gap_kyr = 1\ncolumn = \"edge\"\nangle_unit = \"degree\"\n";
+    folder.write("long.toml", &format!("{LONG}\n{ice}"));
+    folder.write("ice.csv", "age,edge\n10,75\n11,45\n");
+    let (whole, _) = in_one_go(&folder);
+    stopped_by(&folder, &["run", "long.toml", "--out", "killed.nc"], "TERM");
+    folder.write("ice.csv", "age,edge\n10,75\n11,46\n");
+    folder
+        .orbicline(&RESUME)
+        .says(&["killed.nc cannot go on", "the data had SHA-256 "]);
+    folder.write("ice.csv", "age,edge\n10,75\n11,45\n");
+    let outcome = folder.orbicline(&RESUME);
+    assert!(outcome.ok, "{outcome:?}");
+    assert_eq!(bits(&folder.path("killed.nc")), whole);
+}
+
+#[test]
 fn whatever_a_kill_left_behind_the_run_goes_on() {
     let folder = folder();
     let (whole, _) = in_one_go(&folder);

@@ -1,19 +1,21 @@
 //! Builds the model that a configuration describes, or tells everything that is wrong with it.
 
-use super::fault::Fault;
+use super::data;
+use super::fault::{Fault, Faults};
+use super::forcing::GivenAges;
 use super::run::{Built, RunSpec};
-use crate::forcing::carbon_dioxide::{CarbonDioxide, CarbonDioxideSpec};
 use crate::forcing::drive::{Drive, DriveNumbers, Sources};
+use crate::forcing::land_ice::{LandIce, LandIceSpec};
 use crate::forcing::mask::Mask;
 use crate::forcing::months::Months;
 use crate::grid::calendar::MonthWeights;
 use crate::grid::latitude::LatitudeBands;
 use crate::model::Model;
-use crate::model::clock::{Plan, is_age};
+use crate::model::clock::Plan;
 use crate::orbit::solution::Orbit;
+use crate::physics::energy_balance::params::Params;
 use crate::physics::exchange::Exchange;
 use crate::physics::{RangeError, Ranges, Setting};
-use crate::tables::{self, Columns};
 use std::path::Path;
 
 /// Fewest and most seasonal steps in a year. Below 24 the scheme was never measured; above 5000
@@ -24,32 +26,13 @@ const STEPS_LIMIT: (usize, usize) = (24, 5000);
 /// (measured; 288 are fine).
 const MOST_BANDS: usize = 288;
 
-/// Keeps what worked and collects what did not.
-struct Faults(Vec<Fault>);
-
-impl Faults {
-    fn take<T, E>(&mut self, result: Result<T, E>, fault: impl Fn(E) -> Fault) -> Option<T> {
-        result.map_err(|e| self.0.push(fault(e))).ok()
-    }
-
-    fn take_all<T, E>(
-        &mut self,
-        result: Result<T, Vec<E>>,
-        fault: impl Fn(E) -> Fault,
-    ) -> Option<T> {
-        result
-            .map_err(|all| self.0.extend(all.into_iter().map(fault)))
-            .ok()
-    }
-}
-
 impl RunSpec {
     /// Builds the model; `folder` is where relative paths start.
     pub(super) fn build(&self, folder: &Path) -> Result<Built, Vec<Fault>> {
-        let mut faults = Faults(Vec::new());
+        let mut faults = Faults::default();
         let plan = faults.take_all(Plan::new(&self.time), Fault::Plan);
         faults.take_all(self.check_numbers(), Fault::Range);
-        faults.0.extend(self.check_needs());
+        faults.add(self.check_needs());
         let setting = self.setting(&mut faults);
         let mut exchange = Exchange::new(setting.as_ref().map_or(0, |s| s.surface.bands.len()));
         let drive = self.drive(folder, setting.as_ref(), &mut faults);
@@ -60,27 +43,38 @@ impl RunSpec {
             .as_ref()
             .and_then(|s| faults.take_all(self.physics.build(s, &mut exchange), Fault::Range));
         match (plan, setting, components, drive) {
-            (Some(plan), Some(setting), Some(components), Some(drive)) if faults.0.is_empty() => {
+            (Some(plan), Some(setting), Some(components), Some(drive)) if faults.is_empty() => {
                 Ok(Built {
                     model: Model::new(components, exchange, drive),
                     plan,
                     setting,
                 })
             }
-            _ => Err(faults.0),
+            _ => Err(faults.into_all()),
         }
     }
 
     /// The forcing, when everything about it is right.
     fn drive(&self, folder: &Path, on: Option<&Setting>, faults: &mut Faults) -> Option<Drive> {
-        let orbit = faults.take_all(Orbit::build(&self.orbit), Fault::Orbit);
+        let orbit = data::orbit(&self.orbit, "orbit", folder, faults);
+        let orbit = faults.take_all(Orbit::with_data(&self.orbit, &orbit), Fault::Orbit);
         let mask = self.orbit_mask.as_ref();
-        let inside = mask.and_then(|mask| faults.take_all(mask.check(), Fault::Mask));
+        let inside = mask.and_then(|mask| {
+            let data = data::orbit(&mask.orbit, "orbit_mask.orbit", folder, faults);
+            faults.take_all(mask.check(&data), Fault::Mask)
+        });
         let co2 = self.carbon_dioxide(folder, faults);
-        self.check_ages([orbit.as_ref(), inside.as_ref()], co2.as_ref(), faults);
+        let ice_edge = self.ice_edge(folder, faults);
+        let given = GivenAges {
+            orbits: [orbit.as_ref(), inside.as_ref()],
+            co2: co2.as_ref(),
+            ice_edge: ice_edge.as_ref(),
+        };
+        self.check_ages(given, faults);
         let months = faults.take(Months::new(self.calendar), Fault::Calendar);
         let (orbit, carbon_dioxide, months) = (orbit?, co2?, months?);
-        let (edges, steps) = (on?.surface.bands.edge_sine(), on?.steps_per_year());
+        let (on, bands) = (on?, &on?.surface.bands);
+        let (edges, steps) = (bands.edge_sine(), on.steps_per_year());
         let mask = match mask {
             Some(spec) => {
                 let laid = Mask::new(spec, inside?, edges, steps);
@@ -93,6 +87,7 @@ impl RunSpec {
             mask,
             carbon_dioxide,
             months,
+            land_ice: ice_edge.map(|edge| LandIce::new(edge, bands, &on.surface.land_fraction)),
         };
         let numbers = DriveNumbers {
             solar_constant_w_m2: self.insolation.solar_constant_w_m2,
@@ -155,7 +150,13 @@ impl RunSpec {
 
     fn check_needs(&self) -> Vec<Fault> {
         let p = &self.physics;
+        let surfaces = p.energy_balance.as_ref().is_some_and(Params::has_surfaces);
         let wanted = [
+            (
+                "land_ice",
+                "physics.energy_balance.albedo of kind \"surfaces\"",
+                surfaces || self.land_ice == LandIceSpec::default(),
+            ),
             (
                 "physics",
                 "physics.energy_balance",
@@ -171,58 +172,6 @@ impl RunSpec {
         missing
             .map(|(key, needs, _)| Fault::Needs { key, needs })
             .collect()
-    }
-
-    fn carbon_dioxide(&self, folder: &Path, faults: &mut Faults) -> Option<CarbonDioxide> {
-        match &self.co2 {
-            CarbonDioxideSpec::Constant { co2_ppm } => {
-                let built = CarbonDioxide::constant(*co2_ppm);
-                faults.take(built, Fault::CarbonDioxide)
-            }
-            CarbonDioxideSpec::Linear {
-                from_kyr,
-                from_ppm,
-                to_kyr,
-                to_ppm,
-            } => {
-                let built = CarbonDioxide::linear([*from_kyr, *from_ppm], [*to_kyr, *to_ppm]);
-                faults.take_all(built, Fault::CarbonDioxide)
-            }
-            CarbonDioxideSpec::Table { path } => {
-                let path = folder.join(path);
-                let read = tables::read_columns(&path, &["age_kyr", "co2_ppm"]);
-                let Columns { values, lines } = faults.take(read, Fault::Table)?;
-                let mut values = values.into_iter();
-                let (age, ppm) = (values.next()?, values.next()?);
-                faults.take_all(CarbonDioxide::table(age, ppm), |error| {
-                    Fault::in_table(error, &path, &lines)
-                })
-            }
-        }
-    }
-
-    fn check_ages(
-        &self,
-        orbits: [Option<&Orbit>; 2],
-        co2: Option<&CarbonDioxide>,
-        faults: &mut Faults,
-    ) {
-        for (key, age) in [
-            ("time.start_kyr", self.time.start_kyr),
-            ("time.end_kyr", self.time.end_kyr),
-        ] {
-            // What is no age at all was told already.
-            if !is_age(age) {
-                continue;
-            }
-            for orbit in orbits.into_iter().flatten() {
-                let reached = orbit.check_range(age, age);
-                faults.take(reached, |error| Fault::OrbitAge { key, error });
-            }
-            if let Some(co2) = co2 {
-                faults.take(co2.at(age), |error| Fault::CarbonDioxideAge { key, error });
-            }
-        }
     }
 
     fn setting(&self, faults: &mut Faults) -> Option<Setting> {

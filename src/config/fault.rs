@@ -2,11 +2,13 @@
 
 use super::Place;
 use crate::forcing::carbon_dioxide::CarbonDioxideError;
+use crate::forcing::land_ice::LandIceError;
 use crate::forcing::mask::MaskError;
 use crate::forcing::months::CalendarError;
 use crate::model::clock::PlanError;
 use crate::orbit::integration::ConstantsError;
 use crate::orbit::solution::OrbitError;
+use crate::orbit::solution::orbit_table::TableFault;
 use crate::physics::RangeError;
 use crate::tables::TableError;
 use std::path::{Path, PathBuf};
@@ -51,6 +53,17 @@ pub enum Fault {
         /// What is given.
         error: CarbonDioxideError,
     },
+    /// Land ice.
+    #[error(transparent)]
+    LandIce(LandIceError),
+    /// An age that the table of land ice does not reach.
+    #[error("{error}")]
+    LandIceAge {
+        /// The key of the age.
+        key: &'static str,
+        /// What is given.
+        error: LandIceError,
+    },
     /// A row of the table of carbon dioxide.
     #[error("co2.path: {}:{line}: {error}", path.display())]
     Row {
@@ -61,9 +74,24 @@ pub enum Fault {
         /// What is wrong there.
         error: CarbonDioxideError,
     },
-    /// The table of carbon dioxide.
-    #[error("co2.path: {0}")]
-    Table(TableError),
+    /// A table that cannot be read.
+    #[error("{table}.path: {error}")]
+    Table {
+        /// The table of the configuration that declares it, such as `orbit.obliquity`.
+        table: String,
+        /// What is wrong.
+        error: TableError,
+    },
+    /// A table of an integrated orbit.
+    #[error("{table}.path: {}: {error}", path.display())]
+    OrbitTable {
+        /// The table of the configuration that names it.
+        table: String,
+        /// The file.
+        path: PathBuf,
+        /// What is wrong.
+        error: TableFault,
+    },
     /// A part that needs another.
     #[error("{key} needs {needs}: add its table, or `extends` a file that has it")]
     Needs {
@@ -91,6 +119,21 @@ impl Fault {
         }
     }
 
+    /// Keys of tables of data without which this would not be wrong.
+    pub(super) fn data_keys(&self) -> Vec<String> {
+        match self {
+            Self::OrbitAge {
+                error: OrbitError::AgeOutOfRange { element, .. },
+                ..
+            } => ["orbit", "orbit_mask.orbit"]
+                .map(|orbit| format!("{orbit}.{element}.path"))
+                .to_vec(),
+            Self::CarbonDioxideAge { .. } => vec!["co2.path".to_owned()],
+            Self::LandIceAge { .. } => vec!["land_ice.path".to_owned()],
+            _ => Vec::new(),
+        }
+    }
+
     /// The key that is wrong, or those that do not fit together.
     pub(super) fn keys(&self) -> Vec<String> {
         let keys = match self {
@@ -99,29 +142,108 @@ impl Fault {
             Self::Plan(error) => error.keys(),
             Self::OrbitAge { key, .. }
             | Self::CarbonDioxideAge { key, .. }
+            | Self::LandIceAge { key, .. }
             | Self::Needs { key, .. } => vec![*key],
-            Self::Orbit(OrbitError::Value { key, .. }) => {
-                let key = key.split(' ').next().unwrap_or(key);
-                return vec![format!("orbit.{key}")];
-            }
-            Self::Orbit(_) => vec!["orbit"],
+            Self::Orbit(error) => return orbit_keys("orbit", error),
             Self::Constants(e) => vec![e.key.as_str()],
             Self::Mask(MaskError::Value { key, .. }) => return vec![format!("orbit_mask.{key}")],
-            Self::Mask(MaskError::Orbit(OrbitError::Value { key, .. })) => {
-                let key = key.split(' ').next().unwrap_or(key);
-                return vec![format!("orbit_mask.orbit.{key}")];
+            Self::Mask(MaskError::Orbit(error)) => {
+                return orbit_keys("orbit_mask.orbit", error);
             }
-            Self::Mask(_) => vec!["orbit_mask"],
+            Self::Mask(MaskError::Everywhere) => vec!["orbit_mask"],
             Self::Calendar(_) => vec!["calendar.equinox_day"],
             Self::CarbonDioxide(error) => match error {
                 CarbonDioxideError::Concentration { key, .. } => vec![*key],
                 CarbonDioxideError::Backwards { .. } => vec!["co2.from_kyr", "co2.to_kyr"],
                 _ => vec!["co2"],
             },
-            Self::Row { .. } | Self::Table(_) => vec!["co2.path"],
+            Self::Row { .. } => vec!["co2.path"],
+            Self::LandIce(LandIceError::Row { .. }) => {
+                vec!["land_ice.path", "land_ice.column", "land_ice.angle_unit"]
+            }
+            Self::LandIce(_) => vec!["land_ice.edge_deg"],
+            Self::Table { table, error } => return below(table, declared_keys(error)),
+            Self::OrbitTable { table, .. } => return below(table, &["path"]),
             Self::Grid(_) => vec!["grid"],
         };
         keys.into_iter().map(str::to_owned).collect()
+    }
+}
+
+/// Keys of a table of the configuration.
+fn below(table: &str, keys: &[&str]) -> Vec<String> {
+    keys.iter().map(|key| format!("{table}.{key}")).collect()
+}
+
+/// The keys below `table` that are wrong about an orbit, or do not fit together.
+fn orbit_keys(table: &str, error: &OrbitError) -> Vec<String> {
+    match error {
+        OrbitError::Value { key, .. } => below(table, &[key.split(' ').next().unwrap_or(key)]),
+        OrbitError::Row { element, .. } => {
+            let keys: &[_] = match *element {
+                "eccentricity" => &["path", "column"],
+                _ => &["path", "column", "angle_unit"],
+            };
+            below(&format!("{table}.{element}"), keys)
+        }
+        _ => vec![table.to_owned()],
+    }
+}
+
+/// The keys of a declared table with which its content does not fit together.
+fn declared_keys(error: &TableError) -> &'static [&'static str] {
+    match error {
+        TableError::Column { .. } => &["path", "layout"],
+        TableError::Order { .. } => &["path", "age_order", "age_direction"],
+        TableError::Gap { .. } => &["path", "age_unit", "largest_gap_kyr"],
+        _ => &["path"],
+    }
+}
+
+/// Keeps what worked and collects what did not.
+#[derive(Debug, Default)]
+pub(super) struct Faults(Vec<Fault>);
+
+impl Faults {
+    /// The value, or the fault noted.
+    pub(super) fn take<T, E>(
+        &mut self,
+        result: Result<T, E>,
+        fault: impl Fn(E) -> Fault,
+    ) -> Option<T> {
+        result.map_err(|error| self.add([fault(error)])).ok()
+    }
+
+    /// The value, or all faults noted.
+    pub(super) fn take_all<T, E>(
+        &mut self,
+        result: Result<T, Vec<E>>,
+        fault: impl Fn(E) -> Fault,
+    ) -> Option<T> {
+        let noted = |errors: Vec<E>| self.add(errors.into_iter().map(fault));
+        result.map_err(noted).ok()
+    }
+
+    /// Notes faults; not those that only repeat that a file could not be read.
+    pub(super) fn add(&mut self, faults: impl IntoIterator<Item = Fault>) {
+        let told = |fault: &Fault| {
+            let (Fault::Orbit(error) | Fault::Mask(MaskError::Orbit(error))) = fault else {
+                return false;
+            };
+            matches!(error, OrbitError::NotRead { .. })
+        };
+        self.0
+            .extend(faults.into_iter().filter(|fault| !told(fault)));
+    }
+
+    /// Whether none was noted.
+    pub(super) fn is_empty(&self) -> bool {
+        self.0.is_empty()
+    }
+
+    /// All faults.
+    pub(super) fn into_all(self) -> Vec<Fault> {
+        self.0
     }
 }
 

@@ -6,9 +6,11 @@
 //! is said by the type that is read, which values are allowed is checked where the part is built.
 
 mod build;
+mod data;
 pub mod difference;
 pub mod error;
 pub mod fault;
+mod forcing;
 pub mod identity;
 pub mod orbit_constants;
 mod origin;

@@ -1,13 +1,14 @@
 //! One run as a configuration describes it, and the model built from it.
 //!
 //! The tables are those of the parts themselves; this module only composes them, finds where each
-//! offending key was written, and reads the table of carbon dioxide when one is named.
+//! offending key was written. The data files that it names are read in `data.rs`.
 
 pub use super::fault::BuildError;
 use super::fault::{Fault, PlacedFault};
 use super::repair::is_doubtful;
-use super::{ConfigError, Identity, InputFile, Tree, read_text};
+use super::{ConfigError, Identity, InputFile, Tree};
 use crate::forcing::carbon_dioxide::CarbonDioxideSpec;
+use crate::forcing::land_ice::LandIceSpec;
 use crate::forcing::mask::MaskSpec;
 use crate::forcing::months::CalendarSpec;
 use crate::grid::latitude::Spacing;
@@ -42,6 +43,9 @@ pub struct RunSpec {
     pub co2: CarbonDioxideSpec,
     /// Its radiative forcing.
     pub co2_forcing: CarbonDioxideForcing,
+    /// Northern land ice against age; none when not given.
+    #[serde(default)]
+    pub land_ice: LandIceSpec,
     /// Land and sea.
     pub surface: SurfaceSpec,
     /// The components.
@@ -131,7 +135,10 @@ impl Experiment {
 
     /// A fault of reading together with all values out of range that do not come from stand-ins.
     fn and_ranges(&self, fault: ConfigError, stand_ins: &[String]) -> ConfigError {
-        let doubtful = |f: &Fault| f.keys().iter().any(|key| is_doubtful(key, stand_ins));
+        let doubtful = |f: &Fault| {
+            let mut keys = f.keys().into_iter().chain(f.data_keys());
+            keys.any(|key| is_doubtful(&key, stand_ins))
+        };
         let mut found = self.run.build(&self.folder).err().unwrap_or_default();
         found.retain(|fault| !doubtful(fault));
         if found.is_empty() {
@@ -156,29 +163,22 @@ impl Experiment {
     /// All files that define the run, with their hashes.
     ///
     /// # Errors
-    /// When the table of carbon dioxide cannot be read.
+    /// When a data file cannot be read.
     pub fn inputs(&self) -> Result<Vec<InputFile>, ConfigError> {
         let mut files = self.tree.input_files().to_vec();
-        files.extend(self.data()?);
+        files.extend(self.run.data(&self.folder)?);
         Ok(files)
     }
 
     /// What a run must have in common with this one to give the same numbers.
     ///
     /// # Errors
-    /// When the table of carbon dioxide cannot be read.
+    /// When a data file cannot be read.
     pub fn identity(&self) -> Result<Identity, ConfigError> {
-        Ok(Identity::new(self.tree.resolved_toml()?, &self.data()?))
-    }
-
-    /// The data files besides the configuration.
-    fn data(&self) -> Result<Vec<InputFile>, ConfigError> {
-        let CarbonDioxideSpec::Table { path } = &self.run.co2 else {
-            return Ok(Vec::new());
-        };
-        let path = self.folder.join(path);
-        let text = read_text(&path)?;
-        Ok(vec![InputFile::new(&path, text.as_bytes())])
+        Ok(Identity::new(
+            self.tree.resolved_toml()?,
+            &self.run.data(&self.folder)?,
+        ))
     }
 
     fn all_placed(&self, faults: Vec<Fault>) -> BuildError {

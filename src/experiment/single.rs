@@ -35,6 +35,9 @@ pub enum SingleError {
     /// What is there cannot be gone on with.
     #[error(transparent)]
     Resume(#[from] ResumeError),
+    /// A data file changed while it was read.
+    #[error("a data file of the configuration changed while it was read; run again")]
+    DataChanged,
     /// The model could not go on.
     #[error("{cause}; {kept}")]
     Run {
@@ -114,12 +117,18 @@ pub fn run(
     arguments: &[String],
     follower: &mut dyn Follower,
 ) -> Result<Outcome, SingleError> {
+    // What cannot be read is told by the building, with its place.
+    let before = experiment.identity().ok();
     let Built {
         mut model,
         plan,
         setting,
     } = experiment.build()?;
     let identity = experiment.identity()?;
+    // What is hashed must be what was read in between.
+    if before.as_ref() != Some(&identity) {
+        return Err(SingleError::DataChanged);
+    }
     let claim = Claim::take(&destination.path)?;
     let start = match destination.begin {
         Begin::Anew => Start::Anew,

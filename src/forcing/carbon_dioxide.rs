@@ -6,6 +6,8 @@
 
 use crate::numerics::profile;
 use crate::numerics::shown::Shown;
+use crate::tables::declared::declared_table;
+use crate::tables::more;
 use serde::{Deserialize, Serialize};
 
 /// Concentrations that can be meant, ppm (chosen here): below are fractions given by mistake, above is no
@@ -32,12 +34,19 @@ pub enum CarbonDioxideSpec {
         /// Concentration there, ppm.
         to_ppm: f64,
     },
+    /// A text file of which everything is declared; values in ppm.
+    DeclaredTable(CarbonDioxideTable),
     /// A text file with the columns `age_kyr` (kyr before 1950) and `co2_ppm`, comma-separated,
     /// lines beginning with # ignored; its path is relative to the configuration that names it.
     Table {
         /// Path of the file.
         path: String,
     },
+}
+
+declared_table! {
+    /// Carbon dioxide against age from a text file, ppm by volume; linear between its rows.
+    CarbonDioxideTable {}
 }
 
 /// Why carbon dioxide cannot be used.
@@ -188,14 +197,6 @@ fn concentration(key: &'static str, values: &[f64]) -> Option<CarbonDioxideError
         row,
         others: wrong.count(),
     })
-}
-
-fn more(others: usize) -> String {
-    match others {
-        0 => String::new(),
-        1 => " (and one row below)".to_owned(),
-        _ => format!(" (and {others} rows below)"),
-    }
 }
 
 #[cfg(test)]

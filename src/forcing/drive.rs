@@ -1,4 +1,4 @@
-//! Forcing for any year of a run: orbit, insolation table, carbon dioxide.
+//! Forcing for any year of a run: orbit, insolation table, carbon dioxide, land ice.
 //!
 //! The insolation table is renewed every few years with the orbit of the middle of that interval
 //! (at eccentricity 0.05 ten years move the insolation by less than 0.1 W m-2 either way).
@@ -7,6 +7,7 @@
 
 use super::YearForcing;
 use super::carbon_dioxide::{CarbonDioxide, CarbonDioxideError};
+use super::land_ice::{LandIce, LandIceError};
 use super::mask::Mask;
 use super::months::{MonthBounds, Months};
 use crate::orbit::elements::Elements;
@@ -39,6 +40,8 @@ pub struct Sources {
     pub carbon_dioxide: CarbonDioxide,
     /// Calendar.
     pub months: Months,
+    /// Prescribed northern land ice.
+    pub land_ice: Option<LandIce>,
 }
 
 /// Numbers of a [`Drive`] besides orbit and carbon dioxide.
@@ -56,6 +59,13 @@ pub struct DriveNumbers {
     pub end_kyr: f64,
 }
 
+/// What is given against age besides the orbit, at one age.
+#[derive(Clone, Copy, Debug)]
+struct Given {
+    co2_ppm: f64,
+    land_ice_edge_deg: Option<f64>,
+}
+
 /// Why there is no forcing for an age.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum DriveError {
@@ -65,6 +75,9 @@ pub enum DriveError {
     /// Carbon dioxide does not reach there.
     #[error(transparent)]
     CarbonDioxide(#[from] CarbonDioxideError),
+    /// Land ice is not given there.
+    #[error(transparent)]
+    LandIce(#[from] LandIceError),
 }
 
 impl Drive {
@@ -122,7 +135,7 @@ impl Drive {
     /// `start_kyr`; slow components advance `slow_years` in it.
     ///
     /// # Errors
-    /// When orbit or carbon dioxide do not reach there.
+    /// When orbit, carbon dioxide or land ice do not reach there.
     pub fn year(
         &mut self,
         start_kyr: f64,
@@ -130,7 +143,7 @@ impl Drive {
         slow_years: f64,
     ) -> Result<YearForcing<'_>, DriveError> {
         let age_kyr = start_kyr - years / 1000.0;
-        let co2_ppm = self.sources.carbon_dioxide.at(age_kyr)?;
+        let given = self.given_at(age_kyr)?;
         #[expect(
             clippy::cast_possible_truncation,
             reason = "runs are far shorter than 2^63 intervals"
@@ -147,22 +160,30 @@ impl Drive {
                 orbit
             }
         };
-        Ok(self.forcing(age_kyr, orbit, co2_ppm, slow_years))
+        Ok(self.forcing(age_kyr, orbit, given, slow_years))
     }
 
     /// Forcing held at one age, for spin-up and steady states.
     ///
     /// # Errors
-    /// When orbit or carbon dioxide do not reach there.
+    /// When orbit, carbon dioxide or land ice do not reach there.
     pub fn held(&mut self, age_kyr: f64, slow_years: f64) -> Result<YearForcing<'_>, DriveError> {
-        let co2_ppm = self.sources.carbon_dioxide.at(age_kyr)?;
+        let given = self.given_at(age_kyr)?;
         let orbit = self.sources.orbit.at(age_kyr)?;
         // The orbit of the mask may move where the run's stands still.
         if self.table_orbit != Some(orbit) || self.sources.mask.is_some() {
             self.renew(orbit, age_kyr)?;
         }
         self.table_interval = None;
-        Ok(self.forcing(age_kyr, orbit, co2_ppm, slow_years))
+        Ok(self.forcing(age_kyr, orbit, given, slow_years))
+    }
+
+    fn given_at(&self, age_kyr: f64) -> Result<Given, DriveError> {
+        let edge = self.sources.land_ice.as_ref();
+        Ok(Given {
+            co2_ppm: self.sources.carbon_dioxide.at(age_kyr)?,
+            land_ice_edge_deg: edge.map(|ice| ice.edge_deg_at(age_kyr)).transpose()?,
+        })
     }
 
     fn renew(&mut self, orbit: Elements, age_kyr: f64) -> Result<(), OrbitError> {
@@ -183,14 +204,15 @@ impl Drive {
         &self,
         age_kyr: f64,
         orbit: Elements,
-        co2_ppm: f64,
+        given: Given,
         slow_years: f64,
     ) -> YearForcing<'_> {
         YearForcing {
             age_kyr,
             orbit,
-            co2_ppm,
-            greenhouse_w_m2: self.greenhouse_w_m2(co2_ppm),
+            co2_ppm: given.co2_ppm,
+            greenhouse_w_m2: self.greenhouse_w_m2(given.co2_ppm),
+            land_ice_edge_deg: given.land_ice_edge_deg,
             insolation_w_m2: &self.table.daily_mean_w_m2,
             zenith_cosine: &self.table.zenith_cosine,
             month_bounds: self.month_bounds,

@@ -19,7 +19,7 @@ use crate::numerics::shown::Shown;
 use crate::orbit::elements::Elements;
 use crate::orbit::insolation::{InsolationTable, TableError};
 use crate::orbit::kepler;
-use crate::orbit::solution::{Orbit, OrbitError, OrbitSpec};
+use crate::orbit::solution::{Orbit, OrbitData, OrbitError, OrbitSpec};
 
 /// Points of the midpoint rule in a band.
 const POINTS: usize = 64;
@@ -89,11 +89,11 @@ pub struct Mask {
 }
 
 impl MaskSpec {
-    /// Checks all numbers.
+    /// Checks all numbers, with what was read for its orbit.
     ///
     /// # Errors
     /// Everything that is wrong.
-    pub fn check(&self) -> Result<Orbit, Vec<MaskError>> {
+    pub fn check(&self, data: &OrbitData) -> Result<Orbit, Vec<MaskError>> {
         let mut wrong = Vec::new();
         let mut value = |key, value: f64, allowed: bool, limit| {
             if !allowed {
@@ -132,7 +132,7 @@ impl MaskSpec {
         if self.latitude.is_none_or(whole_earth) && self.sun_longitude.is_none_or(whole_year) {
             wrong.push(MaskError::Everywhere);
         }
-        let orbit = match Orbit::build(&self.orbit) {
+        let orbit = match Orbit::with_data(&self.orbit, data) {
             Ok(orbit) if wrong.is_empty() => return Ok(orbit),
             Ok(_) => Vec::new(),
             Err(errors) => errors,
@@ -307,7 +307,13 @@ mod tests {
     }
 
     fn masked(spec: &MaskSpec, run: &Elements) -> (InsolationTable, f64) {
-        let mut mask = Mask::new(spec, spec.check().unwrap(), &edges(), 360).unwrap();
+        let mut mask = Mask::new(
+            spec,
+            spec.check(&OrbitData::default()).unwrap(),
+            &edges(),
+            360,
+        )
+        .unwrap();
         let mut table = InsolationTable::new(&edges(), 360).unwrap();
         table.update(run, 1361.0, 0.2178);
         mask.apply(&mut table, run, 0.0, 1361.0, 0.2178).unwrap();
@@ -371,9 +377,11 @@ mod tests {
             "latitude = { from_deg = 80, to_deg = 70, edge_deg = -1 }\n\
              sun_longitude = { from_deg = -5, to_deg = 400, edge_deg = 5 }",
         );
-        assert_eq!(wrong.check().unwrap_err().len(), 4);
+        assert_eq!(wrong.check(&OrbitData::default()).unwrap_err().len(), 4);
         let narrow = "latitude = { from_deg = 45, to_deg = 90, edge_deg = 60 }";
-        assert_eq!(spec(narrow).check().unwrap_err().len(), 1);
-        assert_eq!(spec("").check().unwrap_err(), [MaskError::Everywhere]);
+        let narrow = spec(narrow).check(&OrbitData::default());
+        assert_eq!(narrow.unwrap_err().len(), 1);
+        let all = spec("").check(&OrbitData::default());
+        assert_eq!(all.unwrap_err(), [MaskError::Everywhere]);
     }
 }

@@ -4,6 +4,7 @@
 
 pub mod carbon_dioxide;
 pub mod drive;
+pub mod land_ice;
 pub mod mask;
 pub mod months;
 
@@ -20,6 +21,8 @@ pub struct YearForcing<'a> {
     pub co2_ppm: f64,
     /// Radiative forcing of that carbon dioxide against the reference, W m-2.
     pub greenhouse_w_m2: f64,
+    /// Southern edge of the prescribed northern land ice, degrees north; none without such ice.
+    pub land_ice_edge_deg: Option<f64>,
     /// Daily-mean insolation at the end of each step, W m-2, `[step][band]`.
     pub insolation_w_m2: &'a [f64],
     /// Insolation-weighted daily-mean cosine of the zenith angle, `[step][band]`.

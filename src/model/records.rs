@@ -1,6 +1,6 @@
 //! Means over the years of a record.
 //!
-//! Orbit and carbon dioxide are those of the middle of the record; the ledger's numbers are those
+//! Orbit, carbon dioxide and land ice are those of the middle of the record; the ledger's numbers are those
 //! at its end; everything else is the mean over its years.
 
 use super::clock::Plan;
@@ -14,9 +14,29 @@ use crate::units::YEAR_DAYS;
 /// Variables that the model itself adds (orbit and carbon dioxide of the middle of the record, the
 /// ledger at its end) in front of those of the components.
 ///
-/// Months of fixed angle and a mask have variables of their own.
+/// Months of fixed angle, a mask and land ice have variables of their own.
 pub fn model_variables(sources: &Sources) -> Vec<Variable> {
-    let scalar = |name, units, long_name, standard_name| Variable {
+    let mut variables = of_every_run().to_vec();
+    if sources.mask.is_some() {
+        variables.extend(of_mask());
+    }
+    if sources.land_ice.is_some() {
+        variables.extend(of_land_ice());
+    }
+    if sources.months.move_with_the_orbit() {
+        variables.extend(of_moving_months());
+    }
+    variables
+}
+
+/// A number of one instant.
+fn scalar(
+    name: &'static str,
+    units: &'static str,
+    long_name: &'static str,
+    standard_name: Option<&'static str>,
+) -> Variable {
+    Variable {
         name,
         axes: &[],
         units,
@@ -24,8 +44,11 @@ pub fn model_variables(sources: &Sources) -> Vec<Variable> {
         standard_name,
         scale: Scale::Plain,
         statistic: Statistic::Point,
-    };
-    let mut variables = vec![
+    }
+}
+
+fn of_every_run() -> [Variable; 9] {
+    [
         scalar("eccentricity", "1", "eccentricity of the orbit", None),
         scalar("obliquity", "degree", "obliquity of the ecliptic", None),
         scalar(
@@ -70,53 +93,71 @@ pub fn model_variables(sources: &Sources) -> Vec<Variable> {
             "change of the heat on the planet since the end of the first year",
             None,
         ),
-    ];
-    if sources.mask.is_some() {
-        variables.extend([
-            scalar(
-                "mask_eccentricity",
-                "1",
-                "eccentricity of the orbit inside the mask",
-                None,
-            ),
-            scalar(
-                "mask_obliquity",
-                "degree",
-                "obliquity inside the mask",
-                None,
-            ),
-            scalar(
-                "mask_perihelion_longitude",
-                "degree",
-                "heliocentric longitude of perihelion inside the mask, from the moving equinox",
-                None,
-            ),
-            scalar(
-                "mask_insolation_change",
-                "W m-2",
-                "global annual mean insolation added by the mask, at the end of the record",
-                None,
-            ),
-        ]);
-    }
-    if sources.months.move_with_the_orbit() {
-        let by_month = |name, units, long_name| Variable {
-            axes: &[Axis::Month],
-            ..scalar(name, units, long_name, None)
-        };
-        variables.extend([
-            by_month(
-                "month_begin",
-                "1",
-                "beginning of the month, fraction of the year since 1 January 0 h; may be negative",
-            ),
-            by_month("month_length", "day", "length of the month"),
-        ]);
-    }
-    variables
+    ]
 }
 
-/// Values of the variables that a mask and moving months add.
+fn of_mask() -> [Variable; 4] {
+    [
+        scalar(
+            "mask_eccentricity",
+            "1",
+            "eccentricity of the orbit inside the mask",
+            None,
+        ),
+        scalar(
+            "mask_obliquity",
+            "degree",
+            "obliquity inside the mask",
+            None,
+        ),
+        scalar(
+            "mask_perihelion_longitude",
+            "degree",
+            "heliocentric longitude of perihelion inside the mask, from the moving equinox",
+            None,
+        ),
+        scalar(
+            "mask_insolation_change",
+            "W m-2",
+            "global annual mean insolation added by the mask, at the end of the record",
+            None,
+        ),
+    ]
+}
+
+fn of_land_ice() -> [Variable; 2] {
+    [
+        scalar(
+            "northern_ice_sheet_edge",
+            "degrees_north",
+            "southern edge of the prescribed northern ice sheet",
+            None,
+        ),
+        scalar(
+            "northern_ice_sheet_area",
+            "m2",
+            "area of land under the prescribed northern ice sheet",
+            None,
+        ),
+    ]
+}
+
+fn of_moving_months() -> [Variable; 2] {
+    let by_month = |name, units, long_name| Variable {
+        axes: &[Axis::Month],
+        ..scalar(name, units, long_name, None)
+    };
+    [
+        by_month(
+            "month_begin",
+            "1",
+            "beginning of the month, fraction of the year since 1 January 0 h; may be negative",
+        ),
+        by_month("month_length", "day", "length of the month"),
+    ]
+}
+
+/// Values of the variables that a mask, land ice and moving months add.
 fn of_sources(drive: &Drive, orbit: &Elements, age_kyr: f64) -> Result<Vec<f64>, DriveError> {
     let (sources, mut values) = (drive.sources(), Vec::new());
     if let Some(mask) = &sources.mask {
@@ -127,6 +168,10 @@ fn of_sources(drive: &Drive, orbit: &Elements, age_kyr: f64) -> Result<Vec<f64>,
             inside.perihelion.heliocentric_deg(),
             mask.change_w_m2(),
         ]);
+    }
+    if let Some(ice) = &sources.land_ice {
+        let edge_deg = ice.edge_deg_at(age_kyr)?;
+        values.extend([edge_deg, ice.area_m2(edge_deg)]);
     }
     if sources.months.move_with_the_orbit() {
         let bounds = sources.months.bounds(orbit);

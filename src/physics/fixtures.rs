@@ -42,6 +42,7 @@ pub(crate) fn year(slow_years: f64) -> YearForcing<'static> {
         },
         co2_ppm: 280.0,
         greenhouse_w_m2: 0.0,
+        land_ice_edge_deg: None,
         insolation_w_m2: &[],
         zenith_cosine: &[],
         month_bounds: Calendar.month_bounds_fraction(),

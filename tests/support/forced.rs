@@ -27,6 +27,7 @@ pub(crate) fn drive(experiment: &Experiment, setting: &Setting) -> Drive {
         mask: None,
         carbon_dioxide,
         months,
+        land_ice: None,
     };
     Drive::new(sources, numbers, edges, steps).expect("a forcing")
 }

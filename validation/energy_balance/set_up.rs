@@ -170,6 +170,7 @@ pub(crate) fn run_with(
         orbit: orbit(0.0, 23.45, 0.0),
         co2_ppm: 353.0,
         greenhouse_w_m2,
+        land_ice_edge_deg: None,
         insolation_w_m2,
         zenith_cosine,
         month_bounds: Calendar.month_bounds_fraction(),

@@ -9,18 +9,27 @@
 
 pub mod berger1978;
 mod berger1978_terms;
+mod course;
 mod idealised;
 pub mod integrated;
+mod nodes;
 pub mod orbit_table;
 mod spec;
+mod user_table;
 
+use course::{Course, Element};
 use orbit_table::{OrbitRow, TableFault};
-use spec::{Course, Element};
 pub use spec::{EccentricitySource, ObliquitySource, OrbitSpec, PerihelionSource};
+use std::path::PathBuf;
 use thiserror::Error;
+pub use user_table::{
+    EccentricityTable, ElementData, ElementSource, ObliquityTable, OrbitData, PerihelionConvention,
+    PerihelionTable, WIDEST_GAP,
+};
 
 use super::elements::{Elements, PerihelionLongitude};
 use crate::numerics::shown::Shown;
+use crate::tables::more;
 
 /// Why an orbit cannot be built or asked.
 #[derive(Clone, Debug, Error, PartialEq)]
@@ -55,6 +64,31 @@ pub enum OrbitError {
     /// The table that comes with the program is damaged.
     #[error("the table of the integrated orbit in this program is damaged: {0}")]
     Table(#[from] TableFault),
+    /// A value of a user's table is not what it is declared to be.
+    #[error(
+        "orbit.{element}.path: {}:{line}: {} {reason}{}",
+        path.display(), Shown(*value), more(*others)
+    )]
+    Row {
+        /// The element.
+        element: &'static str,
+        /// The table.
+        path: PathBuf,
+        /// Line in it, from 1.
+        line: u64,
+        /// The value as it is written.
+        value: f64,
+        /// What speaks against it, and what to do.
+        reason: &'static str,
+        /// How many rows below are refused too.
+        others: usize,
+    },
+    /// A file was not read for this orbit.
+    #[error("orbit.{element} comes from a file that was not read; build the orbit with its data")]
+    NotRead {
+        /// The element.
+        element: &'static str,
+    },
     /// The age is not a number.
     #[error("age {age_kyr} kyr is not a finite number; give kyr before 1950 CE")]
     AgeNotFinite {
@@ -72,12 +106,20 @@ pub struct Orbit {
 }
 
 impl Orbit {
-    /// Checks a specification.
+    /// Checks a specification that names no files.
     ///
     /// # Errors
     /// All numbers that are out of range, together.
     pub fn build(spec: &OrbitSpec) -> Result<Self, Vec<OrbitError>> {
-        let [eccentricity, obliquity, perihelion] = spec.courses()?;
+        Self::with_data(spec, &OrbitData::default())
+    }
+
+    /// Checks a specification and what was read from the files it names.
+    ///
+    /// # Errors
+    /// All numbers that are out of range, together; of a table the first row with a fault.
+    pub fn with_data(spec: &OrbitSpec, data: &OrbitData) -> Result<Self, Vec<OrbitError>> {
+        let [eccentricity, obliquity, perihelion] = spec.courses(data)?;
         Ok(Self {
             eccentricity,
             obliquity,
@@ -90,7 +132,7 @@ impl Orbit {
     /// # Errors
     /// When a source is not valid at this age, or the age is not finite.
     pub fn at(&self, age_kyr: f64) -> Result<Elements, OrbitError> {
-        let value = |name, course: Course, element: Element| {
+        let value = |name, course: &Course, element: Element| {
             check_age(name, course, age_kyr)?;
             let value = course.at(age_kyr, element);
             value.ok_or(OrbitError::AgeNotFinite { age_kyr })
@@ -120,11 +162,11 @@ impl Orbit {
         Ok(())
     }
 
-    fn named(&self) -> [(&'static str, Course); 3] {
+    fn named(&self) -> [(&'static str, &Course); 3] {
         [
-            ("eccentricity", self.eccentricity),
-            ("obliquity", self.obliquity),
-            ("perihelion", self.perihelion),
+            ("eccentricity", &self.eccentricity),
+            ("obliquity", &self.obliquity),
+            ("perihelion", &self.perihelion),
         ]
     }
 }
@@ -143,13 +185,14 @@ const PERIHELION: Element = Element {
 };
 
 /// Whether the course of an element says something about an age.
-fn check_age(element: &'static str, course: Course, age_kyr: f64) -> Result<(), OrbitError> {
+fn check_age(element: &'static str, course: &Course, age_kyr: f64) -> Result<(), OrbitError> {
     if !age_kyr.is_finite() {
         return Err(OrbitError::AgeNotFinite { age_kyr });
     }
     match course.limits() {
         Some((kind, [oldest_kyr, youngest_kyr]))
-            if !(youngest_kyr..=oldest_kyr).contains(&age_kyr) =>
+            if !(youngest_kyr..=oldest_kyr).contains(&age_kyr)
+                && !course.meets_the_end(age_kyr) =>
         {
             Err(OrbitError::AgeOutOfRange {
                 age_kyr,

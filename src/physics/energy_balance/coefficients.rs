@@ -1,7 +1,7 @@
 //! Parameters turned into the numbers the time step uses, one per band where they vary.
 //!
 //! Built once; nothing here changes during a run except the albedos of an ice-line set-up, which
-//! `ice_line` renews at each step.
+//! `ice_line` renews at each step, and the land under a prescribed ice sheet, renewed with the year.
 
 use super::params::{Albedo, Emitter, Params};
 use crate::grid::calendar::MonthWeights;
@@ -163,6 +163,13 @@ impl Coefficients {
             gyre_conductance,
             loss_smoothing_squared: p.sinking.loss_smoothing_w_m2.powi(2),
             per_convection_temperature: 1.0 / p.sinking.convection_temperature_k,
+        }
+    }
+
+    /// Replaces the fraction of land under permanent ice, `[band]`.
+    pub(super) fn set_sheet(&mut self, sheet: &[f64]) {
+        for (row, i) in self.rows.iter_mut().zip((0..).step_by(WIDTH)) {
+            row.sheet = Lanes::load(sheet, i);
         }
     }
 

@@ -63,6 +63,8 @@ pub struct EnergyBalance {
     edges: EdgeFluxes,
     means: Means,
     report: Report,
+    /// Southern edge of the prescribed northern land ice that the sheet was last laid out for.
+    land_ice_edge_deg: Option<f64>,
     /// Whether the first year, which begins far from balance, is over.
     started: bool,
 }
@@ -88,8 +90,28 @@ impl EnergyBalance {
             surface: surface.clone(),
             coefficients,
             state,
+            land_ice_edge_deg: None,
             started: false,
         })
+    }
+
+    /// Lays ice on the land north of an edge, besides what the surface has; a function of the edge
+    /// alone, so a restart needs no more than the year's forcing. Surfaces of an ice-line set-up know no
+    /// land ice.
+    fn lay_land_ice(&mut self, edge_deg: Option<f64>) {
+        if edge_deg == self.land_ice_edge_deg || self.ice_line.is_some() {
+            return;
+        }
+        self.land_ice_edge_deg = edge_deg;
+        let mut sheet = self.surface.ice_sheet_fraction.clone();
+        if let Some(edge) = edge_deg {
+            let north = self.surface.bands.share_between(edge, 90.0);
+            for (sheet, north) in sheet.iter_mut().zip(north) {
+                *sheet = sheet.max(north);
+            }
+        }
+        self.coefficients.set_sheet(&sheet);
+        self.report.set_sheet(&sheet);
     }
 
     /// Air temperature at sea level at the end of the last step, degC, `[band]`.
@@ -270,6 +292,7 @@ impl Component for EnergyBalance {
         exchange: &mut Exchange,
     ) -> Result<(), PhysicsError> {
         self.coefficients.months.set_bounds(&forcing.month_bounds);
+        self.lay_land_ice(forcing.land_ice_edge_deg);
         let column = ColumnSide {
             heat_w: &exchange.column_heat_w,
             upwelling_m3_s: &exchange.upwelling_m3_s,

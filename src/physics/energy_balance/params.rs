@@ -212,6 +212,11 @@ pub struct Sinking {
 }
 
 impl Params {
+    /// Whether the albedo is that of surfaces, among them ice sheets.
+    pub fn has_surfaces(&self) -> bool {
+        matches!(self.albedo, Albedo::Surfaces { .. })
+    }
+
     /// Checks every range and reports all violations at once.
     ///
     /// # Errors

@@ -77,6 +77,11 @@ impl Report {
         }
     }
 
+    /// Replaces the fraction of land under permanent ice, `[band]`.
+    pub(super) fn set_sheet(&mut self, sheet: &[f64]) {
+        self.bands.sheet.copy_from_slice(sheet);
+    }
+
     pub(super) fn record(&self, values: &mut Vec<f64>) {
         values.extend_from_slice(&self.values);
     }
