@@ -2,11 +2,13 @@
 
 mod attendant;
 mod bar;
+mod describe;
 mod dry_run;
 mod figures;
 mod orbit;
 mod run;
 mod signals;
+mod steady;
 
 use clap::{Parser, Subcommand};
 use std::io::Write;
@@ -39,6 +41,10 @@ struct Arguments {
 enum Command {
     /// Run a transient climate into a NetCDF-4 file
     Run(run::RunArguments),
+    /// Find the repeating seasonal cycle under held forcing
+    Steady(steady::SteadyArguments),
+    /// Tell what a run file is: what made it, how it differs from the reference, its sizes
+    Describe(describe::DescribeArguments),
     /// Compute the orbit from the motion of the planets into a table
     Orbit(orbit::OrbitArguments),
 }
@@ -48,9 +54,10 @@ pub fn main() -> ExitCode {
     let words: Vec<String> = std::env::args_os()
         .map(|w| w.to_string_lossy().into_owned())
         .collect();
-    let outcome = match Arguments::parse().command {
-        Command::Run(arguments) => run::run(&arguments, &words),
-        Command::Orbit(arguments) => orbit::run(&arguments),
+    let command = Arguments::parse().command;
+    let outcome = match signals::tell_size_limits() {
+        Ok(()) => carry_out(command, &words),
+        Err(error) => Err(error.into()),
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,
@@ -76,11 +83,24 @@ pub fn main() -> ExitCode {
     }
 }
 
+fn carry_out(command: Command, words: &[String]) -> Result<(), CliError> {
+    match command {
+        Command::Run(arguments) => run::run(&arguments, words),
+        Command::Steady(arguments) => steady::run(&arguments, words),
+        Command::Describe(arguments) => describe::run(&arguments),
+        Command::Orbit(arguments) => orbit::run(&arguments),
+    }
+}
+
 /// What a command can end with.
 #[derive(Debug, thiserror::Error)]
 enum CliError {
     #[error(transparent)]
     Single(#[from] crate::experiment::single::SingleError),
+    #[error(transparent)]
+    Steady(#[from] crate::experiment::steady::SteadyError),
+    #[error(transparent)]
+    Describe(#[from] crate::experiment::describe::DescribeError),
     #[error(transparent)]
     Orbit(#[from] crate::experiment::orbit::OrbitCommandError),
     #[error(transparent)]

@@ -2,9 +2,11 @@
 
 pub mod background;
 mod contents;
+pub mod describe;
 pub mod estimate;
 pub mod follow;
 pub mod orbit;
 pub mod resume;
 pub mod single;
+pub mod steady;
 pub mod summary;

@@ -43,8 +43,10 @@ impl PlainFile {
     pub fn write(self, bytes: &[u8]) -> Result<PathBuf> {
         refuse_existing(&self.path, self.overwrite)?;
         let temporary = segments::merging(&self.path);
-        fs::write(&temporary, bytes).map_err(io_at(&temporary, "write"))?;
-        segments::seal(&temporary, &self.path)?;
+        let written = fs::write(&temporary, bytes)
+            .map_err(io_at(&temporary, "write"))
+            .and_then(|()| segments::seal(&temporary, &self.path));
+        segments::clearing(&temporary, written)?;
         Ok(self.path)
     }
 }
