@@ -194,8 +194,8 @@ fn steps_too_long_for_a_cold_planet_are_refused_and_not_believed() {
 #[test]
 fn an_age_beyond_the_orbit_is_told_where_it_was_given() {
     let folder = Folder::new();
-    let outcome = refused(&folder, &["short.toml", "--set", "time.start_kyr=1200"]);
-    outcome.says(&["--set time.start_kyr=1200: ", "from 1000 to -1000 kyr"]);
+    let outcome = refused(&folder, &["short.toml", "--set", "time.start_kyr=5600"]);
+    outcome.says(&["--set time.start_kyr=5600: ", "from 5500 to -100 kyr"]);
 }
 
 /// An integration of so few years that it takes a fraction of a second.
