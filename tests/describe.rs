@@ -61,7 +61,7 @@ fn a_complete_file_is_told_within_100_columns() {
         "6 keys differ",
         "  physics.equatorial_pacific.tilt_m: 60.0 -> 50\n",
         "  time.start_kyr: 0.0 -> 10.14\n",
-        "berger1978",
+        "integrated",
         "constant, co2_ppm = 280.0",
         "280.0 to 280.0 ppm",
         "of the sunlight absorbed",

@@ -147,7 +147,7 @@ pub enum DescribeError {
 }
 
 /// Variable, words, unit, digits, and the keys of the configuration that may give it.
-const FORCING: [(&str, &str, &str, usize, Option<&str>); 8] = [
+const FORCING: [(&str, &str, &str, usize, Option<&str>); 9] = [
     (
         "eccentricity",
         "eccentricity",
@@ -165,6 +165,13 @@ const FORCING: [(&str, &str, &str, usize, Option<&str>); 8] = [
     ),
     ("climatic_precession", "climatic precession", "", 5, None),
     ("co2", "carbon dioxide", "ppm", 1, Some("co2")),
+    (
+        "northern_ice_sheet_edge",
+        "southern edge of land ice",
+        "degrees north",
+        1,
+        Some("land_ice"),
+    ),
     (
         "mask_eccentricity",
         "eccentricity in the mask",

@@ -377,11 +377,10 @@ mod tests {
             "latitude = { from_deg = 80, to_deg = 70, edge_deg = -1 }\n\
              sun_longitude = { from_deg = -5, to_deg = 400, edge_deg = 5 }",
         );
-        assert_eq!(wrong.check(&OrbitData::default()).unwrap_err().len(), 4);
+        let all = |spec: MaskSpec| spec.check(&OrbitData::default()).unwrap_err();
+        assert_eq!(all(wrong).len(), 4);
         let narrow = "latitude = { from_deg = 45, to_deg = 90, edge_deg = 60 }";
-        let narrow = spec(narrow).check(&OrbitData::default());
-        assert_eq!(narrow.unwrap_err().len(), 1);
-        let all = spec("").check(&OrbitData::default());
-        assert_eq!(all.unwrap_err(), [MaskError::Everywhere]);
+        assert_eq!(all(spec(narrow)).len(), 1);
+        assert_eq!(all(spec("")), [MaskError::Everywhere]);
     }
 }
