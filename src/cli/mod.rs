@@ -4,9 +4,13 @@ mod attendant;
 mod bar;
 mod dry_run;
 mod figures;
+mod insolation;
+mod lists;
 mod orbit;
+mod orbit_choice;
 mod run;
 mod signals;
+mod table;
 
 use clap::{Parser, Subcommand};
 use std::io::Write;
@@ -26,6 +30,8 @@ Examples:
     orbicline run configs/last_million_years.toml
   What a run of your own would cost and use:
     orbicline run my.toml --dry-run
+  Insolation at 65N and the June solstice over the last million years:
+    orbicline insolation daily --latitude 65 --sun-longitude 90 --from-kyr 1000 --to-kyr 0 --step-kyr 1
 
 Configurations begin with `extends = \"reference.toml\"` and give only what differs; ages are kyr
 before 1950. The model is for testing hypotheses; it makes no forecasts."
@@ -39,7 +45,9 @@ struct Arguments {
 enum Command {
     /// Run a transient climate into a NetCDF-4 file
     Run(run::RunArguments),
-    /// Compute the orbit from the motion of the planets into a table
+    /// Tabulate or draw insolation: daily, monthly, of seasons, of caloric half-years, annual
+    Insolation(insolation::InsolationArguments),
+    /// Tabulate the orbit against age, or compute it anew from the motion of the planets
     Orbit(orbit::OrbitArguments),
 }
 
@@ -50,7 +58,8 @@ pub fn main() -> ExitCode {
         .collect();
     let outcome = match Arguments::parse().command {
         Command::Run(arguments) => run::run(&arguments, &words),
-        Command::Orbit(arguments) => orbit::run(&arguments),
+        Command::Insolation(arguments) => insolation::run(&arguments, &words),
+        Command::Orbit(arguments) => orbit::run(&arguments, &words),
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,
@@ -83,6 +92,12 @@ enum CliError {
     Single(#[from] crate::experiment::single::SingleError),
     #[error(transparent)]
     Orbit(#[from] crate::experiment::orbit::OrbitCommandError),
+    #[error(transparent)]
+    OrbitTable(#[from] crate::experiment::orbit_table::OrbitTableError),
+    #[error(transparent)]
+    Insolation(#[from] crate::experiment::insolation::InsolationError),
+    #[error(transparent)]
+    Destination(#[from] crate::experiment::destination::DestinationError),
     #[error(transparent)]
     Output(#[from] crate::output::OutputError),
     #[error("stopped: {kept}")]

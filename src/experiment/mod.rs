@@ -1,10 +1,15 @@
 //! From a configuration to results: what the commands do, without printing.
 
+pub mod ages;
 pub mod background;
 mod contents;
+pub mod destination;
 pub mod estimate;
 pub mod follow;
+pub mod insolation;
 pub mod orbit;
+pub mod orbit_source;
+pub mod orbit_table;
 pub mod resume;
 pub mod single;
 pub mod summary;
