@@ -3,10 +3,9 @@
 use super::CliError;
 use super::lists::{Dates, Longitudes, Numbers, dates, longitude, longitudes, numbers};
 use super::orbit_choice::{SolutionName, choice};
-use super::table::{Destination, Say};
+use super::table::Destination;
 use crate::experiment::ages::AgeRange;
 use crate::experiment::insolation::{self, Moments, MonthKind, Quantity, Request};
-use crate::output::Overwrite;
 use clap::{ArgGroup, Args, Subcommand, ValueEnum};
 use std::path::PathBuf;
 
@@ -19,6 +18,8 @@ Examples:
         --from-kyr 1000 --to-kyr 0 --step-kyr 1
   Every month and latitude 127 kyr before 1950 against today, as a NetCDF file:
     orbicline insolation monthly --latitude -90:90:5 --at-kyr 127 --against-kyr 0 --out lig.nc
+  The same as a figure (or .png):
+    orbicline insolation monthly --latitude -90:90:5 --at-kyr 127 --against-kyr 0 --out lig.svg
   Caloric half-years of both 65th parallels:
     orbicline insolation caloric --latitude -65,65 --from-kyr 800 --to-kyr 0 --step-kyr 1
   From the March to the September equinox, with the orbit of an experiment:
@@ -93,15 +94,8 @@ struct CommonArguments {
     /// Solar constant, W m-2 at one semi-major axis [default: 1361, or that of the configuration]
     #[arg(long, value_name = "VALUE", allow_negative_numbers = true)]
     solar_constant_w_m2: Option<f64>,
-    /// File to write, .csv or .nc; without it, text to standard output
-    #[arg(long, value_name = "FILE")]
-    out: Option<PathBuf>,
-    /// Replace the file if it exists
-    #[arg(long)]
-    overwrite: bool,
-    /// Print nothing but errors and what was asked for
-    #[arg(long)]
-    quiet: bool,
+    #[command(flatten)]
+    destination: Destination,
 }
 
 #[derive(Debug, Args)]
@@ -200,18 +194,6 @@ impl CommonArguments {
             (age_kyr, ..) => AgeRange::one(age_kyr.unwrap_or_default()),
         }
     }
-
-    fn destination(&self) -> Destination<'_> {
-        Destination {
-            out: self.out.as_deref(),
-            overwrite: if self.overwrite {
-                Overwrite::Replace
-            } else {
-                Overwrite::Refuse
-            },
-            say: if self.quiet { Say::Nothing } else { Say::Path },
-        }
-    }
 }
 
 pub(super) fn run(arguments: &InsolationArguments, words: &[String]) -> Result<(), CliError> {
@@ -225,7 +207,6 @@ pub(super) fn run(arguments: &InsolationArguments, words: &[String]) -> Result<(
         solar_constant_w_m2: common.solar_constant_w_m2,
         equinox_day,
     };
-    common
-        .destination()
-        .fill(|| Ok(insolation::tabulate(&request, words)?))
+    let table = || Ok(insolation::tabulate(&request, words)?);
+    common.destination.fill(table, insolation::draw)
 }

@@ -3,14 +3,13 @@
 use super::CliError;
 use super::bar::{Show, YearsBar};
 use super::orbit_choice::{SolutionName, choice};
-use super::table::{Destination, Say};
+use super::table::Destination;
 use crate::experiment::ages::AgeRange;
 use crate::experiment::orbit::{self, Integration, IntegrationSummary};
 use crate::experiment::orbit_table;
-use crate::output::Overwrite;
 use clap::{ArgGroup, Args};
 use std::io::Write;
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 
 /// Arguments of `orbicline orbit`.
 #[derive(Debug, Args)]
@@ -24,7 +23,9 @@ Examples:
   The orbit of an experiment, each element from its own source:
     orbicline orbit --config configs/obliquity_only.toml --from-kyr 500 --to-kyr 0 --step-kyr 1
   The table inside this program, computed anew (about two minutes):
-    orbicline orbit --integrate --from-kyr 5500 --to-kyr -100 --out integrated.table",
+    orbicline orbit --integrate --from-kyr 5500 --to-kyr -100 --out integrated.table
+
+With --integrate, FILE ends in .csv or .table (the exact form) and holds every kyr.",
     group = ArgGroup::new("origin"),
     group = ArgGroup::new("edited").multiple(true)
 )]
@@ -52,10 +53,6 @@ pub(super) struct OrbitArguments {
         required_unless_present = "integrate"
     )]
     step_kyr: Option<f64>,
-    /// File to write: .csv or .nc, with --integrate .csv or .table (the exact form), every kyr; without
-    /// it, text to standard output
-    #[arg(long, value_name = "FILE")]
-    out: Option<PathBuf>,
     /// Constants of the integration that differ from configs/orbit_constants.toml (TOML)
     #[arg(long, value_name = "FILE", requires = "integrate")]
     constants: Option<PathBuf>,
@@ -63,33 +60,20 @@ pub(super) struct OrbitArguments {
     /// tide.scale=0.9 for a tide 10 % weaker
     #[arg(long, value_name = "KEY=VALUE", requires = "edited")]
     set: Vec<String>,
-    /// Replace the file if it exists
-    #[arg(long)]
-    overwrite: bool,
-    /// Print nothing but errors and what was asked for
-    #[arg(long)]
-    quiet: bool,
+    #[command(flatten)]
+    destination: Destination,
 }
 
 pub(super) fn run(arguments: &OrbitArguments, words: &[String]) -> Result<(), CliError> {
-    match (&arguments.out, arguments.step_kyr) {
+    match (&arguments.destination.out, arguments.step_kyr) {
         (Some(out), None) => integrate(arguments, out),
-        (out, step_kyr) => tabulate(arguments, step_kyr, out.as_ref(), words),
-    }
-}
-
-fn overwrite(arguments: &OrbitArguments) -> Overwrite {
-    if arguments.overwrite {
-        Overwrite::Replace
-    } else {
-        Overwrite::Refuse
+        (_, step_kyr) => tabulate(arguments, step_kyr, words),
     }
 }
 
 fn tabulate(
     arguments: &OrbitArguments,
     step_kyr: Option<f64>,
-    out: Option<&PathBuf>,
     words: &[String],
 ) -> Result<(), CliError> {
     let ages = AgeRange {
@@ -97,39 +81,28 @@ fn tabulate(
         to_kyr: arguments.to_kyr,
         step_kyr: step_kyr.unwrap_or(1.0),
     };
-    let choice = choice(
-        arguments.solution,
-        arguments.config.as_deref(),
-        &arguments.set,
-    );
-    let destination = Destination {
-        out: out.map(PathBuf::as_path),
-        overwrite: overwrite(arguments),
-        say: if arguments.quiet {
-            Say::Nothing
-        } else {
-            Say::Path
-        },
-    };
-    destination.fill(|| Ok(orbit_table::tabulate(&choice, ages, words)?))
+    let (solution, config) = (arguments.solution, arguments.config.as_deref());
+    let choice = choice(solution, config, &arguments.set);
+    let table = || Ok(orbit_table::tabulate(&choice, ages, words)?);
+    arguments.destination.fill(table, orbit_table::draw)
 }
 
-fn integrate(arguments: &OrbitArguments, out: &std::path::Path) -> Result<(), CliError> {
+fn integrate(arguments: &OrbitArguments, out: &Path) -> Result<(), CliError> {
     let wanted = Integration {
         constants: arguments.constants.clone(),
         edits: arguments.set.clone(),
         from_kyr: arguments.from_kyr,
         to_kyr: arguments.to_kyr,
     };
-    let show = if arguments.quiet {
+    let show = if arguments.destination.quiet {
         Show::Never
     } else {
         Show::OnTerminal
     };
     let mut bar = YearsBar::new(show, "planets");
-    let summary = orbit::integrate(&wanted, out, overwrite(arguments), &mut bar)?;
+    let summary = orbit::integrate(&wanted, out, arguments.destination.overwrite(), &mut bar)?;
     drop(bar);
-    if !arguments.quiet {
+    if !arguments.destination.quiet {
         print(&summary)?;
     }
     Ok(())

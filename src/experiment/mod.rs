@@ -1,6 +1,7 @@
 //! From a configuration to results: what the commands do, without printing.
 
 pub mod ages;
+mod axes_of_figures;
 pub mod background;
 mod contents;
 pub mod destination;

@@ -6,9 +6,13 @@
 //! Source: [`crate::orbit::solution`].
 
 use super::ages::{AgeError, AgeRange};
+use super::axes_of_figures;
+use super::destination::{DestinationError, Drawing};
 use super::orbit_source::{OrbitChoice, OrbitSourceError};
 use crate::orbit::solution::OrbitError;
 use crate::output::table::{Table, TableAxis, TableVariable};
+use crate::report::axis::Axis;
+use crate::report::lines::{Line, LineFigure, Panel};
 
 /// What the numbers mean.
 const CONVENTIONS: &str = "Ages are kyr before 1950 CE, negative after it. Perihelion is the \
@@ -62,6 +66,43 @@ pub fn tabulate(
         axes: vec![(TableAxis::Age, ages_kyr)],
         variables: variables.into(),
     })
+}
+
+/// Draws eccentricity, obliquity and climatic precession against age, as SVG.
+///
+/// # Errors
+/// When there is one age only.
+pub fn draw(table: &Table, drawing: Drawing) -> Result<String, DestinationError> {
+    let (x, places) = axes_of_figures::axis(table, TableAxis::Age, drawing);
+    if places.len() < 2 {
+        return Err(DestinationError::Figure {
+            problem: "one age is no course; give a range of ages".to_owned(),
+        });
+    }
+    let drawn = [
+        ("eccentricity", "Eccentricity"),
+        ("obliquity", "Obliquity (°)"),
+        ("climatic_precession", "Precession e sin \u{03d6}"),
+    ];
+    let panel = |(name, label): (&str, &str)| {
+        let variable = table.variables.iter().find(|v| v.name == name)?;
+        Some(Panel {
+            name: String::new(),
+            y: Axis::numbers(label, Axis::around(variable.values.iter().copied())),
+            lines: vec![Line {
+                name: String::new(),
+                values: variable.values.clone(),
+            }],
+        })
+    };
+    Ok(LineFigure {
+        about: axes_of_figures::about(table),
+        width_mm: drawing.width_mm,
+        x,
+        places,
+        panels: drawn.into_iter().filter_map(panel).collect(),
+    }
+    .svg())
 }
 
 /// The columns, still empty.

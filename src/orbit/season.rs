@@ -98,25 +98,33 @@ fn cosine_integral(obliquity_deg: f64, latitude_deg: f64, from_deg: f64, to_deg:
     let cosine = |longitude: f64| daily_mean_cosine(latitude_deg, sin_obliquity * longitude.sin());
     let (from, to) = (from_deg.to_radians(), to_deg.to_radians());
     let mut bounds = vec![from];
-    let kink = latitude_deg.to_radians().cos() / sin_obliquity;
-    if kink.abs() < 1.0 {
-        let kink = kink.asin();
-        let first = (from / PI).floor() - 1.0;
-        // Kinks at kink and pi - kink, and half a turn from them.
-        let mut half_turn = first * PI;
-        while half_turn < to {
-            for place in [half_turn + kink, half_turn + PI - kink] {
-                if from < place && place < to {
-                    bounds.push(place);
-                }
-            }
-            half_turn += PI;
-        }
-        bounds.sort_by(f64::total_cmp);
-    }
+    bounds.extend(kinks(latitude_deg, sin_obliquity, from, to));
+    bounds.sort_by(f64::total_cmp);
     bounds.push(to);
     let pieces = bounds.windows(2);
     pieces.map(|b| double_exponential(b[0], b[1], cosine)).sum()
+}
+
+/// Longitudes within an interval, rad, where the daily mean is not smooth: where polar night or day
+/// begins or ends; and near the polar circle the solstices, where that happens or almost happens.
+fn kinks(latitude_deg: f64, sin_obliquity: f64, from: f64, to: f64) -> Vec<f64> {
+    let sine = latitude_deg.to_radians().cos() / sin_obliquity;
+    let mut within = Vec::new();
+    if sine.is_finite() && sine < 1.0 {
+        within.extend([sine.asin(), PI - sine.asin()]);
+    }
+    if (0.8..1.25).contains(&sine) {
+        within.push(0.5 * PI);
+    }
+    // The same in every half of a turn.
+    let mut places = Vec::new();
+    let mut half_turn = (from / PI).floor() * PI;
+    while half_turn < to {
+        places.extend(within.iter().map(|place| half_turn + place));
+        half_turn += PI;
+    }
+    places.retain(|place| from < *place && *place < to);
+    places
 }
 
 /// The caloric half-years at a latitude.
@@ -215,3 +223,7 @@ fn above(level: f64, nodes: &[f64], daily: &impl Fn(f64) -> f64) -> Vec<[f64; 2]
 
 /// Halvings of an arc of one degree; the mean of a half-year depends on the square of what is left.
 const CROSSING_HALVINGS: usize = 24;
+
+#[cfg(test)]
+#[path = "season_tests.rs"]
+mod tests;

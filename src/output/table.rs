@@ -94,6 +94,15 @@ impl Table {
         self.axes.iter().map(|(_, values)| values.len()).product()
     }
 
+    /// The value of a variable where `place` says the number along each axis.
+    pub fn value(&self, variable: &TableVariable, place: impl Fn(TableAxis) -> usize) -> f64 {
+        let at = variable
+            .axes
+            .iter()
+            .fold(0, |at, &axis| at * self.along(axis).len() + place(axis));
+        variable.values[at]
+    }
+
     /// Writes the table as text.
     ///
     /// # Errors

@@ -9,8 +9,10 @@
 
 mod columns;
 mod error;
+mod figure;
 
 pub use error::InsolationError;
+pub use figure::draw;
 
 use super::ages::AgeRange;
 use super::orbit_source::{OrbitChoice, OrbitSource};

@@ -10,7 +10,7 @@ use std::io::{self, BufWriter, Write};
 use std::path::Path;
 
 use super::super::error::{Result, io_at};
-use super::{Table, TableAxis, TableVariable};
+use super::{Table, TableAxis};
 use crate::grid::calendar::month_and_day;
 
 /// What NetCDF files must say by convention, and tells a reader of text nothing.
@@ -39,16 +39,18 @@ pub(super) fn write(table: &Table, out: &mut dyn Write) -> io::Result<()> {
         .chain(table.variables.iter().map(|v| v.column))
         .collect();
     writeln!(out, "{}", names.join(","))?;
-    let strides: Vec<_> = table.variables.iter().map(|v| strides(table, v)).collect();
     let mut at = vec![0; table.axes.len()];
     for _ in 0..table.rows() {
         for (i, (axis, values)) in table.axes.iter().enumerate() {
             let comma = if i == 0 { "" } else { "," };
             write!(out, "{comma}{}", shown(*axis, values[at[i]]))?;
         }
-        for (variable, strides) in table.variables.iter().zip(&strides) {
-            let place: usize = at.iter().zip(strides).map(|(a, s)| a * s).sum();
-            match variable.values[place] {
+        let number = |axis: TableAxis| {
+            let own = table.axes.iter().position(|(other, _)| *other == axis);
+            own.map_or(0, |i| at[i])
+        };
+        for variable in &table.variables {
+            match table.value(variable, number) {
                 value if value.is_nan() => write!(out, ",")?,
                 value => write!(out, ",{value:.*}", variable.decimals)?,
             }
@@ -68,20 +70,6 @@ fn advance(at: &mut [usize], table: &Table) {
         }
         *index = 0;
     }
-}
-
-/// Distance of neighbours along each axis of the table in the values of a variable; 0 along axes
-/// that it does not vary with.
-fn strides(table: &Table, variable: &TableVariable) -> Vec<usize> {
-    let mut size = 1;
-    let mut strides = vec![0; table.axes.len()];
-    for (stride, (axis, values)) in strides.iter_mut().zip(&table.axes).rev() {
-        if variable.axes.contains(axis) {
-            *stride = size;
-            size *= values.len();
-        }
-    }
-    strides
 }
 
 fn column(axis: TableAxis) -> &'static str {
