@@ -55,14 +55,14 @@ impl Rows {
     }
 }
 
-/// Numbers of a table kept with the validation cases.
+/// Numbers of a table kept with the validation cases, up to the first column that holds none.
 fn published(text: &str) -> Vec<Vec<f64>> {
     let lines = text
         .lines()
         .filter(|line| !line.starts_with('#') && !line.is_empty());
     let numbers = |line: &str| {
         line.split(',')
-            .map(|n| n.trim().parse().expect("a number"))
+            .map_while(|n| n.trim().parse().ok())
             .collect()
     };
     lines.map(numbers).collect()
@@ -80,9 +80,9 @@ const AT_0: &str = "--solution berger1978 --at-kyr 0";
 
 #[test]
 fn published_monthly_table_of_the_present() {
-    // PMIP1 documentation appendix, S0 = 1365 W/m2, months of 365 days. Its means are of daily values
-    // at midday, ours of all moments: the tolerance is its 0.015 W/m2 and 0.02 for that, more where the
-    // sun rises or sets for half of the year.
+    // PMIP1 documentation appendix, S0 = 1365 W/m2, digits printed to 0.01: tolerance 0.015 W/m2. Its
+    // means are of daily values, ours of all moments: 0.05 at the poles, where the sun rises and sets in
+    // the middle of a month.
     let folder = Folder::new();
     let words =
         format!("insolation monthly --latitude -90:90:10 {AT_0} --solar-constant-w-m2 1365");
@@ -101,8 +101,9 @@ fn published_monthly_table_of_the_present() {
             };
             let found = (0..means.len()).find(here).expect("month and latitude");
             let error = (means[found] - expected).abs();
+            let allowed = if row[0].abs() > 89.0 { 0.05 } else { 0.015 };
             assert!(
-                error < 0.1,
+                error < allowed,
                 "{} {}: {} {expected}",
                 row[0],
                 n + 1,
@@ -150,15 +151,15 @@ fn published_caloric_half_years() {
 
 #[test]
 fn published_solstices_and_annual_means() {
-    // Closed forms by a general library, S0 = 1361, orbit of 1950; tolerance 0.003 for the rounding of
-    // the published orbit.
+    // Closed forms by a general library, S0 = 1361, orbit of 1950. The published orbit is rounded to
+    // 0.001 degrees of obliquity: up to 0.009 W/m2 at 18 W/m2 a degree.
     let folder = Folder::new();
     let words = "insolation daily --latitude 65 --sun-longitude 0,90,180,270";
     let daily = Rows::of(&run(&folder, &format!("{words} {AT_0}")));
     close(
         &daily.column("insolation_w_m2"),
         &[184.469, 477.973, 181.913, 3.038],
-        3e-3,
+        9e-3,
     );
     let words = format!("insolation annual --latitude 0,15,30,45,60,65,75,90 {AT_0}");
     let annual = Rows::of(&run(&folder, &words)).column("insolation_w_m2");

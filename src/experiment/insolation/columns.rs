@@ -15,7 +15,7 @@ use crate::output::table::{TableAxis, TableVariable};
 use crate::units::YEAR_DAYS;
 
 /// CF standard name of insolation.
-const INSOLATION: Option<&str> = Some("toa_incoming_shortwave_flux");
+const INSOLATION: &str = "toa_incoming_shortwave_flux";
 /// MJ m-2 of a W m-2 that lasts a year.
 const MJ_PER_W_YEAR: f64 = YEAR_DAYS * 86_400.0 / 1e6;
 
@@ -97,87 +97,97 @@ fn axes(quantity: &Quantity) -> Vec<TableAxis> {
     age.chain(season).chain([TableAxis::Latitude]).collect()
 }
 
-fn columns(quantity: &Quantity) -> Vec<Column> {
-    let axes = axes(quantity);
-    let of = |name, column, long_name: &str, units, decimals| TableVariable {
+/// An empty variable along the age, the season and the latitude of a quantity.
+fn variable(
+    quantity: &Quantity,
+    [name, column, units]: [&'static str; 3],
+    decimals: usize,
+    long_name: &str,
+) -> TableVariable {
+    TableVariable {
         name,
         column,
         long_name: long_name.to_owned(),
         standard_name: None,
         units,
         decimals,
-        axes: axes.clone(),
+        axes: axes(quantity),
         values: Vec::new(),
-    };
-    let sunlight = |long_name: &str| {
-        let mut variable = of("insolation", "insolation_w_m2", long_name, "W m-2", 4);
-        variable.standard_name = INSOLATION;
-        (variable, Against::Subtracted)
-    };
-    let length = |long_name: &str, own: &[TableAxis]| {
-        let mut variable = of("length", "length_day", long_name, "day", 4);
-        variable.axes = own.to_vec();
-        (variable, Against::Kept)
-    };
+    }
+}
+
+/// A column of insolation.
+fn sunlight(quantity: &Quantity, [name, column]: [&'static str; 2], long_name: &str) -> Column {
+    let mut variable = variable(quantity, [name, column, "W m-2"], 4, long_name);
+    variable.standard_name = Some(INSOLATION);
+    (variable, Against::Subtracted)
+}
+
+/// A column that has the same value at all latitudes, and the same against any other age.
+fn kept(quantity: &Quantity, names: [&'static str; 3], long_name: &str) -> Column {
+    let mut variable = variable(quantity, names, 4, long_name);
+    variable.axes.pop();
+    (variable, Against::Kept)
+}
+
+fn columns(quantity: &Quantity) -> Vec<Column> {
+    let insolation = |long_name| sunlight(quantity, ["insolation", "insolation_w_m2"], long_name);
+    let length = |long_name| kept(quantity, ["length", "length_day", "day"], long_name);
     match quantity {
-        Quantity::Daily(Moments::SunLongitudes(_)) => vec![sunlight("daily mean insolation")],
-        Quantity::Daily(Moments::Dates(_)) => {
-            let name = "true longitude of the Sun at noon";
-            let mut place = of("sun_longitude", "sun_longitude_deg", name, "degree", 4);
-            place.axes.pop();
-            vec![sunlight("daily mean insolation"), (place, Against::Kept)]
-        }
+        Quantity::Daily(Moments::SunLongitudes(_)) => vec![insolation("daily mean insolation")],
+        Quantity::Daily(Moments::Dates(_)) => vec![
+            insolation("daily mean insolation"),
+            kept(
+                quantity,
+                ["sun_longitude", "sun_longitude_deg", "degree"],
+                "true longitude of the Sun at noon",
+            ),
+        ],
         Quantity::Monthly(_) => vec![
-            sunlight("monthly mean insolation"),
-            length("length of the month", &[TableAxis::Age, TableAxis::Month]),
+            insolation("monthly mean insolation"),
+            length("length of the month"),
         ],
         Quantity::Season(_) => {
+            let names = ["energy", "energy_mj_m2", "MJ m-2"];
             let name = "energy of sunlight between two longitudes of the Sun";
             vec![
-                sunlight("mean insolation between two longitudes of the Sun"),
-                (
-                    of("energy", "energy_mj_m2", name, "MJ m-2", 4),
-                    Against::Subtracted,
-                ),
-                length(
-                    "time between the two longitudes of the Sun",
-                    &[TableAxis::Age],
-                ),
+                insolation("mean insolation between two longitudes of the Sun"),
+                (variable(quantity, names, 4, name), Against::Subtracted),
+                length("time between the two longitudes of the Sun"),
             ]
         }
-        Quantity::Annual => vec![sunlight("annual mean insolation")],
-        Quantity::Caloric => {
-            let half = |name, column, long_name| {
-                let mut variable = of(name, column, long_name, "W m-2", 4);
-                variable.standard_name = INSOLATION;
-                (variable, Against::Subtracted)
-            };
-            let bound =
-                |name, column, long_name| (of(name, column, long_name, "degree", 3), Against::Kept);
-            vec![
-                half(
-                    "summer_half_insolation",
-                    "summer_half_w_m2",
-                    "mean insolation of the summer caloric half-year",
-                ),
-                half(
-                    "winter_half_insolation",
-                    "winter_half_w_m2",
-                    "mean insolation of the winter caloric half-year",
-                ),
-                bound(
-                    "summer_half_begin",
-                    "summer_half_begin_deg",
-                    "longitude of the Sun at the beginning of the summer caloric half-year",
-                ),
-                bound(
-                    "summer_half_end",
-                    "summer_half_end_deg",
-                    "longitude of the Sun at the end of the summer caloric half-year",
-                ),
-            ]
-        }
+        Quantity::Annual => vec![insolation("annual mean insolation")],
+        Quantity::Caloric => caloric_columns(quantity),
     }
+}
+
+fn caloric_columns(quantity: &Quantity) -> Vec<Column> {
+    let bound = |name, column, long_name| {
+        let names = [name, column, "degree"];
+        (variable(quantity, names, 3, long_name), Against::Kept)
+    };
+    vec![
+        sunlight(
+            quantity,
+            ["summer_half_insolation", "summer_half_w_m2"],
+            "mean insolation of the summer caloric half-year",
+        ),
+        sunlight(
+            quantity,
+            ["winter_half_insolation", "winter_half_w_m2"],
+            "mean insolation of the winter caloric half-year",
+        ),
+        bound(
+            "summer_half_begin",
+            "summer_half_begin_deg",
+            "longitude of the Sun at the beginning of the summer caloric half-year",
+        ),
+        bound(
+            "summer_half_end",
+            "summer_half_end_deg",
+            "longitude of the Sun at the end of the summer caloric half-year",
+        ),
+    ]
 }
 
 /// The values of all columns at one age: first along `moments`, then along latitude.
@@ -219,19 +229,22 @@ pub(super) fn compute(
             ]
         }
         Quantity::Annual => vec![at_latitudes(&|l| annual_mean_w_m2(elements, s0, l))],
-        Quantity::Caloric => {
-            let mut columns = vec![Vec::new(); 4];
-            for &latitude in latitudes_deg {
-                let halves = caloric_halves(elements, s0, latitude);
-                let [begin, end] = halves.summer_deg.unwrap_or([f64::NAN; 2]);
-                let values = [halves.summer_w_m2, halves.winter_w_m2, begin, end];
-                for (column, value) in columns.iter_mut().zip(values) {
-                    column.push(value);
-                }
-            }
-            columns
+        Quantity::Caloric => caloric(sunlight, elements, latitudes_deg),
+    }
+}
+
+/// Means of both half-years, and the bounds of the first.
+fn caloric(sunlight: &Sunlight, elements: &Elements, latitudes_deg: &[f64]) -> Vec<Vec<f64>> {
+    let mut columns = vec![Vec::new(); 4];
+    for &latitude in latitudes_deg {
+        let halves = caloric_halves(elements, sunlight.solar_constant_w_m2, latitude);
+        let [begin, end] = halves.summer_deg.unwrap_or([f64::NAN; 2]);
+        let values = [halves.summer_w_m2, halves.winter_w_m2, begin, end];
+        for (column, value) in columns.iter_mut().zip(values) {
+            column.push(value);
         }
     }
+    columns
 }
 
 /// Means over the months, exact in time, and their lengths.

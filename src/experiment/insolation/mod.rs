@@ -222,29 +222,32 @@ fn about(
     sunlight: &Sunlight,
     command: &[String],
 ) -> Vec<(String, String)> {
-    let mut comment = format!(
-        "Insolation on a horizontal surface at the top of the atmosphere, means over the whole day, for \
-         a solar constant of {} W m-2 at one semi-major axis. Ages are kyr before 1950 CE, negative \
-         after it. Longitudes of the Sun are true ones from the March equinox: 90 is the June solstice, \
-         270 the December solstice. {}",
-        sunlight.solar_constant_w_m2,
+    let mut sentences = vec![
+        format!(
+            "Insolation on a horizontal surface at the top of the atmosphere, means over the whole day, \
+             for a solar constant of {} W m-2 at one semi-major axis. Ages are kyr before 1950 CE, \
+             negative after it. Longitudes of the Sun are true ones from the March equinox: 90 is the \
+             June solstice, 270 the December solstice.",
+            sunlight.solar_constant_w_m2
+        ),
         columns::meaning(&request.quantity),
-    );
+    ];
     if matches!(
         request.quantity,
         Quantity::Monthly(_) | Quantity::Daily(Moments::Dates(_))
     ) {
-        let day = sunlight.months.equinox_fraction() * CALENDAR_DAYS;
-        comment.push_str(&format!(
-            " The March equinox is held {day:.3} days after 1 January 0 h of the 365-day calendar \
-             (79.5: 21 March noon)."
+        sentences.push(format!(
+            "The March equinox is held {:.3} days after 1 January 0 h of the 365-day calendar (79.5: 21 \
+             March noon).",
+            sunlight.months.equinox_fraction() * CALENDAR_DAYS
         ));
     }
     if let Some(age_kyr) = request.against_kyr {
-        comment.push_str(&format!(
-            " Insolation and energy are differences from those of {age_kyr} kyr before 1950."
+        sentences.push(format!(
+            "Insolation and energy are differences from those of {age_kyr} kyr before 1950."
         ));
     }
+    let comment = sentences.join(" ");
     let title = format!("Insolation: {}", columns::title(&request.quantity));
     source.about(&title, &comment, command)
 }
