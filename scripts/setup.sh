@@ -4,6 +4,7 @@
 #   scripts/setup.sh        installs what is missing; does and prints nothing if nothing is
 #   scripts/setup.sh env    prints HDF5_DIR=... for the build, where the serial HDF5 of Debian and
 #                           its kin is installed; nothing elsewhere, or when HDF5_DIR is set
+#   scripts/setup.sh readers    installs what `make readers` needs: ncdump, nccopy, venv of Python
 #
 # On machines with an MPI flavour of HDF5 the default search finds that one first, so the folder
 # of the serial flavour is named explicitly.
@@ -62,8 +63,15 @@ if ! command -v cargo >/dev/null 2>&1; then
 fi
 
 missing=
-command -v cc >/dev/null 2>&1 || missing="gcc libc6-dev "
-has_hdf5 || missing="${missing}libhdf5-dev"
+purpose='; or set HDF5_DIR to an HDF5 folder'
+if [ "${1:-}" = readers ]; then
+    purpose=
+    { command -v ncdump && command -v nccopy; } >/dev/null 2>&1 || missing="netcdf-bin "
+    python3 -c 'import ensurepip, venv' >/dev/null 2>&1 || missing="${missing}python3-venv"
+else
+    command -v cc >/dev/null 2>&1 || missing="gcc libc6-dev "
+    has_hdf5 || missing="${missing}libhdf5-dev"
+fi
 [ -n "$missing" ] || exit 0
 
 as_root=
@@ -80,6 +88,5 @@ if command -v apt-get >/dev/null 2>&1; then
         exit 0
     fi
 fi
-printf 'setup: please install (names as in Debian): %s; or set HDF5_DIR to an HDF5 folder\n' \
-    "$missing" >&2
+printf 'setup: please install (names as in Debian): %s%s\n' "$missing" "$purpose" >&2
 exit 1

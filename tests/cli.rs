@@ -182,7 +182,7 @@ fn steps_too_long_for_a_cold_planet_are_refused_and_not_believed() {
     let folder = Folder::new();
     let edits = [
         "co2.co2_ppm=20",
-        "grid.steps_per_year=32",
+        "grid.steps_per_year=24",
         "time.spin_up.seasonal_yr=60",
     ];
     let mut words = vec!["short.toml"];
@@ -312,7 +312,7 @@ fn a_dry_run_prints_a_configuration_that_makes_the_same_run_and_writes_nothing()
     for fragment in [
         "# 10.140 to 10.000 kyr before 1950, 70 records of 2 years, 140 seasonal years (M = 1)",
         "# estimate: ",
-        " years/s, file ",
+        " years of orbit/s as busy as the machine is now, file ",
         "memory ",
         "# output dry.nc\n",
         "title = \"A short run\"",
@@ -391,4 +391,54 @@ fn the_log_has_what_happened_and_v_says_it_as_well() {
         .says(&["records, to ", "are kept in segments beside bad.nc"]);
     let log = String::from_utf8(folder.read("bad.nc.log")).expect("UTF-8");
     assert!(log.contains("error: at "), "{log}");
+}
+
+#[test]
+fn a_dot_in_the_name_of_a_configuration_is_part_of_the_name() {
+    let folder = Folder::new();
+    for name in ["co2_0.5", "co2_0.7"] {
+        folder.write(&format!("{name}.toml"), SHORT);
+        let file = format!("{name}.toml");
+        assert!(folder.orbicline(&["run", &file, "--quiet"]).ok);
+        assert!(folder.path(&format!("out/{name}.nc")).exists(), "{name}");
+    }
+}
+
+#[test]
+fn files_of_others_beside_the_output_are_neither_used_nor_deleted() {
+    let folder = Folder::new();
+    folder.write("Cargo.lock", "somebody's");
+    let outcome = folder.orbicline(&["run", "short.toml", "--out", "Cargo"]);
+    outcome.says(&["Cargo.lock", "choose another output"]);
+    assert_eq!(folder.read("Cargo.lock"), b"somebody's");
+    folder.write("run.nc.tmp", "somebody's");
+    let words = [
+        "run",
+        "short.toml",
+        "--out",
+        "run.nc",
+        "--overwrite",
+        "--quiet",
+    ];
+    assert!(folder.orbicline(&words).ok);
+    assert_eq!(folder.read("run.nc.tmp"), b"somebody's");
+    let long = format!("{}.nc", "n".repeat(245));
+    folder
+        .orbicline(&["run", "short.toml", "--out", &long])
+        .says(&["name"]);
+    folder
+        .orbicline(&["run", "short.toml", "--out", "newdir/"])
+        .says(&["it is a folder"]);
+}
+
+#[test]
+fn a_calendar_needs_only_what_differs() {
+    let folder = Folder::new();
+    let text = format!("{SHORT}\n[calendar]\nmonths = \"fixed_angle\"\n");
+    folder.write("angle.toml", &text);
+    let outcome = folder.orbicline(&["run", "angle.toml", "--dry-run"]);
+    assert!(
+        outcome.ok && outcome.out.contains("equinox_day = 79.5"),
+        "{outcome:?}"
+    );
 }

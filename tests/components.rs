@@ -16,7 +16,7 @@ mod reference;
 mod spoiled;
 
 use accounts::accounts;
-use checks::{books, metadata, restores, shapes, stores};
+use checks::{books, metadata, restores, shapes, stores, weights};
 use orbicline::config::run::{Built, Experiment};
 use orbicline::model::Model;
 use orbicline::physics::Component;
@@ -70,6 +70,7 @@ fn messages(experiment: &Experiment, fault: Fault, slow_years: f64) -> Vec<Strin
     }
     found.extend(books(model.components()));
     found.extend(shapes(model.components(), experiment));
+    found.extend(weights(model.components()));
     found.extend(metadata(model.drive().sources(), model.components()));
     found.extend(restores(model.components(), fresh));
     found
@@ -93,7 +94,7 @@ fn every_component_of_the_list_is_there() {
 fn conserves_every_component_keeps_books_shapes_metadata_and_state() {
     for edits in [
         &[][..],
-        &["grid.bands=72", "calendar.kind=fixed_angle"],
+        &["grid.bands=72", "calendar.months=fixed_angle"],
         &["physics.ocean_column.evolution=frozen"],
     ] {
         let experiment = reference::experiment(edits);

@@ -35,8 +35,8 @@ fn apart(a: &ArrayD<f64>, b: &ArrayD<f64>) -> f64 {
 
 #[test]
 fn published_months_of_fixed_angle_are_in_the_file_and_the_year_is_the_same() {
-    let calendar = "calendar={kind=\"fixed_angle\",equinox_day=80.5}";
-    let angle = run(&[&THEN[..], &[calendar]].concat());
+    let angle = ["calendar.months=fixed_angle", "calendar.equinox_day=80.5"];
+    let angle = run(&[&THEN[..], &angle].concat());
     let length = run(&[&THEN[..], &["calendar.equinox_day=80.5"]].concat());
     // Month lengths of 127 ka in a 365-day year, computed with a general library from Kepler's
     // equation (validation/orbit/month_lengths.csv); the last record is a year off.

@@ -200,7 +200,7 @@ fn another_configuration_or_version_is_refused_with_the_difference_named() {
     ]
     .concat();
     folder.orbicline(&other).says(&[
-        "killed.nc cannot go on",
+        "killed.nc.seg0000.nc cannot go on",
         "co2.co2_ppm was 280.0, is now 300",
         "grid.bands was 36, is now 72",
         "--overwrite",
@@ -236,7 +236,7 @@ fn whatever_a_kill_left_behind_the_run_goes_on() {
     // Killed while a segment or the merged file was written.
     stopped_by(&folder, &["run", "long.toml", "--out", "killed.nc"], "TERM");
     folder.write("killed.nc.seg0001.tmp", "half a segment");
-    folder.write("killed.nc.tmp", "half a file");
+    folder.write("killed.nc.merging.tmp", "half a file");
     let kept = segments(&folder);
     for name in &kept {
         copy(name, &format!("kept.{name}")).expect("a copy");
@@ -285,6 +285,91 @@ fn an_older_file_is_replaced_only_when_that_is_asked_for() {
         .says(&["killed.nc exists already", "--overwrite"]);
     assert!(!segments(&folder).is_empty(), "segments are gone");
     let outcome = folder.orbicline(&[&words[..], &["--resume"]].concat());
+    assert!(outcome.ok, "{outcome:?}");
+    assert_eq!(bits_of_age(&folder.path("killed.nc")), 200);
+}
+
+/// A run stopped when all but the last segment are there; names of the segments.
+fn nearly_done(folder: &Folder) -> Vec<String> {
+    let mut words = vec!["run", "long.toml", "--out", "killed.nc", "--quiet"];
+    words.extend(["--threads", "1"]);
+    let mut child = start(folder, &words);
+    let since = Instant::now();
+    while segments(folder).len() < 3 && since.elapsed() < Duration::from_mins(1) {
+        std::thread::sleep(Duration::from_millis(2));
+    }
+    child.kill().expect("a kill");
+    child.wait().expect("an end");
+    segments(folder)
+}
+
+#[test]
+fn segments_that_do_not_belong_there_are_refused_before_anything_is_computed() {
+    let folder = folder();
+    let names = nearly_done(&folder);
+    assert!(names.len() >= 3, "{names:?}");
+    let at = |n: usize| folder.path(&format!("killed.nc.seg{n:04}.nc"));
+    let keep: Vec<_> = (0..3)
+        .map(|n| std::fs::read(at(n)).expect("a segment"))
+        .collect();
+    let put = |n: usize, bytes: &[u8]| std::fs::write(at(n), bytes).expect("a segment");
+    // Two of them swapped.
+    put(0, &keep[1]);
+    put(1, &keep[0]);
+    folder
+        .orbicline(&RESUME)
+        .says(&["killed.nc.seg0000.nc does not hold the records"]);
+    // One twice.
+    put(0, &keep[0]);
+    put(1, &keep[2]);
+    folder
+        .orbicline(&RESUME)
+        .says(&["killed.nc.seg0001.nc does not hold the records"]);
+    // One of another run.
+    let words = [
+        "run",
+        "long.toml",
+        "--out",
+        "other.nc",
+        "--quiet",
+        "--set",
+        "co2.co2_ppm=400",
+    ];
+    assert!(folder.orbicline(&words).ok);
+    put(1, &folder.read("other.nc"));
+    folder
+        .orbicline(&RESUME)
+        .says(&["killed.nc.seg0001.nc", "co2.co2_ppm was 400, is now 280.0"]);
+    // One cut short, and one whose state was changed.
+    put(1, &keep[1][..keep[1].len() / 2]);
+    folder
+        .orbicline(&RESUME)
+        .says(&["killed.nc.seg0001.nc is damaged", "say --resume again"]);
+    put(1, &keep[1]);
+    let file = hdf5::File::open_rw(at(2)).expect("a segment");
+    let state = file.dataset("restart_state").expect("a state");
+    let mut numbers = state.read_raw::<f64>().expect("numbers");
+    numbers[0] *= 1.0 + f64::EPSILON;
+    state.write_raw(&numbers).expect("numbers");
+    drop((state, file));
+    for name in segments(&folder).iter().skip(3) {
+        std::fs::remove_file(folder.path(name)).expect("a segment to remove");
+    }
+    folder
+        .orbicline(&RESUME)
+        .says(&["killed.nc.seg0002.nc", "SHA-256"]);
+    // With what belongs there the run goes on.
+    put(2, &keep[2]);
+    let outcome = folder.orbicline(&RESUME);
+    assert!(outcome.ok, "{outcome:?}");
+    assert_eq!(bits(&folder.path("killed.nc")), in_one_go(&folder).0);
+}
+
+#[test]
+fn resume_with_overwrite_begins_anew_over_another_result() {
+    let folder = folder();
+    folder.write("killed.nc", "an earlier result");
+    let outcome = folder.orbicline(&[&RESUME[..], &["--overwrite"]].concat());
     assert!(outcome.ok, "{outcome:?}");
     assert_eq!(bits_of_age(&folder.path("killed.nc")), 200);
 }

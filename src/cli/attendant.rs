@@ -4,9 +4,9 @@ use super::bar::{Bar, Show};
 use super::signals::Signals;
 use crate::config::provenance::{COMMIT, VERSION};
 use crate::experiment::follow::{Event, Follower};
-use crate::experiment::single::{Begin, Destination};
+use crate::experiment::single::Destination;
 use crate::output::OutputError;
-use crate::output::journal::{Earlier, Journal};
+use crate::output::journal::Journal;
 use std::io::{IsTerminal, Write};
 use std::ops::ControlFlow;
 
@@ -26,7 +26,6 @@ pub(super) struct Attendant {
     voice: Voice,
     bar: Bar,
     journal: Journal,
-    earlier: Earlier,
     command: String,
     signals: Signals,
 }
@@ -49,10 +48,6 @@ impl Attendant {
             voice,
             bar: Bar::new(show),
             journal: Journal::beside(&destination.path),
-            earlier: match destination.begin {
-                Begin::Anew => Earlier::Replace,
-                Begin::GoOn => Earlier::Keep,
-            },
             command: command.to_owned(),
             signals: Signals::listen()?,
         })
@@ -70,7 +65,7 @@ impl Attendant {
     }
 
     fn open_log(&mut self) {
-        let opened = self.journal.open(self.earlier);
+        let opened = self.journal.open();
         self.told_trouble(opened);
         let command = self.command.clone();
         self.log(&format!("{command}\nOrbicline {VERSION} ({COMMIT})"));

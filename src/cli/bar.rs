@@ -36,8 +36,9 @@ impl Bar {
 
     /// The run begins.
     pub(super) fn begin(&mut self, plan: &Plan) {
-        self.bar.set_length(whole(plan.total_yr()));
+        // The style first: a length alone draws the bar of the library.
         self.bar.set_style(style());
+        self.bar.set_length(whole(plan.total_yr()));
         self.bar.set_message("spinning up");
         self.bar.tick();
     }
@@ -136,10 +137,17 @@ fn whole(years: f64) -> u64 {
 fn style() -> ProgressStyle {
     let rate = |state: &ProgressState, w: &mut dyn Write| {
         // Formatting into a buffer in memory cannot fail.
-        let _ = write!(w, "{:.0} years/s", state.per_sec());
+        // Nothing is known before the first years have passed.
+        let _ = match state.per_sec() {
+            rate if rate >= 1.0 => write!(w, "{rate:.0} years/s"),
+            _ => Ok(()),
+        };
     };
     let left = |state: &ProgressState, w: &mut dyn Write| {
-        let _ = write!(w, "{} left", HumanDuration(state.eta()));
+        let _ = match state.per_sec() {
+            rate if rate >= 1.0 => write!(w, "{} left", HumanDuration(state.eta())),
+            _ => Ok(()),
+        };
     };
     ProgressStyle::with_template("{msg} [{wide_bar}] {percent:>3} %  {rate}  {left}")
         .unwrap_or_else(|_| ProgressStyle::default_bar())

@@ -23,7 +23,7 @@ pub(super) fn print(
     writeln!(out, "# {plan}")?;
     writeln!(
         out,
-        "# before it a spin-up of {} seasonal years with the column {} times faster, and {} more",
+        "# before it a spin-up: {} seasonal years with the column {} times faster, then {} with nothing faster",
         spin_up.seasonal_yr, spin_up.slow_years_per_seasonal_year, spin_up.settling_yr
     )?;
     writeln!(out, "# {estimate}")?;

@@ -124,8 +124,9 @@ struct EquinoxArguments {
 #[derive(Debug, Args)]
 struct MonthlyArguments {
     /// Months of fixed length, or of the seasons (fixed angle) that they have in 1950
-    #[arg(long, value_name = "KIND", default_value = "fixed-length")]
-    months: MonthName,
+    /// [default: fixed-length, or those of the configuration]
+    #[arg(long, value_name = "KIND")]
+    months: Option<MonthName>,
     #[command(flatten)]
     equinox: EquinoxArguments,
     #[command(flatten)]
@@ -151,34 +152,45 @@ struct SeasonArguments {
 }
 
 impl QuantityCommand {
-    /// Quantity, date of the equinox, and what all have in common.
-    fn parts(&self) -> (Quantity, Option<f64>, &CommonArguments) {
+    fn quantity(&self) -> Quantity {
         match self {
-            Self::Daily(daily) => {
-                let moments = match (&daily.sun_longitude, &daily.date) {
-                    (Some(Longitudes(list)), _) => Moments::SunLongitudes(list.clone()),
-                    (None, dates) => {
-                        let days = dates.as_ref().map(|Dates(days)| days.clone());
-                        Moments::Dates(days.unwrap_or_default())
-                    }
-                };
-                let equinox_day = daily.equinox.equinox_day;
-                (Quantity::Daily(moments), equinox_day, &daily.common)
-            }
-            Self::Monthly(monthly) => {
-                let kind = match monthly.months {
-                    MonthName::FixedLength => MonthKind::FixedLength,
-                    MonthName::FixedAngle => MonthKind::FixedAngle,
-                };
-                let equinox_day = monthly.equinox.equinox_day;
-                (Quantity::Monthly(kind), equinox_day, &monthly.common)
-            }
-            Self::Caloric(common) => (Quantity::Caloric, None, common),
-            Self::Season(season) => {
-                let ends = [season.from_longitude, season.to_longitude];
-                (Quantity::Season(ends), None, &season.common)
-            }
-            Self::Annual(common) => (Quantity::Annual, None, common),
+            Self::Daily(daily) => Quantity::Daily(match (&daily.sun_longitude, &daily.date) {
+                (Some(Longitudes(list)), _) => Moments::SunLongitudes(list.clone()),
+                (None, Some(Dates(days))) => Moments::Dates(days.clone()),
+                // One of them is required.
+                (None, None) => Moments::Dates(Vec::new()),
+            }),
+            Self::Monthly(_) => Quantity::Monthly,
+            Self::Caloric(_) => Quantity::Caloric,
+            Self::Season(season) => Quantity::Season([season.from_longitude, season.to_longitude]),
+            Self::Annual(_) => Quantity::Annual,
+        }
+    }
+
+    fn common(&self) -> &CommonArguments {
+        match self {
+            Self::Daily(daily) => &daily.common,
+            Self::Monthly(monthly) => &monthly.common,
+            Self::Season(season) => &season.common,
+            Self::Caloric(common) | Self::Annual(common) => common,
+        }
+    }
+
+    fn months(&self) -> Option<MonthKind> {
+        match self {
+            Self::Monthly(monthly) => monthly.months.map(|name| match name {
+                MonthName::FixedLength => MonthKind::FixedLength,
+                MonthName::FixedAngle => MonthKind::FixedAngle,
+            }),
+            _ => None,
+        }
+    }
+
+    fn equinox_day(&self) -> Option<f64> {
+        match self {
+            Self::Daily(daily) => daily.equinox.equinox_day,
+            Self::Monthly(monthly) => monthly.equinox.equinox_day,
+            _ => None,
         }
     }
 }
@@ -197,15 +209,17 @@ impl CommonArguments {
 }
 
 pub(super) fn run(arguments: &InsolationArguments, words: &[String]) -> Result<(), CliError> {
-    let (quantity, equinox_day, common) = arguments.command.parts();
+    let command = &arguments.command;
+    let common = command.common();
     let request = Request {
         orbit: choice(common.solution, common.config.as_deref(), &common.set),
         ages: common.ages(),
         against_kyr: common.against_kyr,
         latitudes_deg: common.latitude.0.clone(),
-        quantity,
+        quantity: command.quantity(),
         solar_constant_w_m2: common.solar_constant_w_m2,
-        equinox_day,
+        months: command.months(),
+        equinox_day: command.equinox_day(),
     };
     let table = || Ok(insolation::tabulate(&request, words)?);
     common.destination.fill(table, insolation::draw)

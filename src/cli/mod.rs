@@ -2,6 +2,7 @@
 
 mod attendant;
 mod bar;
+mod describe;
 mod dry_run;
 mod figures;
 mod insolation;
@@ -10,6 +11,7 @@ mod orbit;
 mod orbit_choice;
 mod run;
 mod signals;
+mod steady;
 mod table;
 
 use clap::{Parser, Subcommand};
@@ -47,6 +49,10 @@ enum Command {
     Run(run::RunArguments),
     /// Tabulate or draw insolation: daily, monthly, of seasons, of caloric half-years, annual
     Insolation(insolation::InsolationArguments),
+    /// Find the repeating seasonal cycle under held forcing
+    Steady(steady::SteadyArguments),
+    /// Tell what a run file is: what made it, how it differs from the reference, its sizes
+    Describe(describe::DescribeArguments),
     /// Tabulate the orbit against age, or compute it anew from the motion of the planets
     Orbit(orbit::OrbitArguments),
 }
@@ -56,10 +62,10 @@ pub fn main() -> ExitCode {
     let words: Vec<String> = std::env::args_os()
         .map(|w| w.to_string_lossy().into_owned())
         .collect();
-    let outcome = match Arguments::parse().command {
-        Command::Run(arguments) => run::run(&arguments, &words),
-        Command::Insolation(arguments) => insolation::run(&arguments, &words),
-        Command::Orbit(arguments) => orbit::run(&arguments, &words),
+    let command = Arguments::parse().command;
+    let outcome = match signals::tell_size_limits() {
+        Ok(()) => carry_out(command, &words),
+        Err(error) => Err(error.into()),
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,
@@ -85,11 +91,25 @@ pub fn main() -> ExitCode {
     }
 }
 
+fn carry_out(command: Command, words: &[String]) -> Result<(), CliError> {
+    match command {
+        Command::Run(arguments) => run::run(&arguments, words),
+        Command::Steady(arguments) => steady::run(&arguments, words),
+        Command::Describe(arguments) => describe::run(&arguments),
+        Command::Insolation(arguments) => insolation::run(&arguments, words),
+        Command::Orbit(arguments) => orbit::run(&arguments, words),
+    }
+}
+
 /// What a command can end with.
 #[derive(Debug, thiserror::Error)]
 enum CliError {
     #[error(transparent)]
     Single(#[from] crate::experiment::single::SingleError),
+    #[error(transparent)]
+    Steady(#[from] crate::experiment::steady::SteadyError),
+    #[error(transparent)]
+    Describe(#[from] crate::experiment::describe::DescribeError),
     #[error(transparent)]
     Orbit(#[from] crate::experiment::orbit::OrbitCommandError),
     #[error(transparent)]

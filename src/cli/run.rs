@@ -34,7 +34,8 @@ pub(super) struct RunArguments {
     /// Change one key of the configuration, such as time.end_kyr=0; may be repeated
     #[arg(long, value_name = "KEY=VALUE")]
     set: Vec<String>,
-    /// Replace the file if it exists, and segments of an unfinished run beside it
+    /// Replace the file if it exists, and segments of an unfinished run beside it; with --resume the
+    /// segments stay, and the complete file replaces an older one
     #[arg(long)]
     overwrite: bool,
     /// Go on with an unfinished run; begin it if there is none, do nothing if it is complete
@@ -118,15 +119,22 @@ pub(super) fn run(arguments: &RunArguments, words: &[String]) -> Result<(), CliE
         Outcome::Stopped(kept) => Err(CliError::Stopped {
             signal: stopped_by.unwrap_or_default(),
             kept,
-            command: if arguments.resume {
-                command
-            } else {
-                format!("{command} --resume")
-            },
+            command: going_on(words, destination.path.exists()),
         }),
     }
 }
 
 fn summary(file: &Path) -> Result<(), CliError> {
     Ok(figures::print(file, &summarise(file)?)?)
+}
+
+/// The command that goes on: the same words and --resume. With --overwrite the complete file may
+/// replace an older one; where there is none, the word only frightens.
+fn going_on(words: &[String], replaces: bool) -> String {
+    let needed = |w: &&String| *w != "--resume" && (replaces || *w != "--overwrite");
+    let mut words: Vec<String> = words.iter().filter(needed).cloned().collect();
+    // What follows a bare `--` is no option.
+    let end = words.iter().position(|w| w == "--").unwrap_or(words.len());
+    words.insert(end, "--resume".to_owned());
+    Provenance::new(&words, &[]).command_line
 }

@@ -1,10 +1,11 @@
-//! Ctrl-C and SIGTERM: the first asks a run to stop in a way that it can go on; a second ends the
+//! Ctrl-C, SIGTERM and a closed terminal (SIGHUP): the first asks a run to stop in a way that it can go on; a second ends the
 //! program at once, as without a handler.
 //!
 //! Exit status after a stop: 128 plus the number of the signal, as shells count (POSIX, 2.8.2).
 
-use signal_hook::consts::{SIGINT, SIGTERM, SIGXFSZ};
+use signal_hook::consts::{SIGHUP, SIGINT, SIGTERM, SIGXFSZ};
 use signal_hook::flag;
+use std::io::IsTerminal;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, AtomicUsize, Ordering};
 
@@ -22,15 +23,17 @@ impl Signals {
     pub(super) fn listen() -> Result<Self, std::io::Error> {
         let number = Arc::new(AtomicUsize::new(0));
         let second = Arc::new(AtomicBool::new(false));
-        for (signal, value) in [(SIGINT, 2), (SIGTERM, 15)] {
+        let mut signals = vec![(SIGINT, 2), (SIGTERM, 15)];
+        // Without a terminal (nohup, batch jobs) nobody hangs up, or it is meant to be ignored.
+        if std::io::stdin().is_terminal() || std::io::stderr().is_terminal() {
+            signals.push((SIGHUP, 1));
+        }
+        for (signal, value) in signals {
             // In this order: the first signal arms what the second one triggers.
             flag::register_conditional_default(signal, Arc::clone(&second))?;
             flag::register(signal, Arc::clone(&second))?;
             flag::register_usize(signal, Arc::clone(&number), value)?;
         }
-        // Where files may not grow beyond a limit, writing then fails with an error that is told,
-        // instead of a signal that ends the program.
-        flag::register(SIGXFSZ, Arc::new(AtomicBool::new(false)))?;
         Ok(Self { number })
     }
 
@@ -41,4 +44,13 @@ impl Signals {
             number => u8::try_from(number).ok(),
         }
     }
+}
+
+/// Where files may not grow beyond a limit, writing then fails with an error that is told, instead
+/// of a signal that ends the program.
+///
+/// # Errors
+/// If the system refuses.
+pub(super) fn tell_size_limits() -> Result<(), std::io::Error> {
+    flag::register(SIGXFSZ, Arc::new(AtomicBool::new(false))).map(|_| ())
 }

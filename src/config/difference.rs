@@ -63,6 +63,16 @@ fn same(a: &Value, b: &Value) -> bool {
 }
 
 fn note(path: &str, first: Option<&Value>, second: Option<&Value>, found: &mut Vec<Difference>) {
+    // A table that only one of them has is told key by key.
+    match (first, second) {
+        (Some(Value::Table(table)), None) => {
+            return compare(path, table, &Table::new(), found);
+        }
+        (None, Some(Value::Table(table))) => {
+            return compare(path, &Table::new(), table, found);
+        }
+        _ => {}
+    }
     found.push(Difference {
         key: path.to_owned(),
         first: first.map(Value::to_string),
@@ -93,6 +103,9 @@ mod tests {
                 "b.e.kind \"x\" \"y\""
             ]
         );
+        let more = differences(first, &format!("{first}[h.i]\nj = 3\n")).unwrap();
+        let keys: Vec<_> = more.iter().map(|d| d.key.as_str()).collect();
+        assert_eq!(keys, ["h.i.j"]);
         assert!(differences(first, first).unwrap().is_empty());
         assert!(differences("a = ", first).is_err());
     }

@@ -84,7 +84,11 @@ pub enum ConfigError {
         assignment: String,
     },
     /// An edit of a key that is not there.
-    #[error("--set {assignment}: no key `{key}` in the experiment{}", suggestion(nearest.as_deref()))]
+    #[error(
+        "--set {assignment}: no key `{key}` in the experiment{}; an edit changes a key that is there, \
+         a new table is written in a file",
+        suggestion(nearest.as_deref())
+    )]
     SetUnknown {
         /// The edit.
         assignment: String,

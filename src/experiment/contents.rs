@@ -6,6 +6,7 @@
 use super::resume::DATA;
 use crate::config::run::Experiment;
 use crate::config::{ConfigError, Provenance};
+use crate::forcing::drive::Sources;
 use crate::grid::calendar::Calendar;
 use crate::grid::column::ColumnLevels;
 use crate::model::Model;
@@ -44,7 +45,7 @@ pub(super) fn schema(
         .map(|p| &p.coast.coastal_latitudes_deg);
     let sources = model.drive().sources();
     let axes = AxisValues {
-        by_latitude: fixed(setting),
+        by_latitude: fixed(setting, sources),
         latitude_edges_deg: setting.surface.bands.edge_deg().to_vec(),
         depth_edges_m: levels.map(|l| l.edge_m().to_vec()).unwrap_or_default(),
         months: if sources.months.move_with_the_orbit() {
@@ -67,7 +68,7 @@ pub(super) fn schema(
 }
 
 /// What weights and masks need: area, land fraction and elevation of the bands.
-fn fixed(setting: &Setting) -> Vec<FixedField> {
+fn fixed(setting: &Setting, sources: &Sources) -> Vec<FixedField> {
     let surface = &setting.surface;
     let field = |name, units, long_name, standard_name, values: &[f64]| FixedField {
         name,
@@ -77,24 +78,31 @@ fn fixed(setting: &Setting) -> Vec<FixedField> {
         values: values.to_vec(),
     };
     let (area, land) = (surface.bands.area_m2(), &surface.land_fraction);
-    let height = &surface.land_elevation_m;
-    vec![
-        field("band_area", "m2", "area of the band", "cell_area", area),
+    let (height, share) = (&surface.land_elevation_m, Some("land_area_fraction"));
+    let altitude = Some("surface_altitude");
+    let mut fields = vec![
         field(
-            "land_fraction",
-            "1",
-            "land fraction",
-            "land_area_fraction",
-            land,
+            "band_area",
+            "m2",
+            "area of the band",
+            Some("cell_area"),
+            area,
         ),
+        field("land_fraction", "1", "land fraction", share, land),
         field(
             "land_elevation",
             "m",
             "mean elevation of the land",
-            "surface_altitude",
+            altitude,
             height,
         ),
-    ]
+    ];
+    if let Some(mask) = &sources.mask {
+        let words = "weight of the mask of another orbit by latitude, before the season's";
+        let weight = mask.latitude_weight();
+        fields.push(field("mask_latitude_weight", "1", words, None, weight));
+    }
+    fields
 }
 
 fn global(

@@ -125,7 +125,7 @@ pub fn run(
         Begin::Anew => Start::Anew,
         Begin::GoOn => {
             claim.discard_unsealed()?;
-            resume::find(&claim, &identity, &plan)?
+            resume::find(&claim, &identity, &plan, destination.overwrite)?
         }
     };
     let earlier = match &start {
@@ -338,6 +338,8 @@ fn asked(wish: ControlFlow<()>) -> Result<(), Stopped> {
 
 /// The name a run gets when none is given: the configuration's own, in the folder `out`.
 pub fn default_output(configuration: &Path) -> PathBuf {
-    let stem = configuration.file_stem().unwrap_or_default();
-    Path::new("out").join(stem).with_extension("nc")
+    // Not as an extension: the name may hold a dot that is no extension, such as 0.5.
+    let mut name = configuration.file_stem().unwrap_or_default().to_owned();
+    name.push(".nc");
+    Path::new("out").join(name)
 }

@@ -15,6 +15,7 @@
 
 use serde::{Deserialize, Serialize};
 
+use crate::numerics::shown::Shown;
 use crate::orbit::elements::Elements;
 use crate::orbit::insolation::{InsolationTable, TableError};
 use crate::orbit::kepler;
@@ -57,7 +58,7 @@ pub enum MaskError {
     #[error("orbit_mask.{0}")]
     Orbit(OrbitError),
     /// A bound is out of range.
-    #[error("orbit_mask.{key} = {value}: {limit}")]
+    #[error("orbit_mask.{key} = {}: {limit}", Shown(*value))]
     Value {
         /// The key.
         key: &'static str,
@@ -106,8 +107,8 @@ impl MaskSpec {
             let limit = "must lie between latitude.from_deg and 90 degrees north";
             let after = inside(r.to_deg) && (r.to_deg > r.from_deg || !inside(r.from_deg));
             value("latitude.to_deg", r.to_deg, after, limit);
-            let limit = "must lie between 0 and 90 degrees";
-            let usable = (0.0..=90.0).contains(&r.edge_deg);
+            let limit = "must lie between 0 and the width of the range, or the mask never opens";
+            let usable = (0.0..=r.to_deg - r.from_deg).contains(&r.edge_deg);
             value("latitude.edge_deg", r.edge_deg, usable, limit);
         }
         if let Some(r) = self.sun_longitude {
@@ -120,11 +121,15 @@ impl MaskSpec {
                 limit,
             );
             value("sun_longitude.to_deg", r.to_deg, inside(r.to_deg), limit);
-            let limit = "must lie between 0 and 180 degrees";
-            let usable = (0.0..=180.0).contains(&r.edge_deg);
+            let limit = "must lie between 0 and the width of the range, or the mask never opens";
+            let width = (r.to_deg - r.from_deg).rem_euclid(360.0);
+            let width = if width > 0.0 { width } else { 360.0 };
+            let usable = (0.0..=width).contains(&r.edge_deg);
             value("sun_longitude.edge_deg", r.edge_deg, usable, limit);
         }
-        if self.latitude.is_none() && self.sun_longitude.is_none() {
+        let whole_year = |r: RangeSpec| r.from_deg <= 0.0 && r.to_deg >= 360.0;
+        let whole_earth = |r: RangeSpec| r.from_deg <= -90.0 && r.to_deg >= 90.0;
+        if self.latitude.is_none_or(whole_earth) && self.sun_longitude.is_none_or(whole_year) {
             wrong.push(MaskError::Everywhere);
         }
         let orbit = match Orbit::build(&self.orbit) {
@@ -168,6 +173,11 @@ impl Mask {
     /// When its source does not reach there.
     pub fn orbit_at(&self, age_kyr: f64) -> Result<Elements, OrbitError> {
         self.orbit.at(age_kyr)
+    }
+
+    /// Weight of each latitude band, before the season's.
+    pub fn latitude_weight(&self) -> &[f64] {
+        &self.latitude
     }
 
     /// Global annual mean of what the mask added to the table it was last applied to, W m-2.
@@ -343,7 +353,7 @@ mod tests {
         };
         let (summer, winter) = (half(0, 180), half(180, 360));
         let whole = masked(
-            &spec("latitude = { from_deg = -90, to_deg = 90, edge_deg = 5 }"),
+            &spec("latitude = { from_deg = -90, to_deg = 89.999999, edge_deg = 0 }"),
             &run,
         );
         let mut base = InsolationTable::new(&edges(), 360).unwrap();
@@ -362,6 +372,8 @@ mod tests {
              sun_longitude = { from_deg = -5, to_deg = 400, edge_deg = 5 }",
         );
         assert_eq!(wrong.check().unwrap_err().len(), 4);
+        let narrow = "latitude = { from_deg = 45, to_deg = 90, edge_deg = 60 }";
+        assert_eq!(spec(narrow).check().unwrap_err().len(), 1);
         assert_eq!(spec("").check().unwrap_err(), [MaskError::Everywhere]);
     }
 }

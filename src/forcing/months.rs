@@ -14,33 +14,39 @@
 use serde::{Deserialize, Serialize};
 
 use crate::grid::calendar::{CALENDAR_DAYS, Calendar, MONTHS};
+use crate::numerics::shown::Shown;
 use crate::orbit::elements::{Elements, PerihelionLongitude};
 use crate::orbit::kepler;
 
 /// Bounds of the months, fractions of the year; the last is one year after the first.
 pub type MonthBounds = [f64; MONTHS + 1];
 
+/// What a month is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "snake_case")]
+pub enum MonthKind {
+    /// That of the 365-day calendar, stretched to the year.
+    FixedLength,
+    /// The time between two longitudes of the Sun, those of 1950.
+    FixedAngle,
+}
+
 /// Which calendar, and when the March equinox is.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
-#[serde(tag = "kind", rename_all = "snake_case", deny_unknown_fields)]
-pub enum CalendarSpec {
-    /// Months of the 365-day calendar, stretched to the year.
-    FixedLength {
-        /// March equinox, days since 1 January 0 h in the 365-day calendar (79.5: 21 March noon).
-        equinox_day: f64,
-    },
-    /// Months bounded by the Sun's longitudes of 1950.
-    FixedAngle {
-        /// March equinox, days since 1 January 0 h in the 365-day calendar (79.5: 21 March noon).
-        equinox_day: f64,
-    },
+#[serde(deny_unknown_fields)]
+pub struct CalendarSpec {
+    /// What a month is.
+    pub months: MonthKind,
+    /// March equinox, days since 1 January 0 h in the 365-day calendar (79.5: 21 March noon).
+    pub equinox_day: f64,
 }
 
 /// An equinox that is no day of the year.
 #[derive(Clone, Copy, Debug, PartialEq, thiserror::Error)]
 #[error(
-    "calendar.equinox_day = {equinox_day}: must lie between 0 and 365 days since 1 January 0 h; \
-     21 March noon is 79.5"
+    "calendar.equinox_day = {}: must lie between 0 and 365 days since 1 January 0 h; 21 March noon \
+     is 79.5",
+    Shown(*equinox_day)
 )]
 pub struct CalendarError {
     /// The value.
@@ -71,30 +77,21 @@ fn orbit_of_1950() -> Elements {
     }
 }
 
-impl CalendarSpec {
-    /// Days from 1 January 0 h to the March equinox, in the 365-day calendar.
-    pub fn equinox_day(self) -> f64 {
-        match self {
-            Self::FixedLength { equinox_day } | Self::FixedAngle { equinox_day } => equinox_day,
-        }
-    }
-}
-
 impl Months {
     /// Checks a calendar.
     ///
     /// # Errors
     /// When the equinox is not a day of the year.
     pub fn new(spec: CalendarSpec) -> Result<Self, CalendarError> {
-        let equinox_day = spec.equinox_day();
+        let equinox_day = spec.equinox_day;
         if !(0.0..CALENDAR_DAYS).contains(&equinox_day) {
             return Err(CalendarError { equinox_day });
         }
         let equinox_fraction = equinox_day / CALENDAR_DAYS;
         let fixed = Calendar.month_bounds_fraction();
-        let bounds = match spec {
-            CalendarSpec::FixedLength { .. } => Bounds::Fixed(fixed),
-            CalendarSpec::FixedAngle { .. } => {
+        let bounds = match spec.months {
+            MonthKind::FixedLength => Bounds::Fixed(fixed),
+            MonthKind::FixedAngle => {
                 let orbit = orbit_of_1950();
                 Bounds::Longitudes(
                     fixed.map(|time| kepler::sun_longitude_deg(&orbit, time - equinox_fraction)),
@@ -134,10 +131,16 @@ mod tests {
 
     #[test]
     fn analytic_months_of_1950_have_their_lengths_in_both_calendars() {
-        let of = |spec| Months::new(spec).unwrap().bounds(&orbit_of_1950());
-        let equinox_day = 79.5;
-        let fixed = of(CalendarSpec::FixedLength { equinox_day });
-        let angle = of(CalendarSpec::FixedAngle { equinox_day });
+        let of = |months| {
+            let equinox_day = 79.5;
+            let spec = CalendarSpec {
+                months,
+                equinox_day,
+            };
+            Months::new(spec).unwrap().bounds(&orbit_of_1950())
+        };
+        let fixed = of(MonthKind::FixedLength);
+        let angle = of(MonthKind::FixedAngle);
         for (a, b) in fixed.iter().zip(angle) {
             assert!((a - b).abs() < 1e-14, "{a} {b}");
         }
@@ -146,7 +149,11 @@ mod tests {
     #[test]
     fn an_equinox_outside_the_year_is_refused() {
         for equinox_day in [-1.0, 365.0, f64::NAN] {
-            let refused = Months::new(CalendarSpec::FixedLength { equinox_day });
+            let months = MonthKind::FixedLength;
+            let refused = Months::new(CalendarSpec {
+                months,
+                equinox_day,
+            });
             assert!(refused.is_err(), "{equinox_day}");
         }
     }

@@ -285,9 +285,14 @@ impl fmt::Display for Plan {
         let end_kyr = self.record_bounds_kyr(seasonal - 1)[1];
         write!(
             f,
-            "{:.3} to {end_kyr:.3} kyr before 1950, {} records of {:.0} years, {seasonal} seasonal years (M = {})",
+            "{:.3} to {end_kyr:.3} kyr before 1950, {} {} of {:.0} years, {seasonal} seasonal years (M = {})",
             self.start_kyr,
             self.records,
+            if self.records == 1 {
+                "record"
+            } else {
+                "records"
+            },
             self.total_yr() / self.records as f64,
             self.slow_years
         )

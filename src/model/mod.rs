@@ -8,6 +8,7 @@
 pub mod clock;
 pub mod observer;
 pub mod records;
+pub mod steady;
 
 use crate::forcing::drive::{Drive, DriveError};
 use crate::numerics::sum::CompensatedSum;
@@ -44,6 +45,9 @@ pub enum RunError<E: std::error::Error + 'static> {
         /// Part concerned.
         what: String,
     },
+    /// There is no repeating cycle, or it was not found.
+    #[error(transparent)]
+    NotSteady(#[from] steady::NotSteady),
     /// The observer (file) failed.
     #[error(transparent)]
     Observer(E),

@@ -28,3 +28,37 @@ pub fn widest<K: Kernel>(kernel: K) -> K::Output {
 fn with_avx2<K: Kernel>(kernel: K) -> K::Output {
     kernel.run()
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::numerics::lanes::Lanes;
+
+    /// Sums of products, a quotient, a root and an exponential: what a fused multiply-add or an
+    /// approximate instruction would change.
+    struct Mixed<'a>(&'a [f64]);
+
+    impl Kernel for Mixed<'_> {
+        type Output = Vec<u64>;
+
+        #[inline(always)]
+        fn run(self) -> Vec<u64> {
+            let mut sum = 0.0;
+            let mut bits = Vec::with_capacity(2 * self.0.len());
+            for &x in self.0 {
+                sum = sum * 0.999 + x * x / (1.0 + x.abs()).sqrt();
+                bits.push(sum.to_bits());
+                bits.push(Lanes::splat(-x).exp().0[1].to_bits());
+            }
+            bits
+        }
+    }
+
+    #[test]
+    fn wider_instructions_give_the_same_bits() {
+        let numbers: Vec<f64> = (0..1000)
+            .map(|i| (f64::from(i) * 0.37).sin() * 7.0)
+            .collect();
+        assert_eq!(widest(Mixed(&numbers)), Mixed(&numbers).run());
+    }
+}

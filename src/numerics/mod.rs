@@ -2,6 +2,7 @@
 //!
 //! Everything here works on plain numbers and slices; units are the caller's business.
 
+pub mod anderson;
 pub mod dispatch;
 pub mod lagrange;
 pub mod lanes;

@@ -96,13 +96,24 @@ impl Claim {
             .collect()
     }
 
-    /// The last segment of an unfinished run, opened; none if there is no such run.
+    /// Whether there are segments of an unfinished run.
     ///
     /// # Errors
-    /// If a segment is missing or the last one cannot be read.
-    pub fn last_segment(&self) -> Result<Option<RunFile>> {
-        let last = self.segments()?.pop();
-        last.map(|path| RunFile::open(&path)).transpose()
+    /// If the folder cannot be read.
+    pub fn holds_segments(&self) -> Result<bool> {
+        let found = segments::leftovers(&self.path)?;
+        Ok(found.iter().any(|file| is_segment(file)))
+    }
+
+    /// Opens a segment.
+    ///
+    /// # Errors
+    /// With advice, if it is damaged.
+    pub fn open_segment(&self, segment: &Path) -> Result<RunFile> {
+        RunFile::open(segment).map_err(|source| OutputError::DamagedSegment {
+            path: segment.to_owned(),
+            source: Box::new(source),
+        })
     }
 
     /// Deletes all that unfinished runs of this output left behind; the output stays.

@@ -30,12 +30,23 @@ pub enum OutputError {
     },
     /// A segment of an unfinished run is gone.
     #[error(
-        "{path} is missing, and the run cannot go on without it: bring it back, or start anew \
-         (--overwrite)"
+        "{path} is missing, and the run cannot go on without it: bring it back; or delete those after \
+         it and say --resume again; or begin anew (--overwrite)"
     )]
     MissingSegment {
         /// The segment.
         path: PathBuf,
+    },
+    /// A segment of an unfinished run cannot be read.
+    #[error(
+        "{path} is damaged ({source}): delete it and those after it and say --resume again; the run \
+         then goes on from the segment before"
+    )]
+    DamagedSegment {
+        /// The segment.
+        path: PathBuf,
+        /// What is wrong.
+        source: Box<OutputError>,
     },
     /// The output path cannot name a file.
     #[error("{path} cannot be an output file: {reason}")]
@@ -128,6 +139,14 @@ pub enum OutputError {
         owner: String,
         /// What was asked for.
         attribute: String,
+    },
+    /// The file is none that this program writes, or it is damaged.
+    #[error("{path} is no readable run file: {reason}")]
+    NotARun {
+        /// The file.
+        path: PathBuf,
+        /// Why, and what to do if anything.
+        reason: String,
     },
     /// A variable has another shape than the caller needs.
     #[error("{path}: `{variable}` has shape {shape:?}, {needed} is needed")]

@@ -15,15 +15,6 @@ pub struct Journal {
     file: Option<File>,
 }
 
-/// What becomes of a log that is there already.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Earlier {
-    /// It is replaced.
-    Replace,
-    /// New lines follow it.
-    Keep,
-}
-
 impl Journal {
     /// The log of an output; nothing is written yet.
     pub fn beside(output: &Path) -> Self {
@@ -35,17 +26,22 @@ impl Journal {
         }
     }
 
-    /// Opens the file.
+    /// Opens the file; new lines follow what is there.
     ///
     /// # Errors
     /// When it cannot be opened.
-    pub fn open(&mut self, earlier: Earlier) -> Result<()> {
-        let mut options = OpenOptions::new();
-        match earlier {
-            Earlier::Replace => options.write(true).truncate(true),
-            Earlier::Keep => options.append(true),
-        };
-        let opened = options.create(true).open(&self.path);
+    pub fn open(&mut self) -> Result<()> {
+        // A pipe of that name would hold the run until somebody reads it.
+        if self.path.symlink_metadata().is_ok_and(|m| !m.is_file()) {
+            return Err(OutputError::BadPath {
+                path: self.path.clone(),
+                reason: "it is not a regular file, so no log is written",
+            });
+        }
+        let opened = OpenOptions::new()
+            .append(true)
+            .create(true)
+            .open(&self.path);
         self.file = Some(opened.map_err(|e| self.trouble(e))?);
         Ok(())
     }

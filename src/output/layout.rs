@@ -5,12 +5,14 @@
 //! [`CHUNK`] along `age`, written whole; the restart state is one list of numbers with a dimension
 //! of its own, bit for bit.
 
+use sha2::{Digest, Sha256};
 use std::path::Path;
 
 use super::error::Result;
 use super::netcdf4::{Definition, Kind, Length, Missing, NetCdfFile, Values, VariableId, narrow};
 use super::schema::{
-    self, AGE, AGE_BOUNDS, BOUNDS, CONVENTIONS, Content, Coordinate, RESTART, RESTART_PARTS, Schema,
+    self, AGE, AGE_BOUNDS, BOUNDS, CONVENTIONS, Content, Coordinate, RESTART, RESTART_HASH,
+    RESTART_PARTS, Schema,
 };
 use crate::series::Record;
 
@@ -175,10 +177,26 @@ impl Layout {
             self.file.text(Some(id), "long_name", long_name)?;
             self.file.text(Some(id), "units", "1")?;
             self.file.text(Some(id), RESTART_PARTS, &parts.join(" "))?;
+            self.file.text(Some(id), RESTART_HASH, &state_hash(&all))?;
             self.file.write(id, Values::F64(&all))?;
         }
         self.file.close()
     }
+}
+
+/// SHA-256 of the numbers of a state, in hexadecimal: unlike the records, it is not stored with a
+/// checksum of its own, and a run goes on from it.
+pub(crate) fn state_hash(numbers: &[f64]) -> String {
+    let mut hash = Sha256::new();
+    for number in numbers {
+        hash.update(number.to_le_bytes());
+    }
+    let bytes = hash.finalize();
+    bytes
+        .iter()
+        .map(|b| format!("{b:02x}"))
+        .collect::<Vec<_>>()
+        .concat()
 }
 
 fn define_ages(file: &mut NetCdfFile, schema: &Schema) -> Result<(VariableId, VariableId)> {

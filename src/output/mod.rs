@@ -22,6 +22,9 @@ pub mod writer;
 
 pub use claim::{Claim, Overwrite};
 pub use error::{OutputError, Result};
+
+/// Records in a full segment.
+pub const RECORDS_PER_SEGMENT: u64 = layout::CHUNK as u64;
 pub use reader::RunFile;
 pub use schema::{AxisValues, Schema};
 pub use writer::RunWriter;

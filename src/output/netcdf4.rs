@@ -23,9 +23,11 @@ use hdf5::{Dataset, Datatype, Extents, File, Location, SimpleExtents};
 use super::error::{OutputError, Result, hdf5_at};
 use storage::{characters, slab};
 
+pub(crate) use scales::ListEntry;
 pub(crate) use text::read_text;
 
 pub use definition::{Definition, Kind, Length, Missing, Values, VariableId};
+use definition::{MEMORY_STEP, Place};
 
 mod definition;
 mod scales;
@@ -47,16 +49,6 @@ struct Stored {
     name: String,
     dataset: Dataset,
     kind: Kind,
-}
-
-/// Bytes by which a file in memory grows; its size is known to that.
-const MEMORY_STEP: usize = 4096;
-
-/// Where a file lies.
-#[derive(Clone, Copy, PartialEq, Eq)]
-enum Place {
-    Disk,
-    Memory,
 }
 
 /// A NetCDF-4 file being written.
@@ -97,7 +89,10 @@ impl NetCdfFile {
     fn make(path: &Path, place: Place) -> Result<Self> {
         let file = File::with_options()
             .with_fapl(|p| {
-                let p = p.libver_bounds(LibraryVersion::V18, LibraryVersion::V18);
+                // Chunks are written whole and once: a cache of them would only hold memory.
+                let p = p
+                    .libver_bounds(LibraryVersion::V18, LibraryVersion::V18)
+                    .chunk_cache(1, 0, 1.0);
                 match place {
                     Place::Disk => p,
                     Place::Memory => p.core_options(MEMORY_STEP, false),

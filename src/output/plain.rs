@@ -57,12 +57,8 @@ impl PlainFile {
     pub fn write_with(self, write: impl FnOnce(&Path) -> Result<()>) -> Result<PathBuf> {
         refuse_existing(&self.path, self.overwrite)?;
         let temporary = segments::merging(&self.path);
-        if let Err(error) = write(&temporary) {
-            // The first error is the one to tell.
-            let _ = fs::remove_file(&temporary);
-            return Err(error);
-        }
-        segments::seal(&temporary, &self.path)?;
+        let written = write(&temporary).and_then(|()| segments::seal(&temporary, &self.path));
+        segments::clearing(&temporary, written)?;
         Ok(self.path)
     }
 }

@@ -1,24 +1,27 @@
 //! Reads run files, and their segments, back.
 //!
 //! Format facts: variables are HDF5 datasets in creation order; a dataset whose NAME attribute
-//! begins with "This is a netCDF dimension but not a netCDF variable" is a dimension only;
-//! `DIMENSION_LIST` leads from a variable to its dimensions; missing values are NaN.
+//! begins with "This is a netCDF dimension but not a netCDF variable" is a dimension only; missing
+//! values are NaN.
 //!
 //! Sources: HDF5 Dimension Scale specification; NetCDF-4 format specification.
 
 use std::path::{Path, PathBuf};
 
-use hdf5::types::VarLenArray;
-use hdf5::{
-    Attribute, Dataset, File, IndexType, IterationOrder, ObjectReference1, ReferencedObject,
-};
+use hdf5::{Attribute, Dataset, File, IndexType, IterationOrder};
 use ndarray::ArrayD;
 
 use super::error::{OutputError, Result, hdf5_at};
-use super::layout::{Block, Restart};
+use super::layout::{Block, Restart, state_hash};
 use super::netcdf4::read_text;
-use super::schema::{AGE, AGE_BOUNDS, RESTART, RESTART_PARTS, Schema};
+use super::schema::{AGE, AGE_BOUNDS, RESTART, RESTART_HASH, RESTART_PARTS, Schema};
 use crate::series::TimeSeries;
+
+mod dimensions;
+mod storage;
+mod unknown;
+
+pub use storage::StoredVariable;
 
 /// A run file opened for reading.
 #[derive(Debug)]
@@ -27,6 +30,7 @@ pub struct RunFile {
     file: File,
     /// Variables, restart states included, in the order of the file.
     names: Vec<String>,
+    axes: dimensions::Axes,
 }
 
 impl RunFile {
@@ -39,6 +43,8 @@ impl RunFile {
         let mut names = file
             .member_names_by(IndexType::CreationOrder, IterationOrder::Increasing)
             .map_err(hdf5_at(path, "list the variables"))?;
+        let axes = dimensions::of_scales(&file, &names);
+        let axes = axes.map_err(hdf5_at(path, "list the dimensions"))?;
         let mut failed = None;
         names.retain(|name| match is_variable(&file, name) {
             Ok(answer) => answer,
@@ -53,6 +59,7 @@ impl RunFile {
                 path: path.to_owned(),
                 file,
                 names,
+                axes,
             }),
         }
     }
@@ -66,40 +73,6 @@ impl RunFile {
     pub fn variables(&self) -> Vec<&str> {
         let names = self.names.iter().map(String::as_str);
         names.filter(|name| *name != RESTART).collect()
-    }
-
-    /// Names of a variable's dimensions, slowest first.
-    ///
-    /// # Errors
-    /// If there is no such variable or its dimensions cannot be read.
-    pub fn dimensions(&self, variable: &str) -> Result<Vec<String>> {
-        let dataset = self.dataset(variable)?;
-        let at = || hdf5_at(&self.path, format!("read the dimensions of `{variable}`"));
-        let Some(list) = attribute_of(dataset.attr_names(), "DIMENSION_LIST", |n| dataset.attr(n))
-            .map_err(at())?
-        else {
-            let coordinate = dataset.ndim() == 1;
-            return Ok(if coordinate {
-                vec![variable.to_owned()]
-            } else {
-                Vec::new()
-            });
-        };
-        let read = || -> hdf5::Result<Vec<String>> {
-            let list = list.read_raw::<VarLenArray<ObjectReference1>>()?;
-            let mut names = Vec::with_capacity(list.len());
-            for axis in &list {
-                let reference = axis.first().ok_or("an axis without dimension")?;
-                match self.file.dereference(reference)? {
-                    ReferencedObject::Dataset(scale) => {
-                        names.push(scale.name().trim_start_matches('/').to_owned());
-                    }
-                    _ => return Err("a dimension that is no dataset".into()),
-                }
-            }
-            Ok(names)
-        };
-        read().map_err(at())
     }
 
     /// One number per record, with its age.
@@ -165,6 +138,13 @@ impl RunFile {
         }
         let all = self.array(RESTART)?.into_raw_vec_and_offset().0;
         let parts = self.attribute(RESTART, RESTART_PARTS)?;
+        if self.attribute(RESTART, RESTART_HASH)? != state_hash(&all) {
+            return Err(OutputError::Layout {
+                path: self.path.clone(),
+                item: RESTART.to_owned(),
+                problem: "its numbers are not those that were written (SHA-256)".to_owned(),
+            });
+        }
         let mut rest = all.as_slice();
         for part in parts.split_whitespace() {
             let split = part.split_once(':').and_then(|(name, length)| {

@@ -36,6 +36,8 @@ pub const REQUIRED_GLOBAL: [&str; 6] = [
 pub const RESTART: &str = "restart_state";
 /// Its attribute that names the parts in order, as `name:length` separated by blanks.
 pub const RESTART_PARTS: &str = "parts";
+/// Its attribute with the SHA-256 of its numbers.
+pub const RESTART_HASH: &str = "sha256";
 /// Dimension and coordinate variable of the records.
 pub const AGE: &str = "age";
 /// Ends of the records' intervals.
@@ -54,8 +56,8 @@ pub struct FixedField {
     pub units: &'static str,
     /// What it is, in words.
     pub long_name: &'static str,
-    /// CF standard name.
-    pub standard_name: &'static str,
+    /// CF standard name, where the table has one.
+    pub standard_name: Option<&'static str>,
     /// One value for each band.
     pub values: Vec<f64>,
 }

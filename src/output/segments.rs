@@ -6,6 +6,7 @@
 //! segment. Each segment is a NetCDF-4 file of its own, with the restart state.
 
 use std::fs::{self, File, OpenOptions, TryLockError};
+use std::io::ErrorKind;
 use std::os::unix::fs::MetadataExt;
 use std::path::{Path, PathBuf};
 
@@ -23,7 +24,7 @@ pub(crate) fn temporary(output: &Path, number: usize) -> PathBuf {
 
 /// Name of the merged output while it is written.
 pub(crate) fn merging(output: &Path) -> PathBuf {
-    suffixed(output, ".tmp")
+    suffixed(output, ".merging.tmp")
 }
 
 /// Folder of an output.
@@ -44,7 +45,8 @@ pub(crate) fn leftovers(output: &Path) -> Result<Vec<PathBuf>> {
             found.push(path);
         }
     }
-    found.sort();
+    // By number: segment 10000 follows segment 9999.
+    found.sort_by_key(|path| (path.as_os_str().len(), path.clone()));
     Ok(found)
 }
 
@@ -62,7 +64,8 @@ fn is_leftover(output: &Path, path: &Path) -> bool {
         rest.strip_suffix(b".nc")
             .or_else(|| rest.strip_suffix(b".tmp"))
     });
-    rest == b".tmp" || number.is_some_and(|n| n.len() >= 4 && n.iter().all(u8::is_ascii_digit))
+    rest == b".merging.tmp"
+        || number.is_some_and(|n| n.len() >= 4 && n.iter().all(u8::is_ascii_digit))
 }
 
 /// Deletes files.
@@ -94,11 +97,11 @@ pub(crate) fn seal(temporary: &Path, path: &Path) -> Result<()> {
     handle.sync_all().map_err(io_at(folder, "sync"))
 }
 
-/// Makes the folder and makes sure that files can be created in it, before hours of computing.
+/// Makes the folder, if the one above is there, and makes sure that files can be created in it, before hours of computing.
 pub(crate) fn prepare(output: &Path) -> Result<()> {
     let reason = if output.file_name().is_none() {
         Some("it ends without a file name; add one")
-    } else if output.is_dir() {
+    } else if output.is_dir() || output.as_os_str().as_encoded_bytes().ends_with(b"/") {
         Some("it is a folder; add a file name")
     } else if output.to_str().is_none() {
         Some("it is not UTF-8, which HDF5 needs; rename it")
@@ -112,8 +115,17 @@ pub(crate) fn prepare(output: &Path) -> Result<()> {
         });
     }
     let folder = folder(output);
-    fs::create_dir_all(folder).map_err(io_at(folder, "create the folder"))?;
-    Ok(())
+    // One folder, such as `out`; a longer path that is not there is a mistyped one.
+    match fs::create_dir(folder) {
+        Err(error) if !folder.is_dir() => return Err(io_at(folder, "create the folder")(error)),
+        _ => {}
+    }
+    // Names of segments are longer than the output's: too long is told now and not in an hour.
+    let longest = merging(output);
+    match fs::symlink_metadata(&longest) {
+        Err(error) if error.kind() != ErrorKind::NotFound => Err(io_at(&longest, "look at")(error)),
+        _ => Ok(()),
+    }
 }
 
 /// Holds an output for one run; see [`super::claim`].
@@ -126,6 +138,14 @@ pub(crate) struct Lock {
 /// Takes the output, which also shows before hours of computing that files can be created there.
 pub(crate) fn lock(output: &Path) -> Result<Lock> {
     let path = suffixed(output, ".lock");
+    // A file of that name that is not an empty one is somebody's: it is neither locked nor deleted.
+    if fs::symlink_metadata(&path).is_ok_and(|m| !m.is_file() || m.len() > 0) {
+        return Err(OutputError::BadPath {
+            path,
+            reason: "its name is needed for the lock of the output, but it is somebody's; choose \
+                     another output",
+        });
+    }
     let file = OpenOptions::new()
         .write(true)
         .create(true)
@@ -174,11 +194,16 @@ mod tests {
     #[test]
     fn only_files_of_this_output_are_leftovers() {
         let output = Path::new("a/run.nc");
-        for name in ["run.nc.seg0000.nc", "run.nc.seg12345.tmp", "run.nc.tmp"] {
+        for name in [
+            "run.nc.seg0000.nc",
+            "run.nc.seg12345.tmp",
+            "run.nc.merging.tmp",
+        ] {
             assert!(is_leftover(output, &Path::new("a").join(name)), "{name}");
         }
         for name in [
             "run.nc",
+            "run.nc.tmp",
             "run.nc.segment.nc",
             "run.nc.seg1.nc",
             "xrun.nc.seg0000.nc",

@@ -43,7 +43,7 @@ impl MeasuredSize {
 
     /// Bytes of a finished file of so many records.
     pub fn file_bytes(&self, records: u64) -> f64 {
-        self.fixed_bytes + self.chunk_bytes * (records as f64 / CHUNK as f64).max(1.0)
+        self.fixed_bytes + self.chunk_bytes * records as f64 / CHUNK as f64
     }
 
     /// Bytes of the segments of so many records, which lie beside the file until it is complete.

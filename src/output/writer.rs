@@ -217,6 +217,7 @@ impl RunWriter {
     fn merge(&self, temporary: &Path) -> Result<()> {
         let layout = Layout::create(temporary, &self.schema)?;
         let mut restart = Restart::new();
+        let mut last_kyr = f64::INFINITY;
         for number in 0..self.segments() {
             let segment = RunFile::open(&segments::path(self.claim.path(), number))?;
             let block = segment.block(&self.schema)?;
@@ -227,6 +228,17 @@ impl RunWriter {
                     shape: vec![block.age.len()],
                     needed: "a full segment of 64 records",
                 });
+            }
+            for &age in &block.age {
+                if age >= last_kyr {
+                    let problem = format!("age {age} kyr follows {last_kyr}; ages must fall");
+                    return Err(OutputError::Layout {
+                        path: segment.path().to_owned(),
+                        item: AGE.to_owned(),
+                        problem,
+                    });
+                }
+                last_kyr = age;
             }
             layout.write(number * CHUNK, &block)?;
             if number + 1 == self.segments() {

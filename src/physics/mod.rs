@@ -237,6 +237,10 @@ pub trait Component: Send {
     /// Everything needed to go on bit for bit.
     fn save(&self) -> Vec<f64>;
 
+    /// What one unit of each number of [`Component::save`] counts when two states are compared,
+    /// K; 0 for numbers that follow from others or are only carried along.
+    fn weights(&self) -> Vec<f64>;
+
     /// Restores what [`Component::save`] gave.
     ///
     /// # Errors

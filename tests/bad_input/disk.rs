@@ -89,7 +89,7 @@ fn sizes() -> [u64; 3] {
     assert!(shell(&folder, &["env"], RUN).status.success());
     let whole = size(&folder, "disk/run.nc");
     let file = limited(&folder, whole - 1).expect("one byte too few");
-    assert_eq!(file, "disk/run.nc.tmp");
+    assert_eq!(file, "disk/run.nc.merging.tmp");
     [
         whole,
         size(&folder, "disk/run.nc.seg0000.nc"),
@@ -172,9 +172,9 @@ fn a_full_disk_is_an_error_and_all_that_was_on_it_stays() {
         (1 + first, "disk/run.nc.seg0000.tmp"),
         (2 + first + second / 2, "disk/run.nc.seg0001.tmp"),
         (1 + first + second, "disk/run.nc.seg0001.tmp"),
-        (2 + first + second, "disk/run.nc.tmp"),
-        (2 + first + second + whole / 2, "disk/run.nc.tmp"),
-        (1 + first + second + whole, "disk/run.nc.tmp"),
+        (2 + first + second, "disk/run.nc.merging.tmp"),
+        (2 + first + second + whole / 2, "disk/run.nc.merging.tmp"),
+        (1 + first + second + whole, "disk/run.nc.merging.tmp"),
     ] {
         assert_eq!(on_disk(way, pages).as_deref(), Some(file), "{pages} pages");
     }
@@ -234,7 +234,7 @@ fn the_last_write_of_a_file_fails_when_it_is_closed_and_that_is_an_error() {
         let (outcome, _) = traced(&folder, call, &option);
         let file = fate(&folder, "disk", &outcome, "No space left on device");
         assert!(
-            file.is_some_and(|file| file.contains("disk/run.nc.tmp")),
+            file.is_some_and(|file| file.contains("disk/run.nc.merging.tmp")),
             "{outcome:?}"
         );
         assert_eq!(records(&folder, "disk/run.nc.seg0001.nc"), 6, "{call}");

@@ -171,11 +171,7 @@ fn the_band_that_is_told_is_where_the_state_broke() {
     // Land that takes up more than all sunlight: the trouble begins where there is land and sun.
     let edit = "physics.energy_balance.albedo.land_excess=-1";
     let outcome = folder.orbicline(&["run", "short.toml", "--out", "run.nc", "--set", edit]);
-    outcome.says(&[
-        "(spin-up)",
-        "at the band at ",
-        "degrees north",
-    ]);
+    outcome.says(&["(spin-up)", "at the band at ", "degrees north"]);
     assert!(
         !outcome.err.contains("-87.5"),
         "the first of all bands: {outcome:?}"

@@ -76,6 +76,19 @@ pub(crate) fn shapes(components: &[Box<dyn Component>], experiment: &Experiment)
     found
 }
 
+/// Every saved number has a weight, and none is negative.
+pub(crate) fn weights(components: &[Box<dyn Component>]) -> Vec<String> {
+    let mut found = Vec::new();
+    for c in components {
+        let (weights, numbers) = (c.weights(), c.save().len());
+        if weights.len() != numbers || weights.iter().any(|w| *w < 0.0) {
+            let count = weights.len();
+            found.push(format!("{}: {count} weights for {numbers}", c.name()));
+        }
+    }
+    found
+}
+
 /// Names are unique over the whole file; units and words are there.
 pub(crate) fn metadata(sources: &Sources, components: &[Box<dyn Component>]) -> Vec<String> {
     let mut found = Vec::new();

@@ -165,6 +165,10 @@ impl Component for Spoiled {
         self.inner.save()
     }
 
+    fn weights(&self) -> Vec<f64> {
+        self.inner.weights()
+    }
+
     fn restore(&mut self, state: &[f64]) -> Result<(), PhysicsError> {
         match self.fault {
             Fault::ForgetsState => {

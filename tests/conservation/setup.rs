@@ -91,6 +91,10 @@ impl Component for Stove {
 
     fn record(&self, _: &mut Vec<f64>) {}
 
+    fn weights(&self) -> Vec<f64> {
+        Vec::new()
+    }
+
     fn save(&self) -> Vec<f64> {
         Vec::new()
     }

@@ -1,6 +1,6 @@
 //! Orbital elements, Kepler's equation, seasons and months. Equations and tolerances: README.md.
 
-use orbicline::forcing::months::{CalendarSpec, Months};
+use orbicline::forcing::months::{CalendarSpec, MonthKind, Months};
 use orbicline::grid::calendar::Calendar;
 use orbicline::orbit::elements::Elements;
 use orbicline::orbit::kepler::{eccentric_anomaly_rad, true_anomaly_rad, years_since_equinox};
@@ -158,7 +158,11 @@ fn observed_season_lengths() {
 /// Lengths of months of fixed angle, and the shift of 1 January, days of a 365-day year, with the
 /// equinox held `equinox_day` after the beginning of the year.
 fn angular_months_days(elements: &Elements, equinox_day: f64) -> [f64; 13] {
-    let months = Months::new(CalendarSpec::FixedAngle { equinox_day }).unwrap();
+    let spec = CalendarSpec {
+        months: MonthKind::FixedAngle,
+        equinox_day,
+    };
+    let months = Months::new(spec).unwrap();
     let bounds = months.bounds(elements).map(|fraction| fraction * 365.0);
     std::array::from_fn(|m| match m {
         12 => bounds[0],

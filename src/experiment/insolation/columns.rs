@@ -90,7 +90,7 @@ fn axes(quantity: &Quantity) -> Vec<TableAxis> {
     let season = match quantity {
         Quantity::Daily(Moments::SunLongitudes(_)) => Some(TableAxis::SunLongitude),
         Quantity::Daily(Moments::Dates(_)) => Some(TableAxis::Date),
-        Quantity::Monthly(_) => Some(TableAxis::Month),
+        Quantity::Monthly => Some(TableAxis::Month),
         Quantity::Caloric | Quantity::Season(_) | Quantity::Annual => None,
     };
     let age = std::iter::once(TableAxis::Age);
@@ -143,7 +143,7 @@ fn columns(quantity: &Quantity) -> Vec<Column> {
                 "true longitude of the Sun at noon",
             ),
         ],
-        Quantity::Monthly(_) => vec![
+        Quantity::Monthly => vec![
             insolation("monthly mean insolation"),
             length("length of the month"),
         ],
@@ -218,7 +218,7 @@ pub(super) fn compute(
             let longitudes: Vec<_> = moments.iter().map(longitude).collect();
             vec![daily(&longitudes), longitudes]
         }
-        Quantity::Monthly(_) => monthly(sunlight, elements, latitudes_deg),
+        Quantity::Monthly => monthly(sunlight, elements, latitudes_deg),
         Quantity::Season([from, to]) => {
             let part = |latitude| part_between(elements, s0, latitude, *from, *to);
             let days = part(0.0).length_days();
@@ -267,48 +267,48 @@ fn monthly(sunlight: &Sunlight, elements: &Elements, latitudes_deg: &[f64]) -> V
 }
 
 /// What the quantity is, in a few words.
-pub(super) fn title(quantity: &Quantity) -> &'static str {
-    match quantity {
-        Quantity::Daily(_) => "daily means",
-        Quantity::Monthly(MonthKind::FixedLength) => "means of months of fixed length",
-        Quantity::Monthly(MonthKind::FixedAngle) => "means of months of fixed angle",
-        Quantity::Caloric => "caloric half-years",
-        Quantity::Season(_) => "means between two longitudes of the Sun",
-        Quantity::Annual => "annual means",
+pub(super) fn title(quantity: &Quantity, months: MonthKind) -> &'static str {
+    match (quantity, months) {
+        (Quantity::Daily(_), _) => "daily means",
+        (Quantity::Monthly, MonthKind::FixedLength) => "means of months of fixed length",
+        (Quantity::Monthly, MonthKind::FixedAngle) => "means of months of fixed angle",
+        (Quantity::Caloric, _) => "caloric half-years",
+        (Quantity::Season(_), _) => "means between two longitudes of the Sun",
+        (Quantity::Annual, _) => "annual means",
     }
 }
 
 /// What the numbers mean, in a sentence or two.
-pub(super) fn meaning(quantity: &Quantity) -> String {
+pub(super) fn meaning(quantity: &Quantity, months: MonthKind) -> String {
     let half = YEAR_DAYS / 2.0;
-    match quantity {
-        Quantity::Daily(Moments::SunLongitudes(_)) => {
+    match (quantity, months) {
+        (Quantity::Daily(Moments::SunLongitudes(_)), _) => {
             "Daily means with the Sun held at its longitude for the day.".to_owned()
         }
-        Quantity::Daily(Moments::Dates(_)) => {
+        (Quantity::Daily(Moments::Dates(_)), _) => {
             "Daily means with the Sun held where it is at noon of the date.".to_owned()
         }
-        Quantity::Monthly(MonthKind::FixedLength) => format!(
+        (Quantity::Monthly, MonthKind::FixedLength) => format!(
             "Months have the lengths of the 365-day calendar, stretched to a year of {YEAR_DAYS} days; \
              means are exact in time."
         ),
-        Quantity::Monthly(MonthKind::FixedAngle) => {
+        (Quantity::Monthly, MonthKind::FixedAngle) => {
             "A month is the time in which the Sun moves between the longitudes that bound that month \
              on the orbit of 1950, so that it is the same season on every orbit; means are exact in \
              time."
                 .to_owned()
         }
-        Quantity::Caloric => format!(
+        (Quantity::Caloric, _) => format!(
             "The summer caloric half-year holds the half of the year (that is {half:.4} days) in which \
              every day gets more sunlight than any day of the other half; it begins and ends at the \
              longitudes given, which are missing where it falls into several parts or where night fills \
              more than half of the year."
         ),
-        Quantity::Season([from, to]) => format!(
+        (Quantity::Season([from, to]), _) => format!(
             "Means over the time in which the Sun moves from longitude {from} to {to} degrees (the \
              whole year if they are the same), and the energy in that time; the energy does not depend \
              on the perihelion, mean and length do."
         ),
-        Quantity::Annual => "Means over the whole year; they do not depend on the perihelion.".to_owned(),
+        (Quantity::Annual, _) => "Means over the whole year; they do not depend on the perihelion.".to_owned(),
     }
 }

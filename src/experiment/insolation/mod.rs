@@ -16,6 +16,7 @@ pub use figure::draw;
 
 use super::ages::AgeRange;
 use super::orbit_source::{OrbitChoice, OrbitSource};
+pub use crate::forcing::months::MonthKind;
 use crate::forcing::months::{CalendarSpec, Months};
 use crate::grid::calendar::CALENDAR_DAYS;
 use crate::orbit::elements::Elements;
@@ -41,22 +42,13 @@ pub enum Quantity {
     /// Daily means.
     Daily(Moments),
     /// Means and lengths of the twelve months.
-    Monthly(MonthKind),
+    Monthly,
     /// Means of the caloric half-years.
     Caloric,
     /// Mean, energy and length of the part of the year between two longitudes of the Sun, degrees.
     Season([f64; 2]),
     /// Annual mean.
     Annual,
-}
-
-/// How months are bounded.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum MonthKind {
-    /// Months of the 365-day calendar.
-    FixedLength,
-    /// Months between the Sun's longitudes of 1950.
-    FixedAngle,
 }
 
 /// What was asked for.
@@ -74,6 +66,8 @@ pub struct Request {
     pub quantity: Quantity,
     /// Solar constant, W m-2; that of the configuration, or [`SOLAR_CONSTANT_W_M2`], if not given.
     pub solar_constant_w_m2: Option<f64>,
+    /// What a month is; as in the configuration, or of fixed length, if not given.
+    pub months: Option<MonthKind>,
     /// March equinox, days since 1 January 0 h in the 365-day calendar; that of the configuration,
     /// or 21 March noon, if not given.
     pub equinox_day: Option<f64>,
@@ -82,6 +76,7 @@ pub struct Request {
 /// What the insolation of one age and latitude is computed from.
 struct Sunlight {
     solar_constant_w_m2: f64,
+    month_kind: MonthKind,
     months: Months,
 }
 
@@ -138,7 +133,7 @@ fn moments(quantity: &Quantity) -> Result<Option<(TableAxis, Vec<f64>)>, Insolat
             let days = sorted("day of the year", days, [0.0, CALENDAR_DAYS])?;
             Some((TableAxis::Date, days))
         }
-        Quantity::Monthly(_) => Some((TableAxis::Month, (1..=12).map(f64::from).collect())),
+        Quantity::Monthly => Some((TableAxis::Month, (1..=12).map(f64::from).collect())),
         Quantity::Season(ends) => {
             for end in ends {
                 longitude(&[*end])?;
@@ -198,14 +193,19 @@ fn sunlight(request: &Request, source: &OrbitSource) -> Result<Sunlight, Insolat
     }
     let equinox_day = request
         .equinox_day
-        .or(run.map(|run| run.calendar.equinox_day()))
+        .or(run.map(|run| run.calendar.equinox_day))
         .unwrap_or(EQUINOX_DAY);
-    let months = Months::new(match request.quantity {
-        Quantity::Monthly(MonthKind::FixedAngle) => CalendarSpec::FixedAngle { equinox_day },
-        _ => CalendarSpec::FixedLength { equinox_day },
+    let month_kind = request
+        .months
+        .or(run.map(|run| run.calendar.months))
+        .unwrap_or(MonthKind::FixedLength);
+    let months = Months::new(CalendarSpec {
+        months: month_kind,
+        equinox_day,
     })?;
     Ok(Sunlight {
         solar_constant_w_m2,
+        month_kind,
         months,
     })
 }
@@ -230,11 +230,11 @@ fn about(
              June solstice, 270 the December solstice.",
             sunlight.solar_constant_w_m2
         ),
-        columns::meaning(&request.quantity),
+        columns::meaning(&request.quantity, sunlight.month_kind),
     ];
     if matches!(
         request.quantity,
-        Quantity::Monthly(_) | Quantity::Daily(Moments::Dates(_))
+        Quantity::Monthly | Quantity::Daily(Moments::Dates(_))
     ) {
         sentences.push(format!(
             "The March equinox is held {:.3} days after 1 January 0 h of the 365-day calendar (79.5: 21 \
@@ -248,7 +248,10 @@ fn about(
         ));
     }
     let comment = sentences.join(" ");
-    let title = format!("Insolation: {}", columns::title(&request.quantity));
+    let title = format!(
+        "Insolation: {}",
+        columns::title(&request.quantity, sunlight.month_kind)
+    );
     source.about(&title, &comment, command)
 }
 

@@ -15,6 +15,7 @@ fn request(quantity: Quantity) -> Request {
         latitudes_deg: vec![65.0, -65.0],
         quantity,
         solar_constant_w_m2: None,
+        months: None,
         equinox_day: None,
     }
 }
@@ -111,7 +112,7 @@ fn what_has_no_meaning_is_refused() {
         request(Quantity::Daily(Moments::Dates(vec![366.0]))),
         "day of the year 366",
     );
-    let monthly = request(Quantity::Monthly(MonthKind::FixedAngle));
+    let monthly = request(Quantity::Monthly);
     says(
         Request {
             equinox_day: Some(-3.0),
@@ -146,7 +147,7 @@ fn figures_have_the_form_that_the_numbers_ask_for() {
     let along = drawn(&request_of(solstices(), one, &many)).unwrap();
     assert!(along.contains(">June solstice<") && along.contains(">Latitude<"));
     // All months: a map.
-    let months = Quantity::Monthly(MonthKind::FixedLength);
+    let months = Quantity::Monthly;
     let map = drawn(&request_of(months.clone(), one, &many)).unwrap();
     assert_eq!(map.matches("<image").count(), 2);
     // Few latitudes: lines against the month.

@@ -87,3 +87,15 @@ pub struct Definition<'a> {
 /// A defined variable.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct VariableId(pub(super) usize);
+
+/// Bytes by which a file in memory grows; its size is known to that.
+pub(super) const MEMORY_STEP: usize = 4096;
+
+/// Where a file lies.
+#[derive(Clone, Copy, PartialEq, Eq)]
+pub(super) enum Place {
+    /// In the file system.
+    Disk,
+    /// In memory only.
+    Memory,
+}

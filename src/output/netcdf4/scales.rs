@@ -13,9 +13,9 @@ use super::{Dimension, NetCdfFile, text_attribute};
 /// One entry of `REFERENCE_LIST`: a variable and which of its axes the dimension is.
 #[derive(hdf5::H5Type, Clone, Copy)]
 #[repr(C)]
-struct ListEntry {
-    dataset: ObjectReference1,
-    dimension: i32,
+pub(crate) struct ListEntry {
+    pub(crate) dataset: ObjectReference1,
+    pub(crate) dimension: i32,
 }
 
 impl NetCdfFile {

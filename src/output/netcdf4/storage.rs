@@ -86,7 +86,7 @@ impl NetCdfFile {
             }
         });
         if let Some(chunk) = chunk {
-            builder = builder.chunk(chunk).shuffle().deflate(DEFLATE);
+            builder = builder.chunk(chunk).shuffle().deflate(DEFLATE).fletcher32();
         }
         builder
             .empty_as(descriptor)

@@ -35,5 +35,7 @@ pub(crate) fn read_text(attribute: &Attribute) -> hdf5::Result<Option<String>> {
 fn first<T: H5Type + AsRef<str>>(attribute: &Attribute) -> hdf5::Result<Option<String>> {
     // Read as a list: a value of the longest type would not fit on the stack.
     let list = attribute.read_raw::<T>()?;
-    Ok(list.first().map(|text| text.as_ref().to_owned()))
+    // Files of others need not hold the encoding they promise.
+    let text = |text: &T| String::from_utf8_lossy(text.as_ref().as_bytes()).into_owned();
+    Ok(list.first().map(text))
 }

@@ -156,11 +156,10 @@ fn latitude(axes: &AxisValues, list: &mut Vec<Coordinate>) {
     let values = Content::Numbers(edges.clone());
     list.push(coordinate("lat_edge", &["lat_edge"], values, attributes));
     for field in &axes.by_latitude {
-        let attributes = text(&[
-            ("long_name", field.long_name),
-            ("standard_name", field.standard_name),
-            ("units", field.units),
-        ]);
+        let mut attributes = text(&[("long_name", field.long_name), ("units", field.units)]);
+        if let Some(name) = field.standard_name {
+            attributes.insert(1, ("standard_name", name.to_owned()));
+        }
         list.push(coordinate(
             field.name,
             &["lat"],

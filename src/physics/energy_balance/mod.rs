@@ -27,6 +27,7 @@ mod means;
 pub mod params;
 mod report;
 mod snow;
+mod start;
 mod state;
 mod surfaces;
 mod update;
@@ -76,7 +77,7 @@ impl EnergyBalance {
         let surface = &setting.surface;
         let n = surface.bands.len();
         let coefficients = Coefficients::new(p, setting);
-        let state = State::new(&coefficients, &surface.bands.mean_sine());
+        let state = State::new(&coefficients, &surface.bands.mean_sine(), p.start);
         Ok(Self {
             transport: Transport::new(&p.transport, &surface.bands),
             ice_line: IceLine::new(&p.albedo, &surface.bands),
@@ -311,6 +312,12 @@ impl Component for EnergyBalance {
         self.state.save(&mut values);
         self.means.save(&mut values);
         values
+    }
+
+    fn weights(&self) -> Vec<f64> {
+        let mut weights = State::weights(&self.coefficients);
+        weights.resize(weights.len() + FIELDS * self.coefficients.bands, 0.0);
+        weights
     }
 
     fn restore(&mut self, state: &[f64]) -> Result<(), PhysicsError> {

@@ -3,6 +3,7 @@
 //! Units are in the names. Each field gives symbol, allowed range and the kind of source; where
 //! the reference value comes from stands beside the value.
 
+pub use super::start::Start;
 use crate::physics::{RangeError, Ranges};
 use serde::{Deserialize, Serialize};
 
@@ -41,6 +42,8 @@ pub struct Params {
     pub gyre_diffusivity_w_m2_k: f64,
     /// Where and when mixed-layer water sinks.
     pub sinking: Sinking,
+    /// State from which a run begins.
+    pub start: Start,
 }
 
 /// Outgoing longwave radiation A + B T - G, G the forcing of carbon dioxide.
@@ -240,6 +243,7 @@ impl Params {
         self.check_albedo(&mut r);
         self.check_mixed_layer(&mut r);
         self.check_sinking(&mut r);
+        self.start.check(&mut r);
         r.finish()
     }
 

@@ -8,10 +8,11 @@
 //! far below the rounding of y itself.
 
 use super::coefficients::Coefficients;
+use super::params::Start;
 use super::snow::{SNOW_LEVELS, SnowLevel};
 use crate::numerics::lanes::{Lanes, WIDTH};
 use crate::numerics::sum::CompensatedSum;
-use crate::units::SEA_WATER_FREEZING_C;
+use crate::units::{SEA_ICE_LATENT_HEAT_J_M3, SEA_WATER_FREEZING_C};
 
 /// One field of four bands in its time levels.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -156,21 +157,28 @@ pub(super) struct State {
 }
 
 impl State {
-    /// A smooth start: 25 degC at the equator, falling with the square of sin(latitude).
-    pub(super) fn new(c: &Coefficients, mean_sine: &[f64]) -> Self {
+    /// The start state; see [`Start`].
+    pub(super) fn new(c: &Coefficients, mean_sine: &[f64], start: Start) -> Self {
+        let ice = SEA_ICE_LATENT_HEAT_J_M3 * start.sea_ice_m;
         let rows = c
             .rows
             .iter()
             .zip(mean_sine.chunks_exact(WIDTH))
             .map(|(c, x)| {
                 let x = Lanes::load(x, 0);
-                let air = Lanes::splat(25.0) - x * x * 40.0;
+                let air = Lanes::splat(start.equator_c) - x * x * start.fall_k;
                 let freezing = Lanes::splat(SEA_WATER_FREEZING_C);
                 let water = (air + 2.0).max(freezing);
                 StateRow {
                     air: Level::new(air),
                     land: Level::new(air + 2.0 - c.elevation_k),
-                    enthalpy: Level::new((water - freezing) / c.per_water_capacity),
+                    enthalpy: Level::new(Lanes(std::array::from_fn(|k| {
+                        if air.0[k] < freezing.0[k] {
+                            -ice
+                        } else {
+                            ((water - freezing) / c.per_water_capacity).0[k]
+                        }
+                    }))),
                     sub: Level::new(water),
                     ice_surface: freezing,
                     ice_surface_before: freezing,
@@ -233,6 +241,27 @@ impl State {
                 .flat_map(StateRow::lanes)
                 .flat_map(|lanes| lanes.0),
         );
+    }
+
+    /// What the numbers of a saved state count, K: the newest temperatures, and the enthalpy as a
+    /// temperature of the mixed layer.
+    pub(super) fn weights(c: &Coefficients) -> Vec<f64> {
+        let none = Level::new(Lanes::splat(0.0));
+        let rows = c.rows.iter().map(|row| StateRow {
+            air: Level::new(Lanes::splat(1.0)),
+            land: Level::new(row.land),
+            enthalpy: Level::new(row.per_water_capacity * row.has_ocean),
+            sub: Level::new(row.has_ocean),
+            ice_surface: none.now,
+            ice_surface_before: none.now,
+            snow: SnowLevel::none(),
+        });
+        let mut values = Vec::new();
+        Self {
+            rows: rows.collect(),
+        }
+        .save(&mut values);
+        values
     }
 
     /// Takes the first [`State::len`] values of `from`.

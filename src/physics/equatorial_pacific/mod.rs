@@ -352,6 +352,10 @@ impl Component for EquatorialPacific {
         vec![self.last_contrast]
     }
 
+    fn weights(&self) -> Vec<f64> {
+        vec![1.0]
+    }
+
     fn restore(&mut self, state: &[f64]) -> Result<(), PhysicsError> {
         let &[last] = state else {
             return Err(PhysicsError::RestartLength {

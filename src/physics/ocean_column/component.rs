@@ -140,6 +140,15 @@ impl Component for OceanColumn {
         [&numbers[..], &self.temperature, remainder, &self.heat_w].concat()
     }
 
+    fn weights(&self) -> Vec<f64> {
+        let (levels, bands) = (self.temperature.len(), self.heat_w.len());
+        let mut weights = vec![0.0; 11 + 2 * levels + bands];
+        // One kelvin for 1e6 m3/s of sinking; deep sinking is slow, the other rates follow.
+        weights[0] = 1e-6;
+        weights[11..11 + levels].fill(1.0);
+        weights
+    }
+
     fn restore(&mut self, state: &[f64]) -> Result<(), PhysicsError> {
         let (levels, bands) = (self.temperature.len(), self.heat_w.len());
         let fault = PhysicsError::RestartLength {

@@ -245,6 +245,10 @@ impl Component for RainBelt {
         Vec::new()
     }
 
+    fn weights(&self) -> Vec<f64> {
+        Vec::new()
+    }
+
     fn restore(&mut self, state: &[f64]) -> Result<(), PhysicsError> {
         if state.is_empty() {
             return Ok(());
