@@ -14,6 +14,8 @@ pub mod orbit;
 #[cfg(feature = "netcdf")]
 pub mod output;
 pub mod physics;
+#[cfg(feature = "figures")]
+pub mod report;
 pub mod series;
 pub mod tables;
 pub mod units;

@@ -274,7 +274,7 @@ fn an_orbit_that_cannot_be_made_is_refused_before_anything_is_written() {
         "--out",
         "a.csv",
     ];
-    says(&nothing, &["--integrate"]);
+    says(&nothing, &["--step-kyr"]);
     assert_eq!(folder.read("there.csv"), b"somebody's work");
     assert_eq!(folder.files(), ["short.toml", "there.csv"]);
 }

@@ -5,10 +5,14 @@ mod bar;
 mod describe;
 mod dry_run;
 mod figures;
+mod insolation;
+mod lists;
 mod orbit;
+mod orbit_choice;
 mod run;
 mod signals;
 mod steady;
+mod table;
 
 use clap::{Parser, Subcommand};
 use std::io::Write;
@@ -28,6 +32,8 @@ Examples:
     orbicline run configs/last_million_years.toml
   What a run of your own would cost and use:
     orbicline run my.toml --dry-run
+  Insolation at 65N and the June solstice over the last million years:
+    orbicline insolation daily --latitude 65 --sun-longitude 90 --from-kyr 1000 --to-kyr 0 --step-kyr 1
 
 Configurations begin with `extends = \"reference.toml\"` and give only what differs; ages are kyr
 before 1950. The model is for testing hypotheses; it makes no forecasts."
@@ -41,11 +47,13 @@ struct Arguments {
 enum Command {
     /// Run a transient climate into a NetCDF-4 file
     Run(run::RunArguments),
+    /// Tabulate or draw insolation: daily, monthly, of seasons, of caloric half-years, annual
+    Insolation(insolation::InsolationArguments),
     /// Find the repeating seasonal cycle under held forcing
     Steady(steady::SteadyArguments),
     /// Tell what a run file is: what made it, how it differs from the reference, its sizes
     Describe(describe::DescribeArguments),
-    /// Compute the orbit from the motion of the planets into a table
+    /// Tabulate the orbit against age, or compute it anew from the motion of the planets
     Orbit(orbit::OrbitArguments),
 }
 
@@ -88,7 +96,8 @@ fn carry_out(command: Command, words: &[String]) -> Result<(), CliError> {
         Command::Run(arguments) => run::run(&arguments, words),
         Command::Steady(arguments) => steady::run(&arguments, words),
         Command::Describe(arguments) => describe::run(&arguments),
-        Command::Orbit(arguments) => orbit::run(&arguments),
+        Command::Insolation(arguments) => insolation::run(&arguments, words),
+        Command::Orbit(arguments) => orbit::run(&arguments, words),
     }
 }
 
@@ -103,6 +112,12 @@ enum CliError {
     Describe(#[from] crate::experiment::describe::DescribeError),
     #[error(transparent)]
     Orbit(#[from] crate::experiment::orbit::OrbitCommandError),
+    #[error(transparent)]
+    OrbitTable(#[from] crate::experiment::orbit_table::OrbitTableError),
+    #[error(transparent)]
+    Insolation(#[from] crate::experiment::insolation::InsolationError),
+    #[error(transparent)]
+    Destination(#[from] crate::experiment::destination::DestinationError),
     #[error(transparent)]
     Output(#[from] crate::output::OutputError),
     #[error("stopped: {kept}")]

@@ -62,6 +62,29 @@ impl Calendar {
     }
 }
 
+/// Month (1 to 12) and day of the month of a time in days since 1 January 0 h, in the 365-day
+/// calendar; times outside the year are those of the nearest of its days.
+pub fn month_and_day(day_of_year: f64) -> (usize, u32) {
+    let day = day_of_year.clamp(0.0, CALENDAR_DAYS - 1.0).floor();
+    let month = MONTH_BOUNDS_DAY[1..MONTHS].partition_point(|bound| *bound <= day);
+    #[expect(
+        clippy::cast_possible_truncation,
+        clippy::cast_sign_loss,
+        reason = "a whole number from 0 to 30"
+    )]
+    let within = (day - MONTH_BOUNDS_DAY[month]) as u32;
+    (month + 1, within + 1)
+}
+
+/// Noon of a date in days since 1 January 0 h, in the 365-day calendar; `None` if the calendar has no
+/// such month (1 to 12) or day.
+pub fn noon_of_date(month: usize, day: u32) -> Option<f64> {
+    let begin = *MONTH_BOUNDS_DAY.get(month.checked_sub(1)?)?;
+    let end = *MONTH_BOUNDS_DAY.get(month)?;
+    let noon = begin + f64::from(day) - 0.5;
+    (day >= 1 && noon < end).then_some(noon)
+}
+
 /// Weights of the nodes k/steps, k = 0..=steps, in the monthly means.
 #[derive(Clone, Debug, PartialEq)]
 pub struct MonthWeights {
@@ -246,6 +269,18 @@ mod tests {
         ];
         for (day, month) in expected {
             assert_eq!(days.month_of_step(day), month, "day {day}");
+        }
+    }
+
+    #[test]
+    fn analytic_dates_and_days_of_the_year_belong_together() {
+        let known = [(1, 1, 0.5), (3, 21, 79.5), (6, 21, 171.5), (12, 31, 364.5)];
+        for (month, day, noon) in known {
+            assert_eq!(noon_of_date(month, day), Some(noon));
+            assert_eq!(month_and_day(noon), (month, day));
+        }
+        for (month, day) in [(0, 1), (13, 1), (2, 29), (4, 31), (5, 0)] {
+            assert_eq!(noon_of_date(month, day), None, "{month}-{day}");
         }
     }
 

@@ -7,6 +7,7 @@ pub mod dispatch;
 pub mod lagrange;
 pub mod lanes;
 pub mod profile;
+pub mod quadrature;
 pub mod shown;
 pub mod sum;
 pub mod tridiagonal;

@@ -10,7 +10,7 @@
 //! Units: W m-2 (those of the solar constant S0, given at a distance of one semi-major axis),
 //! degrees.
 //! Numerics: closed form by the system's maths library; the integral by the double-exponential rule
-//! (Takahasi & Mori 1974, Publ. RIMS 9:721; memory), which keeps its accuracy at the polar circle,
+//! ([`crate::numerics::quadrature`]), which keeps its accuracy at the polar circle,
 //! where the integrand has a kink at the end of the interval.
 //! Source: Berger 1978, J. Atmos. Sci. 35:2362 (daily mean); Ward 1974, J. Geophys. Res. 79:3375
 //! (annual mean; memory).
@@ -19,6 +19,7 @@ use std::f64::consts::PI;
 
 use super::elements::Elements;
 pub use super::table::{InsolationTable, TableError};
+use crate::numerics::quadrature::double_exponential;
 
 /// Daily mean insolation, W m-2, at a latitude when the Sun stands at a true longitude.
 ///
@@ -45,7 +46,7 @@ pub fn annual_mean_w_m2(elements: &Elements, solar_constant_w_m2: f64, latitude_
     let (sin_obl, cos_obl) = elements.obliquity_deg.to_radians().sin_cos();
     let along = sin_lat * cos_obl;
     let across = cos_lat * sin_obl;
-    let integral = double_exponential(|angle| {
+    let integral = double_exponential(0.0, PI, |angle| {
         let sine = along - across * angle.cos();
         ((1.0 - sine) * (1.0 + sine)).max(0.0).sqrt()
     });
@@ -58,7 +59,7 @@ pub fn global_annual_mean_w_m2(eccentricity: f64, solar_constant_w_m2: f64) -> f
 }
 
 /// Mean over the day of the cosine of the zenith angle, night counted as zero.
-fn daily_mean_cosine(latitude_deg: f64, sin_declination: f64) -> f64 {
+pub(super) fn daily_mean_cosine(latitude_deg: f64, sin_declination: f64) -> f64 {
     let (sin_lat, cos_lat) = latitude_deg.to_radians().sin_cos();
     let cos_declination = ((1.0 - sin_declination) * (1.0 + sin_declination)).sqrt();
     let p = sin_lat * sin_declination;
@@ -70,20 +71,6 @@ fn daily_mean_cosine(latitude_deg: f64, sin_declination: f64) -> f64 {
         return p.max(0.0);
     }
     ((half_day * p + q * half_day.sin()) / PI).max(0.0)
-}
-
-/// Integral over [0, pi] by the double-exponential rule with 121 points.
-fn double_exponential(integrand: impl Fn(f64) -> f64) -> f64 {
-    const STEP: f64 = 0.055;
-    const HALF: i32 = 60;
-    let mut sum = 0.0;
-    for k in -HALF..=HALF {
-        let u = f64::from(k) * STEP;
-        let outer = 0.5 * PI * u.sinh();
-        let weight = 0.5 * PI * u.cosh() / outer.cosh().powi(2);
-        sum += weight * integrand(0.5 * PI * (1.0 + outer.tanh()));
-    }
-    0.5 * PI * STEP * sum
 }
 
 #[cfg(test)]

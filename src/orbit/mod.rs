@@ -8,5 +8,6 @@ pub mod elements;
 pub mod insolation;
 pub mod integration;
 pub mod kepler;
+pub mod season;
 pub mod solution;
 mod table;

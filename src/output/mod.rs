@@ -2,7 +2,7 @@
 //!
 //! [`claim`] takes an output for one run; [`schema`] is the one table of dimensions, coordinates and metadata; [`netcdf4`] makes HDF5
 //! conform to the NetCDF-4 format; [`writer`] takes records and keeps a killed run's data in
-//! segment files; [`reader`] reads it all back.
+//! segment files; [`reader`] reads it all back. [`table`] writes tables that are no runs.
 //!
 //! Sources: HDF5 Dimension Scale specification, NetCDF-4 format specification (NetCDF User's
 //! Guide, appendix "File Format Specifications"), CF Conventions 1.11.
@@ -17,6 +17,7 @@ pub mod reader;
 pub mod schema;
 mod segments;
 pub mod size;
+pub mod table;
 pub mod writer;
 
 pub use claim::{Claim, Overwrite};

@@ -36,16 +36,28 @@ impl PlainFile {
         })
     }
 
+    /// The name that the file will have.
+    pub fn path(&self) -> &Path {
+        &self.path
+    }
+
     /// Writes the file and gives it its name.
     ///
     /// # Errors
     /// If the system refuses, or the output has come into being in the meantime.
     pub fn write(self, bytes: &[u8]) -> Result<PathBuf> {
+        self.write_with(|path| fs::write(path, bytes).map_err(io_at(path, "write")))
+    }
+
+    /// The same by a function that writes a whole file under the temporary name it is given; what a
+    /// failure leaves there is deleted.
+    ///
+    /// # Errors
+    /// Those of the function; if the system refuses, or the output has come into being.
+    pub fn write_with(self, write: impl FnOnce(&Path) -> Result<()>) -> Result<PathBuf> {
         refuse_existing(&self.path, self.overwrite)?;
         let temporary = segments::merging(&self.path);
-        let written = fs::write(&temporary, bytes)
-            .map_err(io_at(&temporary, "write"))
-            .and_then(|()| segments::seal(&temporary, &self.path));
+        let written = write(&temporary).and_then(|()| segments::seal(&temporary, &self.path));
         segments::clearing(&temporary, written)?;
         Ok(self.path)
     }

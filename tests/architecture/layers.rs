@@ -43,7 +43,7 @@ const LAYERS: [(&str, &[&str]); 17] = [
         "experiment",
         &[
             "analysis", "config", "forcing", "grid", "model", "numerics", "orbit", "output",
-            "physics", "series", "tables", "units",
+            "physics", "report", "series", "tables", "units",
         ],
     ),
     (
@@ -90,10 +90,13 @@ const LAYERS: [(&str, &[&str]); 17] = [
 ];
 
 /// Crates that only some modules may know, outside unit tests.
-const CRATES: [(&str, &[&str]); 4] = [
+const CRATES: [(&str, &[&str]); 7] = [
+    ("base64", &["report"]),
+    ("colorous", &["report"]),
     ("hdf5", &["output"]),
     ("hdf5_sys", &["output"]),
     ("indicatif", &["cli"]),
+    ("resvg", &["report"]),
     ("toml", &["config", "experiment"]),
 ];
 /// Macros and functions that print.
