@@ -18,6 +18,8 @@ use std::time::Instant;
 
 /// Stretches of which the fastest counts.
 const STRETCHES: usize = 7;
+/// Insolation tables of which the fastest counts.
+const TABLES: u32 = 200;
 /// Years in a stretch.
 const YEARS: u32 = 400;
 
@@ -33,6 +35,14 @@ fn main() -> Result<(), Box<dyn Error>> {
             let rate = years_per_second(&experiment(bands, steps)?)?;
             writeln!(out, "{bands:>6} {steps:>10} {rate:>12.0}")?;
         }
+    }
+    writeln!(
+        out,
+        "\ninsolation tables of a year: ns a value (daily mean with its zenith cosine)"
+    )?;
+    for (bands, steps) in [(36, 48), (36, 72), (72, 72), (180, 365)] {
+        let time = ns_per_value(bands, steps)?;
+        writeln!(out, "{bands:>6} {steps:>10} {time:>12.2}")?;
     }
     writeln!(out, "\nshare of a year by component, 36 bands, 72 steps")?;
     for (name, share) in shares(&experiment(36, 72)?)? {
@@ -77,6 +87,30 @@ fn years_per_second(experiment: &Experiment) -> Result<f64, Box<dyn Error>> {
     Ok(f64::from(YEARS) / best)
 }
 
+/// Time for one value of an insolation table, the Sun's places included, ns.
+fn ns_per_value(bands: u32, steps: usize) -> Result<f64, Box<dyn Error>> {
+    let edge = |j: u32| (-1.0 + 2.0 * f64::from(j) / f64::from(bands)).clamp(-1.0, 1.0);
+    let edges: Vec<f64> = (0..=bands).map(edge).collect();
+    let mut table = InsolationTable::new(&edges, steps)?;
+    let mut best = f64::INFINITY;
+    for stretch in 0..TABLES {
+        let start = Instant::now();
+        // Another orbit each time, as in a run.
+        table.update(&orbit_of(f64::from(stretch)), 1361.0, 0.2178);
+        best = best.min(start.elapsed().as_secs_f64());
+    }
+    Ok(best * 1e9 / (f64::from(bands) * steps as f64))
+}
+
+/// An orbit like today's, with another perihelion.
+fn orbit_of(turn_deg: f64) -> Elements {
+    Elements {
+        eccentricity: 0.0167,
+        obliquity_deg: 23.44,
+        perihelion: PerihelionLongitude::from_heliocentric_deg(102.9 + turn_deg),
+    }
+}
+
 /// Time of each component, of making the insolation table (a tenth of it a year), as shares.
 fn shares(experiment: &Experiment) -> Result<Vec<(String, f64)>, Box<dyn Error>> {
     let Built { setting, .. } = experiment.build()?;
@@ -88,11 +122,7 @@ fn shares(experiment: &Experiment) -> Result<Vec<(String, f64)>, Box<dyn Error>>
         .map_err(|faults| format!("{faults:?}"))?;
     let mut table =
         InsolationTable::new(setting.surface.bands.edge_sine(), setting.steps_per_year())?;
-    let orbit = Elements {
-        eccentricity: 0.0167,
-        obliquity_deg: 23.44,
-        perihelion: PerihelionLongitude::from_heliocentric_deg(102.9),
-    };
+    let orbit = orbit_of(0.0);
     let mut best = vec![f64::INFINITY; components.len() + 1];
     for _ in 0..STRETCHES {
         let mut times = vec![0.0; components.len() + 1];

@@ -7,7 +7,7 @@ use crate::config::run::{BuildError, Experiment};
 use crate::config::{ConfigError, InputFile, Provenance};
 use crate::orbit::integration::NOT_KNOWN;
 use crate::orbit::solution::{
-    EccentricitySource, ObliquitySource, Orbit, OrbitError, OrbitSpec, PerihelionSource,
+    EccentricitySource, ObliquitySource, Orbit, OrbitSpec, PerihelionSource,
 };
 use std::path::{Path, PathBuf};
 
@@ -43,9 +43,9 @@ pub enum OrbitSourceError {
     /// The configuration has values out of range.
     #[error(transparent)]
     Build(#[from] BuildError),
-    /// The solution cannot be used, or not at the ages asked for.
-    #[error(transparent)]
-    Orbit(#[from] OrbitError),
+    /// The solution cannot be used.
+    #[error("{0}")]
+    Solution(String),
 }
 
 /// An orbit with what there is to say about it.
@@ -88,10 +88,9 @@ impl Solution {
                 None,
             ),
         };
-        // A solution has no numbers of its own to be out of range, so there is one error at most.
-        let orbit = Orbit::build(&spec).map_err(|errors| match errors.into_iter().next() {
-            Some(error) => error,
-            None => OrbitError::AgeNotFinite { age_kyr: f64::NAN },
+        let orbit = Orbit::build(&spec).map_err(|errors| {
+            let lines: Vec<_> = errors.iter().map(ToString::to_string).collect();
+            OrbitSourceError::Solution(lines.join("\n"))
         })?;
         Ok(OrbitSource {
             orbit,

@@ -70,7 +70,9 @@ impl Axis {
         } else {
             0.5 * high.abs().max(1.0)
         };
-        [low - room, high + room]
+        // What is never negative does not get room below zero.
+        let bottom = if low >= 0.0 { 0.0 } else { f64::NEG_INFINITY };
+        [(low - room).max(bottom), high + room]
     }
 
     /// The ticks, about `intervals` apart.
@@ -137,7 +139,9 @@ mod tests {
         let nothing = Axis::around([f64::NAN].into_iter());
         assert!(nothing[0].abs() < 1e-12 && (nothing[1] - 1.0).abs() < 1e-12);
         let ten = Axis::around([0.0, 10.0].into_iter());
-        assert!((ten[0] + 0.5).abs() < 1e-12 && (ten[1] - 10.5).abs() < 1e-12);
+        assert!(ten[0].abs() < 1e-12 && (ten[1] - 10.5).abs() < 1e-12);
+        let both = Axis::around([-10.0, 10.0].into_iter());
+        assert!((both[0] + 11.0).abs() < 1e-12 && (both[1] - 11.0).abs() < 1e-12);
         let [low, high] = Axis::around([23.0, 23.0].into_iter());
         assert!(low < 23.0 && high > 23.0);
     }

@@ -104,7 +104,7 @@ const PRINTING: [&str; 5] = ["print", "println", "eprint", "eprintln", "dbg"];
 /// Modules that may print.
 const PRINTERS: [&str; 2] = ["cli", "main"];
 /// Modules that may use the file system; besides these, every module named `tables`.
-const FILE_USERS: [&str; 3] = ["config", "output", "report"];
+const FILE_USERS: [&str; 2] = ["config", "output"];
 /// The only files with `unsafe`.
 const UNSAFE_FILES: [&str; 2] = ["src/numerics/dispatch.rs", "src/output/netcdf4.rs"];
 
