@@ -242,7 +242,7 @@ fn a_run_under_a_table_of_land_ice_goes_on_unless_the_table_has_changed() {
     folder.write("ice.csv", "age,edge\n10,75\n11,46\n");
     folder
         .orbicline(&RESUME)
-        .says(&["killed.nc cannot go on", "the data had SHA-256 "]);
+        .says(&["killed.nc.seg0000.nc cannot go on", "the data had SHA-256 "]);
     folder.write("ice.csv", "age,edge\n10,75\n11,45\n");
     let outcome = folder.orbicline(&RESUME);
     assert!(outcome.ok, "{outcome:?}");
