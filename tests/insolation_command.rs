@@ -223,7 +223,7 @@ fn anomalies_configurations_and_files_hold_together() {
     // The configuration's own orbit and solar constant.
     let sun = "--config short.toml --set insolation.solar_constant_w_m2=680.5";
     let half = run(&folder, &format!("{words} {sun}"));
-    assert!(half.out.contains("680.5 W m-2") && half.out.contains("kind = \"berger1978\""));
+    assert!(half.out.contains("680.5 W m-2") && half.out.contains("kind = \"integrated\""));
     // Standard output and file.
     let to_file = run(&folder, &format!("{words} --out a/table.csv"));
     assert_eq!(to_file.out, "a/table.csv\n");

@@ -106,9 +106,16 @@ fn configured(file: &Path, edits: &[String]) -> Result<OrbitSource, OrbitSourceE
     let experiment = Experiment::load(file, edits)?;
     let orbit = experiment.build()?.model.drive().sources().orbit.clone();
     let spec = &experiment.run.orbit;
-    let integrated = matches!(spec.eccentricity, EccentricitySource::Integrated {})
-        || matches!(spec.obliquity, ObliquitySource::Integrated {})
-        || matches!(spec.perihelion, PerihelionSource::Integrated {});
+    let integrated = matches!(
+        spec.eccentricity,
+        EccentricitySource::Integrated {} | EccentricitySource::IntegratedTable { .. }
+    ) || matches!(
+        spec.obliquity,
+        ObliquitySource::Integrated {} | ObliquitySource::IntegratedTable { .. }
+    ) || matches!(
+        spec.perihelion,
+        PerihelionSource::Integrated {} | PerihelionSource::IntegratedTable { .. }
+    );
     let elements = toml::to_string(spec).unwrap_or_default();
     Ok(OrbitSource {
         orbit,
