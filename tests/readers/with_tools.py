@@ -31,6 +31,8 @@ def header(path: Path) -> str:
     words = ["ncdump", "-h", path]
     text = subprocess.run(words, check=True, capture_output=True, text=True).stdout
     text = re.sub(r"^netcdf .* {", "netcdf run {", text)
+    # The last digits of a state depend on the machine's mathematical functions.
+    text = re.sub(r'(restart_state:sha256 = )"\w+"', r'\1"(varies)"', text)
     names = "|".join(VOLATILE)
     return re.sub(rf'^(\t\t:(?:{names}) = )"(?:[^"\\]|\\.|"(?! ;\n))*" ;\n', r'\1"(varies)" ;' "\n", text, flags=re.M)
 
