@@ -6,6 +6,7 @@
 use orbicline::config::run::{Built, Experiment};
 use orbicline::forcing::YearForcing;
 use orbicline::grid::calendar::Calendar;
+use orbicline::grid::latitude::{LatitudeBands, Spacing};
 use orbicline::model::clock::{Plan, SpinUp, TimeSpec};
 use orbicline::model::observer::{Keep, Nobody};
 use orbicline::orbit::elements::{Elements, PerihelionLongitude};
@@ -38,7 +39,7 @@ fn main() -> Result<(), Box<dyn Error>> {
     }
     writeln!(
         out,
-        "\ninsolation tables of a year: ns a value (daily mean with its zenith cosine)"
+        "\ninsolation tables of a year: ns a value (a daily mean or a zenith cosine)"
     )?;
     for (bands, steps) in [(36, 48), (36, 72), (72, 72), (180, 365)] {
         let time = ns_per_value(bands, steps)?;
@@ -89,9 +90,8 @@ fn years_per_second(experiment: &Experiment) -> Result<f64, Box<dyn Error>> {
 
 /// Time for one value of an insolation table, the Sun's places included, ns.
 fn ns_per_value(bands: u32, steps: usize) -> Result<f64, Box<dyn Error>> {
-    let edge = |j: u32| (-1.0 + 2.0 * f64::from(j) / f64::from(bands)).clamp(-1.0, 1.0);
-    let edges: Vec<f64> = (0..=bands).map(edge).collect();
-    let mut table = InsolationTable::new(&edges, steps)?;
+    let latitudes = LatitudeBands::new(bands as usize, Spacing::EqualLatitude)?;
+    let mut table = InsolationTable::new(latitudes.edge_sine(), steps)?;
     let mut best = f64::INFINITY;
     for stretch in 0..TABLES {
         let start = Instant::now();
@@ -99,7 +99,7 @@ fn ns_per_value(bands: u32, steps: usize) -> Result<f64, Box<dyn Error>> {
         table.update(&orbit_of(f64::from(stretch)), 1361.0, 0.2178);
         best = best.min(start.elapsed().as_secs_f64());
     }
-    Ok(best * 1e9 / (f64::from(bands) * steps as f64))
+    Ok(best * 1e9 / (2.0 * f64::from(bands) * steps as f64))
 }
 
 /// An orbit like today's, with another perihelion.

@@ -12,7 +12,7 @@
 //! quadrature in latitude, and the bands add up to the flux on the disc at every step.
 //! Units: W m-2; cosines are pure numbers; time in fractions of the year.
 //! Numerics: four edges side by side, three arcs of [`super::arc`] and one square root for each
-//! edge; no branch. Rounding is 1e-15 of the whole disc, 1e-10 W m-2 in a polar band of 5 degrees.
+//! edge, shared with its mirror image in the other hemisphere; no branch. Rounding is 1e-15 of the whole disc, 1e-10 W m-2 in a polar band of 5 degrees.
 //! A band that gets less than 1e-9 of F has cosine 0: the ratio would be rounding there, and its
 //! limit at the terminator is 0. The position on the orbit uses the system's sine and cosine.
 //! Source: own integration of the daily mean of Berger 1978, J. Atmos. Sci. 35:2362, over x;
@@ -86,13 +86,44 @@ struct EdgeBlock {
     inverse_cos: Lanes,
 }
 
+/// The edges, in blocks of four from south to north.
+#[derive(Clone, Debug)]
+enum Edges {
+    /// Each for itself.
+    All(Vec<EdgeBlock>),
+    /// Those of the northern hemisphere, the equator first; each has its mirror image in the
+    /// south, bit for bit, and shares the arcs with it.
+    Mirrored {
+        /// The northern edges.
+        northern: Vec<EdgeBlock>,
+        /// Number of the equator among all edges.
+        equator: usize,
+    },
+}
+
+impl Edges {
+    fn of(sines: &[f64]) -> Self {
+        let equator = sines.len() / 2;
+        let opposite = sines.iter().zip(sines.iter().rev());
+        // Adding the two says more than comparing: it is exactly zero only for mirror images.
+        let mirrored =
+            sines.len() % 2 == 1 && opposite.map(|(a, b)| (a + b).abs()).sum::<f64>() <= 0.0;
+        if mirrored {
+            let northern = sines[equator..].chunks(WIDTH).map(edge_block).collect();
+            Self::Mirrored { northern, equator }
+        } else {
+            Self::All(sines.chunks(WIDTH).map(edge_block).collect())
+        }
+    }
+}
+
 /// Insolation and mean zenith cosine of latitude bands at equally spaced times of the year.
 ///
 /// Both tables are flat, one row of bands for each step: index `step * bands + band`. Step k stands
 /// for the time (k + 1) / steps of the year, counted from 1 January 0 h.
 #[derive(Clone, Debug)]
 pub struct InsolationTable {
-    blocks: Vec<EdgeBlock>,
+    edges: Edges,
     inverse_width: Vec<f64>,
     seasons: Vec<Season>,
     scratch: Vec<f64>,
@@ -111,11 +142,10 @@ impl InsolationTable {
     pub fn new(sin_edges: &[f64], steps: usize) -> Result<Self, TableError> {
         check(sin_edges, steps)?;
         let bands = sin_edges.len() - 1;
-        let blocks: Vec<EdgeBlock> = sin_edges.chunks(WIDTH).map(edge_block).collect();
         let inverse_width = sin_edges.windows(2).map(|e| 1.0 / (e[1] - e[0])).collect();
         Ok(Self {
-            scratch: vec![0.0; 2 * WIDTH * blocks.len()],
-            blocks,
+            scratch: vec![0.0; 2 * (sin_edges.len() + 2 * WIDTH)],
+            edges: Edges::of(sin_edges),
             inverse_width,
             seasons: vec![Season::default(); steps],
             daily_mean_w_m2: vec![0.0; steps * bands],
@@ -224,35 +254,105 @@ fn edge_block(edges: &[f64]) -> EdgeBlock {
     }
 }
 
-/// Both primitives at four edges.
+/// What an edge shares with its mirror image in the other hemisphere.
+#[derive(Clone, Copy)]
+struct Shared {
+    root: Lanes,
+    root_square: Lanes,
+    /// Quarter of a turn less the arcs of x / c and of the half day.
+    arc: Lanes,
+    half_day: Lanes,
+    turn: Lanes,
+}
+
+/// Arcs and roots at four edges, for |x|.
 #[inline(always)]
-fn primitives(edge: &EdgeBlock, season: Season, inverse_cosine: f64) -> (Lanes, Lanes) {
+fn shared(edge: &EdgeBlock, season: Season, inverse_cosine: f64) -> Shared {
     let (zero, one) = (Lanes::splat(0.0), Lanes::splat(1.0));
     let (s, c) = (season.sine, season.cosine);
-    let sign_s = 1.0_f64.copysign(s);
-    let x = edge.x;
-    let size = x.abs();
+    let size = edge.x.abs();
     // R^2 as a product: exact where it cancels, and the same for all three arcs.
     let root_square = ((Lanes::splat(c) - size) * (size + c)).max(zero);
     let root = root_square.sqrt();
     let along = size * inverse_cosine;
     let tilt = edge.inverse_cos * s.abs();
     let sine = root * edge.inverse_cos;
-
-    // Arcs for the hemisphere of the edge and of the Sun: signs instead of branches.
     let quarter = Lanes::splat(FRAC_PI_2);
     let polar = arc_cosine(along.min(one), root * inverse_cosine);
     let day = arc_cosine((along * tilt).min(one), sine * inverse_cosine);
-    let turn = arc_cosine(tilt.min(one), sine);
-    let arc = edge.side * (quarter - polar);
-    let half_day = quarter + edge.side * sign_s * (quarter - day);
+    Shared {
+        root,
+        root_square,
+        arc: quarter - polar,
+        half_day: quarter - day,
+        turn: arc_cosine(tilt.min(one), sine),
+    }
+}
 
-    let first = (arc + x * root - edge.cos_square * half_day * s) * 0.5;
+/// Both primitives at four edges x in the hemispheres `side`.
+#[inline(always)]
+fn primitives(
+    (x, side): (Lanes, Lanes),
+    cos_square: Lanes,
+    season: Season,
+    shared: Shared,
+) -> (Lanes, Lanes) {
+    let (s, c) = (season.sine, season.cosine);
+    let sign_s = 1.0_f64.copysign(s);
+    let Shared {
+        root,
+        root_square,
+        turn,
+        ..
+    } = shared;
+    // Arcs for the hemisphere of the edge and of the Sun: signs instead of branches.
+    let arc = side * shared.arc;
+    let half_day = Lanes::splat(FRAC_PI_2) + side * sign_s * shared.half_day;
+    let first = (arc + x * root - cos_square * half_day * s) * 0.5;
     let half_c2 = 0.5 * c * c;
     let third_b = (s * s - half_c2) / 3.0;
     let second = x * (x * x * third_b + half_c2) * half_day + turn * (sign_s / 3.0)
         - root * (root_square * 0.5 + third_b) * s;
     (first, second)
+}
+
+/// Both primitives at all edges, behind `WIDTH` numbers that mean nothing.
+#[inline(always)]
+fn at_edges(edges: &Edges, season: Season, first: &mut [f64], second: &mut [f64]) {
+    let inverse_cosine = 1.0 / season.cosine.max(SMALLEST_COSINE);
+    match edges {
+        Edges::All(blocks) => {
+            for (i, edge) in blocks.iter().enumerate() {
+                let shared = shared(edge, season, inverse_cosine);
+                let place = (edge.x, edge.side);
+                let (f, g) = primitives(place, edge.cos_square, season, shared);
+                f.store(first, WIDTH * (i + 1));
+                g.store(second, WIDTH * (i + 1));
+            }
+        }
+        Edges::Mirrored { northern, equator } => {
+            let one = Lanes::splat(1.0);
+            for (i, edge) in northern.iter().enumerate() {
+                let shared = shared(edge, season, inverse_cosine);
+                let south = (-edge.x, -one);
+                let (f, g) = primitives(south, edge.cos_square, season, shared);
+                // From the equator southwards; the northern equator is stored over it.
+                let at = WIDTH + equator + 1 - WIDTH * (i + 1);
+                reversed(f).store(first, at);
+                reversed(g).store(second, at);
+                let north = (edge.x, one);
+                let (f, g) = primitives(north, edge.cos_square, season, shared);
+                f.store(first, WIDTH * (i + 1) + equator);
+                g.store(second, WIDTH * (i + 1) + equator);
+            }
+        }
+    }
+}
+
+#[inline(always)]
+fn reversed(lanes: Lanes) -> Lanes {
+    let [a, b, c, d] = lanes.0;
+    Lanes([d, c, b, a])
 }
 
 /// Fills the rows of a table whose seasons are known.
@@ -267,31 +367,47 @@ impl Kernel for Fill<'_> {
     fn run(self) {
         let table = self.table;
         let bands = table.inverse_width.len();
-        let (first, second) = table.scratch.split_at_mut(WIDTH * table.blocks.len());
+        let (first, second) = table.scratch.split_at_mut(bands + 1 + 2 * WIDTH);
         let rows = table
             .daily_mean_w_m2
             .chunks_exact_mut(bands)
             .zip(table.zenith_cosine.chunks_exact_mut(bands));
         for (season, (daily, zenith)) in table.seasons.iter().zip(rows) {
-            let inverse_cosine = 1.0 / season.cosine.max(SMALLEST_COSINE);
-            for (i, edge) in table.blocks.iter().enumerate() {
-                let (f, g) = primitives(edge, *season, inverse_cosine);
-                f.store(first, WIDTH * i);
-                g.store(second, WIDTH * i);
+            at_edges(&table.edges, *season, first, second);
+            let whole = bands - bands % WIDTH;
+            for at in (0..whole).step_by(WIDTH) {
+                let widths = Lanes::load(&table.inverse_width, at);
+                let (mean, cosine) = band_means([first, second], at, widths * season.flux_w_m2);
+                mean.store(daily, at);
+                cosine.store(zenith, at);
             }
-            for (band, inverse_width) in table.inverse_width.iter().enumerate() {
-                let sunlight = (first[band + 1] - first[band]).max(0.0);
-                let squares = (second[band + 1] - second[band]).max(0.0);
-                daily[band] = season.flux_w_m2 * inverse_width * sunlight;
-                let cosine = squares / sunlight.max(DARK);
-                zenith[band] = if sunlight > DARK {
-                    cosine.min(1.0)
-                } else {
-                    0.0
-                };
+            // Bands beyond the last four: the lanes too many are left where they are.
+            let mut widths = [0.0; WIDTH];
+            let rest = &table.inverse_width[whole..];
+            widths[..rest.len()].copy_from_slice(rest);
+            if !rest.is_empty() {
+                let widths = Lanes(widths) * season.flux_w_m2;
+                let (mean, cosine) = band_means([first, second], whole, widths);
+                daily[whole..].copy_from_slice(&mean.0[..rest.len()]);
+                zenith[whole..].copy_from_slice(&cosine.0[..rest.len()]);
             }
         }
     }
+}
+
+/// Daily mean and zenith cosine of four bands from `at` on, from the primitives at their edges;
+/// `scale` is the flux over the width.
+#[inline(always)]
+fn band_means([first, second]: [&[f64]; 2], at: usize, scale: Lanes) -> (Lanes, Lanes) {
+    let (zero, one, dark) = (Lanes::splat(0.0), Lanes::splat(1.0), Lanes::splat(DARK));
+    let between = |v: &[f64]| {
+        let [south, north] = [WIDTH + at, WIDTH + at + 1].map(|edge| Lanes::load(v, edge));
+        (north - south).max(zero)
+    };
+    let (sunlight, squares) = (between(first), between(second));
+    let cosine = (squares / sunlight.max(dark)).min(one);
+    let in_dark = dark.at_least(sunlight);
+    (scale * sunlight, in_dark.select(zero, cosine))
 }
 
 #[cfg(test)]

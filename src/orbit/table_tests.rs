@@ -195,3 +195,23 @@ fn regress_layouts_without_meaning_are_refused() {
     ));
     assert_eq!(refused(&[-1.0, 1.0], 0), TableError::NoSteps);
 }
+
+#[test]
+fn analytic_mirrored_edges_give_the_bits_of_edges_taken_one_by_one() {
+    for bands in [2, 4, 6, 12, 36, 72] {
+        for sun in [10.0, 100.0, 283.0] {
+            let elements = orbit(0.05, 24.1, sun);
+            let mirrored = table(bands, 48, &elements);
+            assert!(matches!(mirrored.edges, Edges::Mirrored { .. }), "{bands}");
+            let mut single = mirrored.clone();
+            single.edges = Edges::All(edges(bands).chunks(WIDTH).map(edge_block).collect());
+            single.update(&elements, 1361.0, EQUINOX);
+            let bits = |t: &InsolationTable| -> Vec<u64> {
+                let all = t.daily_mean_w_m2.iter().chain(&t.zenith_cosine);
+                all.map(|v| v.to_bits()).collect()
+            };
+            assert_eq!(bits(&mirrored), bits(&single), "{bands} bands");
+        }
+    }
+    assert!(matches!(Edges::of(&[-0.5, 0.0, 0.6]), Edges::All(_)));
+}
