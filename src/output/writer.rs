@@ -27,8 +27,8 @@ use crate::series::Record;
 #[cfg(test)]
 mod tests;
 
-/// Longest time between two saved segments while records come. Saving a few records costs some
-/// ten milliseconds (tuned here).
+/// Longest time between two saved segments while records come (tuned here: what somebody may
+/// lose without regret).
 const SAVE_AFTER: Duration = Duration::from_mins(1);
 
 /// Writes one run. Dropped without [`RunWriter::finish`], it leaves its segments behind.
